@@ -1,0 +1,121 @@
+/**
+ * Text messages between bridge and dashboard (JSON). Binary frames are in frame.ts. The subprotocol name carries the
+ * version: a dashboard from another version is refused at the handshake.
+ */
+import type { Flag, Mark } from "./flag.ts";
+
+export const SUBPROTOCOL = "bendwatch.1";
+/** Longest text message the bridge accepts, bytes. */
+export const MAX_CLIENT_MESSAGE_BYTES = 4096;
+export const MAX_MARK_LENGTH = 200;
+
+export interface SensorView {
+  readonly name: string;
+  readonly station: number;
+  readonly hasMag: boolean;
+}
+
+/** First message after connecting. */
+export interface WelcomeMessage {
+  readonly type: "welcome";
+  readonly softwareVersion: string;
+  readonly rigName: string;
+  readonly bodyKind: "animal" | "dummy" | "foil";
+  readonly lengthM: number;
+  readonly widthM: number | null;
+  readonly rateHz: number;
+  readonly sensors: readonly SensorView[];
+  /** Points of the midline in each frame, nose to tail. */
+  readonly pointCount: number;
+  readonly source: { readonly kind: "serial" | "trial" | "rehearsal"; readonly label: string };
+  readonly heading: "magnetic" | "free";
+  /** Flow speed, m/s, where the rig file gives one. */
+  readonly flowMPerS: number | null;
+  /** Changes whenever the bridge starts anew or a looped trial starts over: views clear their past. */
+  readonly runId: string;
+}
+
+/** silent: the port is open but nothing comes. */
+export type LinkView = "opening" | "flowing" | "silent" | "closed" | "ended";
+
+/** Twice a second, and at once when link or recording change. */
+export interface StatusMessage {
+  readonly type: "status";
+  readonly hubTimeS: number;
+  readonly link: LinkView;
+  /** One sentence for the operator. */
+  readonly linkDetail: string;
+  readonly recording: {
+    readonly state: "off" | "on" | "failed";
+    /** Trial name, or why it failed. */
+    readonly detail: string;
+    readonly elapsedS: number;
+    readonly bytes: number;
+  };
+  /** Sweeps in the last second. */
+  readonly sweepsPerS: number;
+  /** Share of samples lost over the last 60 s, 0..1. */
+  readonly lostShare: number;
+  /** Processing latency of the newest sweep: host now minus its arrival, ms; null when replaying. */
+  readonly behindMs: number | null;
+  readonly counters: {
+    readonly good: number;
+    readonly badChecksum: number;
+    readonly discardedBytes: number;
+  };
+  readonly tailbeat: TailbeatView;
+}
+
+export interface TailbeatView {
+  /** Hz; null while the body does not beat. */
+  readonly frequencyHz: number | null;
+  /** Peak to peak, m, of the tail tip across the travel axis, against the nose. */
+  readonly tailAmplitudeM: number | null;
+  /** Beats in a row whose frequency and amplitude agree within the spread given in config. */
+  readonly steadyBeats: number;
+}
+
+/** All open flags and the most recent ended ones, newest first. Sent whenever they change, at most ten times a second. */
+export interface FlagsMessage {
+  readonly type: "flags";
+  readonly open: readonly Flag[];
+  readonly ended: readonly Flag[];
+}
+
+export interface MarksMessage {
+  readonly type: "marks";
+  /** Newest first, at most 50. */
+  readonly marks: readonly Mark[];
+}
+
+/** The last ten minutes at one column a second: tail excursion across the travel axis. On connecting, then each second. */
+export interface StripMessage {
+  readonly type: "strip";
+  /** Hub time of the first column, s. */
+  readonly startS: number;
+  readonly columnS: number;
+  /** m; null where nothing was received. */
+  readonly lowM: readonly (number | null)[];
+  readonly highM: readonly (number | null)[];
+}
+
+/** A client's message was refused. */
+export interface RefusalMessage {
+  readonly type: "refusal";
+  readonly reason: string;
+}
+
+export type BridgeMessage =
+  | WelcomeMessage
+  | StatusMessage
+  | FlagsMessage
+  | MarksMessage
+  | StripMessage
+  | RefusalMessage;
+
+export interface AddMarkMessage {
+  readonly type: "add mark";
+  readonly text: string;
+}
+
+export type DashboardMessage = AddMarkMessage;
