@@ -47,6 +47,11 @@ export const sensorSchema = z.strictObject({
     .max(1e6)
     .default(0)
     .describe("How long after the hub's tick this sensor is sampled."),
+  rateHz: z
+    .number()
+    .positive()
+    .optional()
+    .describe("Own rate, where this sensor gives a reading less often than the hub sweeps."),
   mounting: mountingSchema.prefault({}),
   calibration: calibrationSchema.prefault({}),
 });
