@@ -88,8 +88,11 @@ export class StreamServer {
     await new Promise((resolve) => this.#http.close(resolve));
   }
 
-  get viewerCount(): number {
-    return this.#viewers.size;
+  /** Bytes that wait for viewers who read too slowly, all together. */
+  get bytesWaiting(): number {
+    let bytes = 0;
+    for (const socket of this.#viewers.keys()) bytes += socket.bufferedAmount;
+    return bytes;
   }
 
   /** Offers a frame to every viewer, after any text that still waits for it. */
