@@ -7,6 +7,7 @@ import { join } from "node:path";
 import type { z } from "zod";
 import { BendwatchError, type ErrorDetail } from "../errors.ts";
 import { packageRoot } from "../paths.ts";
+import { type PacketLayout, packetLayoutSchema } from "./packet-layout.ts";
 import { type RigFile, rigSchema } from "./rig.ts";
 import { type SensorModel, sensorModelSchema } from "./sensor-model.ts";
 import { type Thresholds, thresholdsSchema } from "./thresholds.ts";
@@ -15,6 +16,8 @@ import { type Thresholds, thresholdsSchema } from "./thresholds.ts";
 export interface Rig extends RigFile {
   /** One per sensor, in order. */
   readonly models: readonly SensorModel[];
+  /** The declared layout that `hub.layout` names; null for native and text, which need none. */
+  readonly packetLayout: PacketLayout | null;
   readonly thresholds: Thresholds;
 }
 
@@ -59,8 +62,16 @@ export function checkConfig<T>(where: string, json: unknown, schema: z.ZodType<T
 export function loadRig(nameOrPath: string): Rig {
   const file = loadConfig("rigs", nameOrPath, rigSchema);
   const models = file.sensors.map((sensor) => loadConfig("sensors", sensor.model, sensorModelSchema));
+  const { layout } = file.hub;
+  const packetLayout =
+    layout === "native" || layout === "text" ? null : loadConfig("layouts", layout, packetLayoutSchema);
   const thresholds = loadConfig("", "thresholds", thresholdsSchema);
-  return deepFreeze({ ...file, models, thresholds: { ...thresholds, ...definedOnly(file.flags) } });
+  return deepFreeze({
+    ...file,
+    models,
+    packetLayout,
+    thresholds: { ...thresholds, ...definedOnly(file.flags) },
+  });
 }
 
 function configPath(kind: string, nameOrPath: string): string {
