@@ -1,0 +1,54 @@
+/**
+ * What to do about each flag: one sentence a kind, in the operator's words. `{name}` is the sensor, `{place}` its place on
+ * the body ("58 % of the body"), `{neighbours}` the sensors next to it.
+ */
+import type { FlagKind } from "../wire/flag.ts";
+
+/** Flag kinds, and the notice that a building's own field was taken as the reference. */
+export type AdviceKey = FlagKind | "building field";
+
+export const FLAG_ADVICE: Readonly<Record<AdviceKey, string>> = {
+  "gyro saturation":
+    "{name} turns faster than it can measure: set a larger gyroscope range on the hub, or beat more slowly.",
+  "accel saturation":
+    "{name} is shaken harder than it can measure: set a larger accelerometer range on the hub, or look for something knocking at {place}.",
+  "mag saturation":
+    "A strong magnet or steel touches {place}: take it away, and do not use {name}'s heading until this ends.",
+  "low headroom":
+    "{name} is close to the end of its range: choose a larger range before the next, faster run.",
+  "magnetic interference": "Something magnetic is near {place}; move it away or trust {name}'s heading less.",
+  "rig-wide magnetic interference":
+    "The field is off along the whole body: look for a motor, a magnet or steel brought near the tank, and trust no heading until this ends.",
+  "building field":
+    "The building bends the Earth's field here: the shape is not affected, but do not read compass directions from this run.",
+  "lost samples": "Check the plug and cable at {place}, then between hub and computer.",
+  "corrupt packets":
+    "Check cable, connector and ground between hub and computer, and that both use the same baud rate.",
+  "link silent": "Check that the hub has power and its cable is plugged in; recording goes on by itself.",
+  "stuck axis":
+    "Power {name} off and on; if the axis stays still, replace the sensor and rely on {neighbours} until then.",
+  "sensor read errors":
+    "The hub cannot read {name}: check its plug at {place} and the cable from {neighbours}.",
+  "recording trouble": "Free disk space or choose another folder now: what arrives is not being kept.",
+  "hub restarted":
+    "The hub started anew: check its supply, and compare the time marks before and after when you evaluate.",
+};
+
+/** A sensor as advice names it. */
+export interface Place {
+  readonly name: string;
+  /** 0 nose, 1 tail tip. */
+  readonly station: number;
+}
+
+/** The advice for a flag on sensor `sensor` (-1: the rig), with its name, place and neighbours filled in. */
+export function adviceFor(key: AdviceKey, sensor: number, sensors: readonly Place[]): string {
+  const here = sensors[sensor];
+  const around = [sensors[sensor - 1], sensors[sensor + 1]].filter(
+    (s) => here !== undefined && s !== undefined,
+  );
+  return FLAG_ADVICE[key]
+    .replaceAll("{name}", here?.name ?? "the rig")
+    .replaceAll("{place}", here ? `${Math.round(here.station * 100)} % of the body` : "the hub")
+    .replaceAll("{neighbours}", around.map((s) => s!.name).join(" and ") || "the others");
+}
