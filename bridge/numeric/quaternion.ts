@@ -1,0 +1,201 @@
+/**
+ * Unit quaternions: Hamilton product, scalar first (w, x, y, z), read as the rotation that carries the coordinates of a
+ * vector from the named frame to the next one outward (sensor to earth).
+ *
+ * Every function writes into the caller's `out` at `outAt` and allocates nothing. `out` may be one of the inputs, at the
+ * same offset: all inputs are read before the first output is written.
+ */
+
+/** Anything with numbers in slots; the hot paths pass Float64Array only. */
+export interface Slots {
+  [index: number]: number;
+  readonly length: number;
+}
+
+/**
+ * Below this squared half angle (rad²) sine and cosine are taken from their series to x⁸ and x¹⁰: the first terms left
+ * out are below 1e-17, less than the rounding of a double.
+ */
+const SERIES_BELOW = 0.01;
+
+/** out = a b: first b, then a, as rotations of a vector. */
+export function multiply(out: Slots, a: Slots, b: Slots, outAt = 0, aAt = 0, bAt = 0): void {
+  const aw = a[aAt]!;
+  const ax = a[aAt + 1]!;
+  const ay = a[aAt + 2]!;
+  const az = a[aAt + 3]!;
+  const bw = b[bAt]!;
+  const bx = b[bAt + 1]!;
+  const by = b[bAt + 2]!;
+  const bz = b[bAt + 3]!;
+  out[outAt] = aw * bw - ax * bx - ay * by - az * bz;
+  out[outAt + 1] = aw * bx + ax * bw + ay * bz - az * by;
+  out[outAt + 2] = aw * by - ax * bz + ay * bw + az * bx;
+  out[outAt + 3] = aw * bz + ax * by - ay * bx + az * bw;
+}
+
+/** out = the inverse rotation of the unit quaternion q. */
+export function conjugate(out: Slots, q: Slots, outAt = 0, qAt = 0): void {
+  out[outAt] = q[qAt]!;
+  out[outAt + 1] = -q[qAt + 1]!;
+  out[outAt + 2] = -q[qAt + 2]!;
+  out[outAt + 3] = -q[qAt + 3]!;
+}
+
+/** out = q / |q|. A quaternion without direction (zero, or not finite) gives the identity. */
+export function normalise(out: Slots, q: Slots, outAt = 0, qAt = 0): void {
+  const w = q[qAt]!;
+  const x = q[qAt + 1]!;
+  const y = q[qAt + 2]!;
+  const z = q[qAt + 3]!;
+  const norm = Math.sqrt(w * w + x * x + y * y + z * z);
+  if (!(norm > 0 && norm < Infinity)) {
+    setIdentity(out, outAt);
+    return;
+  }
+  out[outAt] = w / norm;
+  out[outAt + 1] = x / norm;
+  out[outAt + 2] = y / norm;
+  out[outAt + 3] = z / norm;
+}
+
+/** out = the identity rotation. */
+export function setIdentity(out: Slots, outAt = 0): void {
+  out[outAt] = 1;
+  out[outAt + 1] = 0;
+  out[outAt + 2] = 0;
+  out[outAt + 3] = 0;
+}
+
+/** out (3 slots) = the vector v (3 slots) rotated by the unit quaternion q. */
+export function rotate(out: Slots, q: Slots, v: Slots, outAt = 0, qAt = 0, vAt = 0): void {
+  const w = q[qAt]!;
+  const x = q[qAt + 1]!;
+  const y = q[qAt + 2]!;
+  const z = q[qAt + 3]!;
+  const vx = v[vAt]!;
+  const vy = v[vAt + 1]!;
+  const vz = v[vAt + 2]!;
+  // v + 2 w (u × v) + 2 u × (u × v) with u the vector part.
+  const tx = 2 * (y * vz - z * vy);
+  const ty = 2 * (z * vx - x * vz);
+  const tz = 2 * (x * vy - y * vx);
+  out[outAt] = vx + w * tx + y * tz - z * ty;
+  out[outAt + 1] = vy + w * ty + z * tx - x * tz;
+  out[outAt + 2] = vz + w * tz + x * ty - y * tx;
+}
+
+/**
+ * out = exp of a rotation vector (3 slots, rad): a turn by its length about its direction. Exact for any length; a small
+ * one uses the series of sine and cosine, so nothing is divided by a length near zero.
+ */
+export function fromRotationVector(out: Slots, vector: Slots, outAt = 0, vectorAt = 0): void {
+  const x = vector[vectorAt]!;
+  const y = vector[vectorAt + 1]!;
+  const z = vector[vectorAt + 2]!;
+  const s = 0.25 * (x * x + y * y + z * z); // half angle squared
+  let w: number;
+  let factor: number; // sin(half angle) / angle
+  if (s < SERIES_BELOW) {
+    w = 1 - (s / 2) * (1 - (s / 12) * (1 - (s / 30) * (1 - (s / 56) * (1 - s / 90))));
+    factor = 0.5 * (1 - (s / 6) * (1 - (s / 20) * (1 - (s / 42) * (1 - s / 72))));
+  } else {
+    const half = Math.sqrt(s);
+    w = Math.cos(half);
+    factor = Math.sin(half) / (2 * half);
+  }
+  out[outAt] = w;
+  out[outAt + 1] = factor * x;
+  out[outAt + 2] = factor * y;
+  out[outAt + 3] = factor * z;
+}
+
+/**
+ * out (3 slots, rad) = log of the unit quaternion q: the rotation vector of the shorter way round, its length in
+ * [0, π].
+ */
+export function toRotationVector(out: Slots, q: Slots, outAt = 0, qAt = 0): void {
+  const sign = q[qAt]! < 0 ? -1 : 1;
+  const w = sign * q[qAt]!;
+  const x = sign * q[qAt + 1]!;
+  const y = sign * q[qAt + 2]!;
+  const z = sign * q[qAt + 3]!;
+  const sine = Math.sqrt(x * x + y * y + z * z);
+  // angle / sin(half angle) tends to 2/w as the angle vanishes; the next term is below rounding here.
+  const factor = sine < 1e-9 ? 2 / w : (2 * Math.atan2(sine, w)) / sine;
+  out[outAt] = factor * x;
+  out[outAt + 1] = factor * y;
+  out[outAt + 2] = factor * z;
+}
+
+/**
+ * out = spherical linear interpolation (Shoemake 1985, SIGGRAPH '85, "Animating rotation with quaternion curves") from
+ * the unit quaternion a (share 0) to b (share 1), the shorter way round; of the two ways of a half turn, the one of b's
+ * own sign. Shares outside 0..1 extrapolate at the same rate.
+ */
+export function slerp(out: Slots, a: Slots, b: Slots, share: number, outAt = 0, aAt = 0, bAt = 0): void {
+  const aw = a[aAt]!;
+  const ax = a[aAt + 1]!;
+  const ay = a[aAt + 2]!;
+  const az = a[aAt + 3]!;
+  let bw = b[bAt]!;
+  let bx = b[bAt + 1]!;
+  let by = b[bAt + 2]!;
+  let bz = b[bAt + 3]!;
+  if (aw * bw + ax * bx + ay * by + az * bz < 0) {
+    bw = -bw;
+    bx = -bx;
+    by = -by;
+    bz = -bz;
+  }
+  // Angle between the two on the 3-sphere, from chord and co-chord: accurate near 0 as the arc cosine is not.
+  const chord = Math.hypot(bw - aw, bx - ax, by - ay, bz - az);
+  const coChord = Math.hypot(bw + aw, bx + ax, by + ay, bz + az);
+  const angle = 2 * Math.atan2(chord, coChord);
+  const sine = Math.sin(angle);
+  const near = sine < 1e-9;
+  const fromA = near ? 1 - share : Math.sin((1 - share) * angle) / sine;
+  const fromB = near ? share : Math.sin(share * angle) / sine;
+  out[outAt] = fromA * aw + fromB * bw;
+  out[outAt + 1] = fromA * ax + fromB * bx;
+  out[outAt + 2] = fromA * ay + fromB * by;
+  out[outAt + 3] = fromA * az + fromB * bz;
+}
+
+/**
+ * out = the shortest rotation that carries the direction of `from` to that of `to` (3 slots each, any length).
+ * Opposite directions: a half turn about an axis square to `from`, chosen in the plane of its two smaller components.
+ * A zero or non-finite vector gives the identity.
+ */
+export function fromTwoVectors(out: Slots, from: Slots, to: Slots, outAt = 0, fromAt = 0, toAt = 0): void {
+  const fx = from[fromAt]!;
+  const fy = from[fromAt + 1]!;
+  const fz = from[fromAt + 2]!;
+  const tx = to[toAt]!;
+  const ty = to[toAt + 1]!;
+  const tz = to[toAt + 2]!;
+  const lengths = Math.sqrt((fx * fx + fy * fy + fz * fz) * (tx * tx + ty * ty + tz * tz));
+  const w = lengths + fx * tx + fy * ty + fz * tz;
+  if (!(lengths > 0 && lengths < Infinity)) {
+    setIdentity(out, outAt);
+    return;
+  }
+  if (w > 1e-12 * lengths) {
+    out[outAt] = w;
+    out[outAt + 1] = fy * tz - fz * ty;
+    out[outAt + 2] = fz * tx - fx * tz;
+    out[outAt + 3] = fx * ty - fy * tx;
+  } else if (Math.abs(fx) < Math.abs(fz)) {
+    setVectorPart(out, outAt, 0, -fz, fy);
+  } else {
+    setVectorPart(out, outAt, -fy, fx, 0);
+  }
+  normalise(out, out, outAt, outAt);
+}
+
+function setVectorPart(out: Slots, outAt: number, x: number, y: number, z: number): void {
+  out[outAt] = 0;
+  out[outAt + 1] = x;
+  out[outAt + 2] = y;
+  out[outAt + 3] = z;
+}
