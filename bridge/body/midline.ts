@@ -1,0 +1,136 @@
+/**
+ * From orientations at the stations to the body's midline.
+ *
+ * The orientation anywhere along the body is interpolated between the two nearest sensors on the sphere (slerp,
+ * Shoemake 1985, SIGGRAPH '85), the shorter way round; before the first and beyond the last sensor it is theirs. The
+ * midline is a chain of equal straight segments from the nose, each along the body's x axis as interpolated at the
+ * segment's middle: whatever the orientations, its length is the body's. Sensors that are lost drop out and their
+ * neighbours carry on.
+ */
+import { normalise, rotate, slerp } from "../numeric/quaternion.ts";
+import { TRUST } from "../sweep.ts";
+
+export interface MidlineOptions {
+  readonly lengthM: number;
+  /** Place of each sensor, 0 nose to 1 tail tip, ascending. */
+  readonly stations: readonly number[];
+  /** Evenly spaced points from nose to tail tip, at least 2. */
+  readonly pointCount: number;
+}
+
+const NOSEWARD = new Float64Array([1, 0, 0]);
+
+export class Midline {
+  /** 3 per point, m, earth axes, nose at the origin. Borrowed: rewritten by each step. A straight body facing east at first. */
+  readonly positions: Float64Array;
+  /** Per point, rad, right side down positive. Borrowed likewise. */
+  readonly roll: Float64Array;
+
+  readonly #segmentM: number;
+  readonly #stations: readonly number[];
+
+  // Where each orientation along the body comes from. Places are points and segment middles in turn, nose to tail:
+  // place 2k is point k, place 2k + 1 the middle of the segment behind it.
+  readonly #placeCount: number;
+  readonly #before: Uint16Array;
+  readonly #behind: Uint16Array;
+  /** Share of the sensor behind. */
+  readonly #share: Float64Array;
+  /** Which sensors were lost when that was worked out. */
+  readonly #lost: Uint8Array;
+  #sensorsLeft: number;
+
+  readonly #orientation = new Float64Array(4);
+  readonly #direction = new Float64Array(3);
+
+  constructor({ lengthM, stations, pointCount }: MidlineOptions) {
+    this.positions = new Float64Array(pointCount * 3);
+    this.roll = new Float64Array(pointCount);
+    this.#segmentM = lengthM / (pointCount - 1);
+    this.#stations = stations;
+    this.#placeCount = 2 * pointCount - 1;
+    this.#before = new Uint16Array(this.#placeCount);
+    this.#behind = new Uint16Array(this.#placeCount);
+    this.#share = new Float64Array(this.#placeCount);
+    this.#lost = new Uint8Array(stations.length);
+    this.#sensorsLeft = stations.length;
+    this.#placeSensors();
+    for (let point = 1; point < pointCount; point++) this.positions[3 * point] = -point * this.#segmentM;
+  }
+
+  /**
+   * Rebuilds `positions` and `roll`. With every sensor lost, the last shape stays.
+   * @param orientations 4 per sensor, body axes to earth
+   * @param trust per sensor, as in sweep.ts
+   */
+  step(orientations: Float64Array, trust: Uint8Array): void {
+    if (this.#lossChanged(trust)) this.#placeSensors();
+    if (this.#sensorsLeft === 0) return;
+    const { positions } = this;
+    for (let place = 0; place < this.#placeCount; place++) {
+      this.#interpolate(orientations, place);
+      const point = place >> 1;
+      if (place % 2 === 0) {
+        this.roll[point] = rollOf(this.#orientation);
+        continue;
+      }
+      rotate(this.#direction, this.#orientation, NOSEWARD);
+      for (let axis = 0; axis < 3; axis++) {
+        positions[3 * point + 3 + axis] =
+          positions[3 * point + axis] - this.#segmentM * this.#direction[axis];
+      }
+    }
+  }
+
+  /** Leaves the orientation at `place` in #orientation. */
+  #interpolate(orientations: Float64Array, place: number): void {
+    const before = 4 * this.#before[place];
+    const behind = 4 * this.#behind[place];
+    slerp(this.#orientation, orientations, orientations, this.#share[place], 0, before, behind);
+    normalise(this.#orientation, this.#orientation);
+  }
+
+  #lossChanged(trust: Uint8Array): boolean {
+    let changed = false;
+    for (let i = 0; i < this.#lost.length; i++) {
+      const lost = trust[i] === TRUST.LOST ? 1 : 0;
+      if (lost !== this.#lost[i]) changed = true;
+      this.#lost[i] = lost;
+    }
+    return changed;
+  }
+
+  /** Works out, for every place, the sensors before and behind it and their shares. */
+  #placeSensors(): void {
+    const stations = this.#stations;
+    const first = this.#nextLeft(0);
+    this.#sensorsLeft = 0;
+    for (let i = 0; i < stations.length; i++) this.#sensorsLeft += 1 - this.#lost[i];
+    if (this.#sensorsLeft === 0) return;
+    let before = first;
+    let behind = first;
+    for (let place = 0; place < this.#placeCount; place++) {
+      const station = place / (this.#placeCount - 1);
+      while (behind < stations.length && stations[behind] <= station) {
+        before = behind;
+        behind = this.#nextLeft(behind + 1);
+      }
+      const between = behind < stations.length && before !== behind;
+      this.#before[place] = before;
+      this.#behind[place] = between ? behind : before;
+      this.#share[place] = between ? (station - stations[before]) / (stations[behind] - stations[before]) : 0;
+    }
+  }
+
+  /** Index of the first sensor at or after `from` that is not lost; the sensor count when there is none. */
+  #nextLeft(from: number): number {
+    let i = from;
+    while (i < this.#lost.length && this.#lost[i] === 1) i++;
+    return i;
+  }
+}
+
+/** Angle about the body's x axis after heading and pitch are taken off, rad, right side down positive. */
+function rollOf(q: Float64Array): number {
+  return Math.atan2(2 * (q[0] * q[1] + q[2] * q[3]), 1 - 2 * (q[1] * q[1] + q[2] * q[2]));
+}
