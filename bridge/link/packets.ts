@@ -20,7 +20,7 @@ export interface HubSensor {
   serial: string;
 }
 
-/** Slow housekeeping. */
+/** Slow housekeeping. A declared layout may lack either number: NaN then. */
 export interface HubStatus {
   tickUs: number;
   supplyV: number;
@@ -29,7 +29,7 @@ export interface HubStatus {
   faults: number;
 }
 
-/** The drive's own angle and sway. */
+/** The drive's own angle and sway. A declared layout may lack either: NaN then. */
 export interface HubReference {
   tickUs: number;
   /** rad, positive turning left. */
@@ -84,6 +84,11 @@ export interface PacketDecoder {
    */
   push(chunk: Uint8Array, hostTimeMs: number): void;
   readonly counters: Readonly<LinkCounters>;
+  /**
+   * One sentence for the operator while what comes is intact but does not fit the rig (another number of sensors, another
+   * protocol version); null while it fits.
+   */
+  readonly complaint: string | null;
 }
 
 export function emptyCounters(): LinkCounters {
