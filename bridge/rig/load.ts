@@ -58,19 +58,44 @@ export function checkConfig<T>(where: string, json: unknown, schema: z.ZodType<T
   return deepFreeze(result.data);
 }
 
-/** Loads a rig with its models and thresholds. */
+/**
+ * Loads a rig with its models, packet layout and thresholds.
+ * @throws BendwatchError naming everything wrong in the rig file, or else in all the files it refers to
+ */
 export function loadRig(nameOrPath: string): Rig {
   const file = loadConfig("rigs", nameOrPath, rigSchema);
-  const models = file.sensors.map((sensor) => loadConfig("sensors", sensor.model, sensorModelSchema));
   const { layout } = file.hub;
+  const problems: BendwatchError[] = [];
+  const attempt = <T>(load: () => T): T | null => {
+    try {
+      return load();
+    } catch (error) {
+      if (!(error instanceof BendwatchError)) throw error;
+      problems.push(error);
+      return null;
+    }
+  };
+  const names = new Set(file.sensors.map((sensor) => sensor.model));
+  const models = new Map(
+    [...names].map((name) => [name, attempt(() => loadConfig("sensors", name, sensorModelSchema))] as const),
+  );
   const packetLayout =
-    layout === "native" || layout === "text" ? null : loadConfig("layouts", layout, packetLayoutSchema);
-  const thresholds = loadConfig("", "thresholds", thresholdsSchema);
+    layout === "native" || layout === "text"
+      ? null
+      : attempt(() => loadConfig("layouts", layout, packetLayoutSchema));
+  const thresholds = attempt(() => loadConfig("", "thresholds", thresholdsSchema));
+  if (problems.length > 0) {
+    throw new BendwatchError(
+      problems[0]!.code,
+      problems.flatMap(({ details }) => details),
+      { cause: problems[0] },
+    );
+  }
   return deepFreeze({
     ...file,
-    models,
+    models: file.sensors.map((sensor) => models.get(sensor.model)!),
     packetLayout,
-    thresholds: { ...thresholds, ...definedOnly(file.flags) },
+    thresholds: { ...thresholds!, ...definedOnly(file.flags) },
   });
 }
 
@@ -95,7 +120,7 @@ function detailsOf(file: string, issues: readonly z.core.$ZodIssue[]): ErrorDeta
       {
         where: `${file}, ${key || "(top level)"}`,
         found,
-        expected: issue.message.replace(/^Invalid input: expected /, ""),
+        expected: issue.message.replace(/^[A-Z][a-z ]+[:.] expected /i, "").replace(/, received .*$/, ""),
       },
     ];
   });

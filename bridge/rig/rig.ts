@@ -10,9 +10,9 @@ const matrix3 = z.tuple([vector3, vector3, vector3]);
 
 const mountingSchema = z
   .strictObject({
-    yawDeg: z.number().min(-180).max(180).default(0),
-    pitchDeg: z.number().min(-180).max(180).default(0),
-    rollDeg: z.number().min(-180).max(180).default(0),
+    yawDeg: z.number().min(-180).max(180).default(0).describe("About body z."),
+    pitchDeg: z.number().min(-180).max(180).default(0).describe("About the new y."),
+    rollDeg: z.number().min(-180).max(180).default(0).describe("About the new x."),
   })
   .describe(
     "Rotation that carries body axes (x nose, y left, z up) onto the sensor's own axes: first yaw about z, then pitch about the new y, then roll about the new x.",
@@ -65,91 +65,102 @@ const portSchema = z
     message: "either path or usbSerialNumber",
   });
 
-export const rigSchema = z
-  .strictObject({
-    name: z.string().min(1).max(60),
-    notes: z.string().max(2000).default(""),
-    body: z.strictObject({
-      kind: z.enum(["animal", "dummy", "foil"]),
-      lengthMm: z.number().positive().max(100_000).describe("Nose to tail tip along the midline."),
-      widthMm: z.number().positive().max(20_000).optional().describe("Greatest width, for drawing only."),
-    }),
-    hub: z.strictObject({
-      layout: z
-        .string()
-        .min(1)
-        .default("native")
-        .describe("Packet layout: native, text, or a file in config/layouts without .json."),
-      rateHz: z.number().min(1).max(4000).describe("Nominal sweeps a second."),
-      baudRate: z.number().int().min(1200).max(12_000_000).default(921_600),
-      port: portSchema.optional(),
-    }),
-    sensors: z
-      .array(sensorSchema)
-      .min(2)
-      .max(64)
-      .describe("Nose to tail, in the order of the hub's packets."),
-    site: z
-      .strictObject({
-        latitudeDeg: z.number().min(-90).max(90),
-        longitudeDeg: z.number().min(-180).max(180),
-        heightM: z.number().min(-500).max(9000).default(0),
-        date: z.iso
-          .date()
-          .optional()
-          .describe("Date for the World Magnetic Model; the trial's own date if left out."),
-      })
-      .optional(),
-    water: z
-      .strictObject({
-        kind: z.enum(["fresh", "sea"]).default("fresh"),
-        temperatureC: z.number().min(-2).max(45).optional(),
-        flowMPerS: z.number().min(0).max(30).optional(),
-      })
-      .prefault({}),
-    heading: z
-      .enum(["magnetic", "free"])
-      .default("magnetic")
-      .describe(
-        "magnetic: held by the magnetometers. free: gyroscopes only; it drifts, and the screen says so.",
-      ),
-    midline: z
-      .strictObject({
-        interpolation: z.enum(["slerp"]).default("slerp"),
-      })
-      .prefault({}),
-    flags: thresholdsSchema
-      .partial()
-      .prefault({})
-      .describe("Thresholds that differ for this rig from config/thresholds.json."),
-  })
-  .superRefine((rig, ctx) => {
-    for (let i = 1; i < rig.sensors.length; i++) {
-      const before = rig.sensors[i - 1]!;
-      const here = rig.sensors[i]!;
-      if (here.station <= before.station) {
-        ctx.addIssue({
-          code: "custom",
-          path: ["sensors", i, "station"],
-          input: here.station,
-          message: `a station greater than ${before.station} (that of ${before.name}): sensors are listed nose to tail`,
-        });
-      }
+const isNumber = (value: unknown): value is number => typeof value === "number";
+
+/**
+ * Stations must increase and names differ. Runs on sensors that failed their own checks too, so that all faults of a file
+ * are reported at once: looks only at what has the right type.
+ */
+function checkPlaces(sensors: readonly Partial<z.infer<typeof sensorSchema>>[], ctx: z.RefinementCtx): void {
+  sensors.forEach((sensor, i) => {
+    const before = sensors[i - 1];
+    if (isNumber(sensor?.station) && isNumber(before?.station) && sensor.station <= before.station) {
+      ctx.addIssue({
+        code: "custom",
+        path: [i, "station"],
+        input: sensor.station,
+        message: `a station greater than ${before.station} (that of ${before.name}): sensors are listed nose to tail`,
+      });
     }
-    const seen = new Map<string, number>();
-    rig.sensors.forEach((sensor, i) => {
-      const first = seen.get(sensor.name);
-      if (first !== undefined) {
-        ctx.addIssue({
-          code: "custom",
-          path: ["sensors", i, "name"],
-          input: sensor.name,
-          message: `a name of its own (sensors[${first}] has it already)`,
-        });
-      }
-      seen.set(sensor.name, i);
-    });
+    const first = sensors.findIndex((other) => other?.name === sensor?.name);
+    if (first < i && sensor?.name !== undefined) {
+      ctx.addIssue({
+        code: "custom",
+        path: [i, "name"],
+        input: sensor.name,
+        message: `a name of its own (sensors[${first}] has it already)`,
+      });
+    }
   });
+}
+
+export const rigSchema = z.strictObject({
+  name: z.string().min(1).max(60).describe("Shown on screen and in exports."),
+  notes: z.string().max(2000).default("").describe("Free text."),
+  body: z.strictObject({
+    kind: z.enum(["animal", "dummy", "foil"]).describe("What bends."),
+    lengthMm: z.number().positive().max(100_000).describe("Nose to tail tip along the midline."),
+    widthMm: z.number().positive().max(20_000).optional().describe("Greatest width, for drawing only."),
+  }),
+  hub: z.strictObject({
+    layout: z
+      .string()
+      .min(1)
+      .default("native")
+      .describe("Packet layout: native, text, or a file in config/layouts without .json."),
+    rateHz: z.number().min(1).max(4000).describe("Nominal sweeps a second."),
+    baudRate: z
+      .number()
+      .int()
+      .min(1200)
+      .max(12_000_000)
+      .default(921_600)
+      .describe("Of the serial port, bit/s."),
+    port: portSchema.optional().describe("Which serial port the hub is on."),
+  }),
+  sensors: z
+    .array(sensorSchema)
+    .min(1)
+    .max(64)
+    .superRefine(checkPlaces, { when: ({ value }) => Array.isArray(value) })
+    .describe("Nose to tail, in the order of the hub's packets."),
+  site: z
+    .strictObject({
+      latitudeDeg: z.number().min(-90).max(90).describe("North positive."),
+      longitudeDeg: z.number().min(-180).max(180).describe("East positive."),
+      heightM: z.number().min(-500).max(9000).default(0).describe("Above sea level."),
+      date: z.iso
+        .date()
+        .optional()
+        .describe("Date for the World Magnetic Model; the trial's own date if left out."),
+    })
+    .optional(),
+  water: z
+    .strictObject({
+      kind: z.enum(["fresh", "sea"]).default("fresh").describe("For density and viscosity."),
+      temperatureC: z.number().min(-2).max(45).optional().describe("Of the water."),
+      flowMPerS: z.number().min(0).max(30).optional().describe("Speed of the water past the body."),
+    })
+    .prefault({}),
+  heading: z
+    .enum(["magnetic", "free"])
+    .default("magnetic")
+    .describe(
+      "magnetic: held by the magnetometers. free: gyroscopes only; it drifts, and the screen says so.",
+    ),
+  midline: z
+    .strictObject({
+      interpolation: z
+        .enum(["slerp"])
+        .default("slerp")
+        .describe("Between sensors along the body, on the sphere."),
+    })
+    .prefault({}),
+  flags: thresholdsSchema
+    .partial()
+    .prefault({})
+    .describe("Thresholds that differ for this rig from config/thresholds.json."),
+});
 
 export type RigFile = z.infer<typeof rigSchema>;
 export type SensorPlace = RigFile["sensors"][number];

@@ -6,23 +6,23 @@ const axisTriple = {
 };
 
 export const sensorModelSchema = z.strictObject({
-  name: z.string().min(1).max(60),
-  notes: z.string().max(2000).default(""),
+  name: z.string().min(1).max(60).describe("In plain words."),
+  notes: z.string().max(2000).default("").describe("Where the figures come from."),
   gyro: z.strictObject({
-    rangeDegPerS: z.number().positive(),
+    rangeDegPerS: z.number().positive().describe("Plus and minus this."),
     ...axisTriple,
     noiseDegPerSPerSqrtHz: z.number().min(0).describe("White-noise density."),
     biasDegPerS: z.number().min(0).describe("Largest zero-rate offset the data sheet allows."),
   }),
   accel: z.strictObject({
-    rangeG: z.number().positive(),
+    rangeG: z.number().positive().describe("Plus and minus this."),
     ...axisTriple,
-    noiseMicroGPerSqrtHz: z.number().min(0),
-    biasMilliG: z.number().min(0),
+    noiseMicroGPerSqrtHz: z.number().min(0).describe("White-noise density."),
+    biasMilliG: z.number().min(0).describe("Largest zero-g offset the data sheet allows."),
   }),
   mag: z
     .strictObject({
-      rangeUT: z.number().positive(),
+      rangeUT: z.number().positive().describe("Plus and minus this."),
       ...axisTriple,
       noiseUT: z.number().min(0).describe("RMS noise of one reading."),
       rateHz: z.number().positive().optional().describe("Own rate, where slower than the hub's sweeps."),

@@ -9,7 +9,51 @@ export const thresholdsSchema = z.strictObject({
     .number()
     .min(0)
     .max(1)
-    .describe("Caution when less of the gyro or accelerometer range than this is free over the last second."),
+    .describe(
+      "Caution when less of the gyro or accelerometer range than this is free over the last second: a tenth is what one beat commonly exceeds the one before by (common practice, no source).",
+    ),
+  fullScaleShare: z
+    .number()
+    .min(0.5)
+    .max(1)
+    .describe(
+      "A reading at or above this share of the range counts as clipped: the last count of a 16-bit sensor is 0.99997, and some stop a few counts short of it.",
+    ),
+  fieldOffShare: z
+    .number()
+    .min(0.01)
+    .max(1)
+    .describe(
+      "The magnetic field is disturbed when it is off by this share of its norm or more, in norm and dip together: twice what calibration and inclination errors of 3° leave, and still below 30° of heading error at a dip of 70°.",
+    ),
+  lostSamplesShare: z
+    .number()
+    .min(0)
+    .max(1)
+    .describe(
+      "A flag when this share or more of the readings due in the last second is lost: at 100 Hz every lost sweep is told, and a cabled link normally loses none.",
+    ),
+  corruptPacketsShare: z
+    .number()
+    .min(0)
+    .max(1)
+    .describe(
+      "A flag when corrupt packets in the last second reach this share of the sweeps due: the same measure as for lost samples, as each commonly costs one.",
+    ),
+  readErrorsShare: z
+    .number()
+    .min(0)
+    .max(1)
+    .describe(
+      "A flag when the hub failed to read a sensor in this share or more of the last second's sweeps: the same measure as for lost samples.",
+    ),
+  stuckAxisS: z
+    .number()
+    .min(0.1)
+    .max(10)
+    .describe(
+      "An axis is stuck when it repeats one value for this long although it should move: 30 readings at 100 Hz, which noise of one count repeats once in more than 10¹³ tries.",
+    ),
 });
 
 export type Thresholds = z.infer<typeof thresholdsSchema>;
