@@ -7,7 +7,7 @@
  *
  * The zero implied by the last block is not part of the data.
  */
-import { countUnlessGood, type FrameHandler, type Framer } from "./framing.ts";
+import { countFrame, type FrameHandler, type Framer, VERDICT } from "./framing.ts";
 import type { LinkCounters } from "./packets.ts";
 
 const DELIMITER = 0;
@@ -81,10 +81,9 @@ export class CobsFramer implements Framer {
     if (this.#state === SKIPPING) {
       this.#counters.discardedBytes++;
     } else if (this.#state === IN_BLOCK) {
-      this.#counters.badChecksum++;
-      this.#counters.discardedBytes += this.#rawBytes + 1;
+      countFrame(this.#counters, VERDICT.BROKEN, this.#rawBytes + 1);
     } else if (this.#rawBytes > 0) {
-      countUnlessGood(this.#counters, this.#onFrame(this.#length), this.#rawBytes + 1);
+      countFrame(this.#counters, this.#onFrame(this.#length), this.#rawBytes + 1);
     }
     this.#state = AT_CODE;
     this.#length = 0;

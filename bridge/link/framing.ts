@@ -10,11 +10,11 @@
 import type { LinkCounters } from "./packets.ts";
 
 export const VERDICT = {
-  /** A packet, passed on. */
+  /** A packet, passed on (or a comment, rightly left alone). */
   GOOD: 0,
   /** Intact, so the next frame starts behind it, but not passed on. */
   REFUSED: 1,
-  /** Damaged: where it ends cannot be believed either. */
+  /** Wrong checksum: where it ends cannot be believed either. */
   BROKEN: 2,
 } as const;
 export type Verdict = (typeof VERDICT)[keyof typeof VERDICT];
@@ -29,9 +29,11 @@ export interface Framer {
 }
 
 /**
- * For framings with a delimiter: counts the `rawBytes` that a frame took on the line, coding and delimiter included,
- * unless the frame is good.
+ * For framings with a delimiter: counts what a handed-over frame came to.
+ * @param rawBytes what it took on the line, coding and delimiter included
  */
-export function countUnlessGood(counters: LinkCounters, verdict: Verdict, rawBytes: number): void {
-  if (verdict !== VERDICT.GOOD) counters.discardedBytes += rawBytes;
+export function countFrame(counters: LinkCounters, verdict: Verdict, rawBytes: number): void {
+  if (verdict === VERDICT.GOOD) return;
+  counters.discardedBytes += rawBytes;
+  if (verdict === VERDICT.BROKEN) counters.badChecksum++;
 }

@@ -89,7 +89,6 @@ export class NativeDecoder implements PacketDecoder {
     const end = length - CRC_BYTES;
     const buffer = this.#framer.buffer;
     if (end < HEADER_BYTES || crc16Ibm3740(buffer, 0, end) !== this.#view.getUint16(end, true)) {
-      this.counters.badChecksum++;
       return VERDICT.BROKEN;
     }
     if (buffer[0] !== PROTOCOL_VERSION) {

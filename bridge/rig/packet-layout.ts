@@ -261,7 +261,7 @@ const packetSchema = z.strictObject({
     .describe(
       "Packets that agree in this make one sweep together; it is complete when a packet with another value comes.",
     ),
-  fields: z.array(fieldSchema).min(1).max(1000),
+  fields: z.array(fieldSchema).max(1000).default([]).describe("None: a packet known, and left alone."),
 });
 
 export const packetLayoutSchema = z.strictObject({
