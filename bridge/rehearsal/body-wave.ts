@@ -1,0 +1,165 @@
+/**
+ * The travelling wave of a swimming body and its exact kinematics in the plane of bending.
+ *
+ * With s the arc length from the nose, the lateral position of every point is
+ *
+ *     y(s, t) = A(t) a(s) sin(phi(t) - k s)
+ *
+ * exactly, nose included, and the body does not stretch: its tangent makes the angle theta = -asin(dy/ds) with the travel
+ * axis, so the distance behind the nose is X(s, t) = integral of cos theta. All time derivatives are analytic; X is
+ * integrated along the body by Gauss-Legendre quadrature (four nodes a panel, Abramowitz & Stegun 25.4.30).
+ */
+import { BendwatchError } from "../errors.ts";
+import type { Jet } from "./signal.ts";
+
+/** Amplitude a(s/L) and its derivative, both as a share of body length, and the wavelength likewise. */
+interface Gait {
+  amplitude(x: number): number;
+  slope(x: number): number;
+  readonly wavelength: number;
+}
+
+/** Published envelopes, figures from memory. */
+const GAITS = {
+  /** Borazjani & Sotiropoulos, J. Exp. Biol. 211 (2008) 1541: a mackerel's. */
+  carangiform: {
+    amplitude: (x: number) => 0.02 - 0.08 * x + 0.16 * x * x,
+    slope: (x: number) => -0.08 + 0.32 * x,
+    wavelength: 0.95,
+  },
+  /** Borazjani & Sotiropoulos, J. Exp. Biol. 212 (2009) 576: a lamprey's. */
+  anguilliform: {
+    amplitude: (x: number) => 0.089 * Math.exp(x - 1),
+    slope: (x: number) => 0.089 * Math.exp(x - 1),
+    wavelength: 0.642,
+  },
+} as const satisfies Record<string, Gait>;
+
+export type GaitName = keyof typeof GAITS;
+
+/** Largest slope dy/ds a body may have: beyond it the tangent nears a right angle to the travel axis and the bend sharpens without bound. */
+const MAX_SLOPE = 0.95;
+/** Panels of the quadrature over a whole body: its error is then below 1e-11 of the length. */
+const PANELS_PER_LENGTH = 16;
+const NODES = [0.339981043584856, 0.861136311594053];
+const WEIGHTS = [0.652145154862546, 0.347854845137454];
+
+/** The wave's drive at one moment: amplitude factor and phase with their derivatives, as factors of the two quadratures. */
+export class WaveDrive {
+  sine = 0;
+  cosine = 1;
+  /** f = value u; df/dt = rateU u + rateV v; d2f/dt2 = accelerationU u + accelerationV v, with v = du/dphi. */
+  value = 0;
+  rateU = 0;
+  rateV = 0;
+  accelerationU = 0;
+  accelerationV = 0;
+
+  set(amplitude: Jet, phase: Jet): void {
+    this.sine = Math.sin(phase.value);
+    this.cosine = Math.cos(phase.value);
+    this.value = amplitude.value;
+    this.rateU = amplitude.rate;
+    this.rateV = amplitude.value * phase.rate;
+    this.accelerationU = amplitude.acceleration - amplitude.value * phase.rate ** 2;
+    this.accelerationV = 2 * amplitude.rate * phase.rate + amplitude.value * phase.acceleration;
+  }
+}
+
+/** Where a place on the body is in the plane of bending, and how it moves. */
+export interface PlaneMotion {
+  /** Distance behind the nose along the travel axis, m. */
+  readonly behind: Jet;
+  /** Distance left of the travel axis, m. */
+  readonly lateral: Jet;
+  /** Tangent towards the nose, rad from the travel axis, positive left; `acceleration` is not computed. */
+  readonly angle: Jet;
+}
+
+/** One place on a waving body. */
+export class WavePlace {
+  /** Quadrature nodes from the nose to here: weight in m, then the slope's factors of sine and minus cosine of phi. */
+  readonly #nodes: Float64Array;
+  readonly #lateral: readonly [number, number];
+  readonly #slope: readonly [number, number];
+  readonly #m: Jet = { value: 0, rate: 0, acceleration: 0 };
+
+  /** @param station 0 nose to 1 tail tip */
+  constructor(gaitName: GaitName, lengthM: number, station: number) {
+    const gait = GAITS[gaitName];
+    const k = (2 * Math.PI) / gait.wavelength; // per body length
+    this.#lateral = quadratures(lengthM * gait.amplitude(station), 0, k * station);
+    this.#slope = slopeAt(gait, k, station);
+    const panels = Math.ceil(station * PANELS_PER_LENGTH);
+    const half = station / panels / 2;
+    const nodes: number[] = [];
+    for (let panel = 0; panel < panels; panel++) {
+      for (const side of [-1, 1]) {
+        NODES.forEach((node, i) => {
+          nodes.push(WEIGHTS[i] * half * lengthM, ...slopeAt(gait, k, half * (2 * panel + 1 + side * node)));
+        });
+      }
+    }
+    this.#nodes = Float64Array.from(nodes);
+  }
+
+  /** Writes this place's motion under `drive` to `out`. */
+  motion(drive: WaveDrive, out: PlaneMotion): void {
+    evaluate(drive, this.#lateral[0], this.#lateral[1], out.lateral);
+    this.#integrateBehind(drive, out.behind);
+    const m = this.#m;
+    evaluate(drive, this.#slope[0], this.#slope[1], m);
+    out.angle.value = -Math.asin(m.value);
+    out.angle.rate = -m.rate / Math.sqrt(1 - m.value ** 2);
+  }
+
+  #integrateBehind(drive: WaveDrive, out: Jet): void {
+    const nodes = this.#nodes;
+    const m = this.#m;
+    out.value = 0;
+    out.rate = 0;
+    out.acceleration = 0;
+    for (let i = 0; i < nodes.length; i += 3) {
+      const weight = nodes[i];
+      evaluate(drive, nodes[i + 1], nodes[i + 2], m);
+      const cosine = Math.sqrt(1 - m.value * m.value);
+      const product = m.value * m.rate;
+      out.value += weight * cosine;
+      out.rate -= (weight * product) / cosine;
+      out.acceleration -=
+        weight * ((m.rate * m.rate + m.value * m.acceleration) / cosine + product ** 2 / cosine ** 3);
+    }
+  }
+}
+
+/** Refuses an amplitude factor under which the body would fold over. @throws BendwatchError COMMAND_INVALID */
+export function checkAmplitude(gaitName: GaitName, factor: number): void {
+  const gait = GAITS[gaitName];
+  const k = (2 * Math.PI) / gait.wavelength;
+  let steepest = 0;
+  for (let x = 0; x <= 1; x += 1 / 64) steepest = Math.max(steepest, Math.hypot(...slopeAt(gait, k, x)));
+  if (factor >= 0 && factor * steepest <= MAX_SLOPE) return;
+  throw new BendwatchError("COMMAND_INVALID", {
+    where: `amplitude of a ${gaitName} rehearsal`,
+    found: `${factor} times the published one`,
+    expected: `0 to ${(Math.floor((100 * MAX_SLOPE) / steepest) / 100).toFixed(2)}`,
+  });
+}
+
+/** Slope of the lateral position along the body, as factors of sine and minus cosine of the phase. */
+function slopeAt(gait: Gait, k: number, x: number): [number, number] {
+  return quadratures(gait.slope(x), -k * gait.amplitude(x), k * x);
+}
+
+/** p sin(phi - d) + q cos(phi - d) = u sin phi - v cos phi. */
+function quadratures(p: number, q: number, d: number): [number, number] {
+  return [p * Math.cos(d) + q * Math.sin(d), p * Math.sin(d) - q * Math.cos(d)];
+}
+
+function evaluate(drive: WaveDrive, ofSine: number, ofMinusCosine: number, out: Jet): void {
+  const u = drive.sine * ofSine - drive.cosine * ofMinusCosine;
+  const v = drive.cosine * ofSine + drive.sine * ofMinusCosine;
+  out.value = drive.value * u;
+  out.rate = drive.rateU * u + drive.rateV * v;
+  out.acceleration = drive.accelerationU * u + drive.accelerationV * v;
+}

@@ -1,0 +1,170 @@
+/**
+ * The simulated hub: turns the rig's sweeps and its own slow packets into the bytes that leave its port, in order of
+ * time, as fast as the port's baud rate lets them. Chunks end where the moment ends, mid-packet as often as not.
+ */
+import { NativeEncoder } from "../link/native-encoder.ts";
+import type { HubHello } from "../link/packets.ts";
+import type { Rig } from "../rig/load.ts";
+import type { SimulatedRig } from "./simulated-rig.ts";
+
+const HELLO_PERIOD_S = 1;
+const STATUS_PERIOD_S = 2;
+const REFERENCE_PERIOD_S = 0.02;
+
+/** Bits on the wire for one byte: start, eight data, stop. */
+const BITS_PER_BYTE = 10;
+/** What the hub can hold back while the port is busy; packets that do not fit are lost, as on a real hub. */
+const OUT_BUFFER_BYTES = 16_384;
+/** Status fault bit: buffer overrun (as in link/packets.ts). */
+const OVERRUN = 4;
+
+const SUPPLY_V = 5.05;
+const TEMPERATURE_C = 21;
+
+export interface SimulatedHubOptions {
+  readonly rig: Rig;
+  readonly simulated: SimulatedRig;
+  /** Tick of the first sweep, µs; ticks wrap after 2^32. */
+  readonly firstTickUs: number;
+  /** Camera frame pulses a second; 0 for none. */
+  readonly syncHz: number;
+}
+
+/** Something the hub does at even intervals. */
+interface Routine {
+  readonly periodS: number;
+  /** How often it has been done. */
+  count: number;
+  readonly send: (timeS: number) => void;
+}
+
+export class SimulatedHub {
+  readonly #rig: Rig;
+  readonly #simulated: SimulatedRig;
+  readonly #hello: HubHello;
+  readonly #routines: readonly Routine[];
+  readonly #restartsS: number[];
+
+  #encoder: NativeEncoder;
+  #tickOriginS = 0;
+  #tickAtOriginUs: number;
+  #edges = 0;
+  #overrun = false;
+
+  readonly #out = new Uint8Array(OUT_BUFFER_BYTES);
+  #held = 0;
+  /** What advanceTo gives out. */
+  readonly #sent = new Uint8Array(OUT_BUFFER_BYTES);
+  #sentUntilS = 0;
+
+  constructor({ rig, simulated, firstTickUs, syncHz }: SimulatedHubOptions) {
+    this.#rig = rig;
+    this.#simulated = simulated;
+    this.#tickAtOriginUs = firstTickUs;
+    this.#restartsS = simulated.effects.flatMap(({ restartS }) => restartS ?? []).sort((a, b) => a - b);
+    this.#hello = {
+      tickUs: 0,
+      rateHz: rig.hub.rateHz,
+      hubSerial: "rehearsal",
+      sensors: simulated.scales.map((scales, i) => ({ ...scales, serial: rig.sensors[i].serial })),
+    };
+    this.#encoder = new NativeEncoder(this.#hello);
+    const every = (periodS: number, send: (timeS: number) => void): Routine => ({ periodS, count: 0, send });
+    this.#routines = [
+      every(HELLO_PERIOD_S, (timeS) => this.#queue(timeS, this.#encoder.hello(this.#tickUs(timeS)))),
+      every(STATUS_PERIOD_S, (timeS) => this.#sendStatus(timeS)),
+      every(1 / rig.hub.rateHz, (timeS) => this.#sendSweep(timeS)),
+      ...(rig.body.kind === "foil" ? [every(REFERENCE_PERIOD_S, (timeS) => this.#sendReference(timeS))] : []),
+      ...(syncHz > 0 ? [every(1 / syncHz, (timeS) => this.#sendSync(timeS))] : []),
+    ];
+  }
+
+  /**
+   * Does all that is due before `timeS` and gives the bytes that have left the port since the last call.
+   * Borrowed: valid until the next call.
+   */
+  advanceTo(timeS: number): Uint8Array {
+    for (let next = this.#nextDue(); next.count * next.periodS < timeS; next = this.#nextDue()) {
+      const dueS = next.count * next.periodS;
+      this.#restartIfDue(dueS);
+      next.send(dueS);
+      next.count++;
+    }
+    return this.#drain(timeS);
+  }
+
+  /** The routine whose turn is next; of those due together, the first listed. */
+  #nextDue(): Routine {
+    let next = this.#routines[0];
+    for (const routine of this.#routines) {
+      if (routine.count * routine.periodS < next.count * next.periodS) next = routine;
+    }
+    return next;
+  }
+
+  #tickUs(timeS: number): number {
+    return (this.#tickAtOriginUs + Math.round((timeS - this.#tickOriginS) * 1e6)) >>> 0;
+  }
+
+  #restartIfDue(timeS: number): void {
+    while (this.#restartsS.length > 0 && this.#restartsS[0] <= timeS) {
+      this.#tickOriginS = this.#restartsS.shift() ?? timeS;
+      this.#tickAtOriginUs = 0;
+      this.#edges = 0;
+      this.#encoder = new NativeEncoder(this.#hello);
+      this.#queue(timeS, this.#encoder.hello(this.#tickUs(timeS)));
+    }
+  }
+
+  #sendSweep(timeS: number): void {
+    const sweep = this.#simulated.sweep(Math.round(timeS * this.#rig.hub.rateHz));
+    sweep.tickUs = this.#tickUs(timeS);
+    const frame = this.#encoder.sweep(sweep); // a lost sweep still counts
+    let lost = false;
+    for (const effect of this.#simulated.effects) lost = effect.losesSweep?.(timeS) === true || lost;
+    if (!lost) this.#queue(timeS, frame);
+  }
+
+  #sendStatus(timeS: number): void {
+    const status = {
+      tickUs: this.#tickUs(timeS),
+      supplyV: SUPPLY_V,
+      temperatureC: TEMPERATURE_C,
+      faults: this.#overrun ? OVERRUN : 0,
+    };
+    this.#overrun = false;
+    this.#queue(timeS, this.#encoder.status(status));
+  }
+
+  #sendReference(timeS: number): void {
+    const { yaw, sway } = this.#simulated.driveAt(timeS);
+    this.#queue(timeS, this.#encoder.reference({ tickUs: this.#tickUs(timeS), yaw, sway }));
+  }
+
+  #sendSync(timeS: number): void {
+    this.#queue(timeS, this.#encoder.sync({ tickUs: this.#tickUs(timeS), edge: this.#edges++ }));
+  }
+
+  #queue(timeS: number, frame: Uint8Array): void {
+    const { effects } = this.#simulated;
+    for (const effect of effects) effect.damage?.(timeS, frame);
+    if (effects.some((effect) => effect.isDark?.(timeS))) return;
+    if (this.#held + frame.length > OUT_BUFFER_BYTES) {
+      this.#overrun = true;
+      return;
+    }
+    this.#out.set(frame, this.#held);
+    this.#held += frame.length;
+  }
+
+  #drain(timeS: number): Uint8Array {
+    const bytesPerS = this.#rig.hub.baudRate / BITS_PER_BYTE;
+    const room = Math.floor(timeS * bytesPerS) - Math.floor(this.#sentUntilS * bytesPerS);
+    this.#sentUntilS = timeS;
+    const count = Math.min(this.#held, room);
+    this.#sent.set(this.#out.subarray(0, count));
+    this.#out.copyWithin(0, count, this.#held);
+    this.#held -= count;
+    return this.#sent.subarray(0, count);
+  }
+}

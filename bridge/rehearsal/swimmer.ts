@@ -1,0 +1,223 @@
+/**
+ * The simulated body: a travelling wave (body-wave.ts) on a body that slowly wanders in heading, pitch and roll, held in
+ * the flow of a flume (its travel axis turns but does not move on). Gives, exactly and for any moment, what each place on
+ * the body does and what an ideal sensor there would feel.
+ */
+import { multiply, rotate } from "../numeric/quaternion.ts";
+import { RAD_PER_DEG, STANDARD_GRAVITY } from "../numeric/units.ts";
+import { AttitudeMotion, setTurn } from "./attitude.ts";
+import { checkAmplitude, type GaitName, type PlaneMotion, WaveDrive, WavePlace } from "./body-wave.ts";
+import { addWander, clear, newJet, type Step, SteppedSignal, type Wander } from "./signal.ts";
+
+export interface SwimmerOptions {
+  readonly gait: GaitName;
+  readonly frequencyHz: number;
+  /** Share of the published amplitude. */
+  readonly amplitude: number;
+  /** How long the body lies still first, s: filters settle. */
+  readonly restS: number;
+  /** How long the first beats take to reach full amplitude, s. */
+  readonly startS: number;
+  /** Later changes of pace, in order of time, not overlapping. */
+  readonly changes: readonly PaceChange[];
+  /** rad from east, anticlockwise, at first. */
+  readonly heading: number;
+  /** rad turned left (right when negative), in order of time. */
+  readonly turns: readonly Turn[];
+  readonly headingWander: Wander;
+  /** Nose up positive. */
+  readonly pitchWander: Wander;
+  /** Right side down positive. */
+  readonly rollWander: Wander;
+}
+
+export interface PaceChange {
+  readonly atS: number;
+  readonly overS: number;
+  readonly frequencyHz?: number;
+  readonly amplitude?: number;
+}
+
+export interface Turn {
+  readonly atS: number;
+  readonly overS: number;
+  readonly by: number;
+}
+
+/** A steady swimmer at about a beat a second, wandering by a few degrees. */
+export const STEADY_SWIMMER: SwimmerOptions = {
+  gait: "carangiform",
+  frequencyHz: 1.1,
+  amplitude: 1,
+  restS: 3,
+  startS: 2,
+  changes: [],
+  heading: 80 * RAD_PER_DEG,
+  turns: [],
+  headingWander: { amplitude: 4 * RAD_PER_DEG, periodS: 37 },
+  pitchWander: { amplitude: 3 * RAD_PER_DEG, periodS: 23 },
+  rollWander: { amplitude: 5 * RAD_PER_DEG, periodS: 17 },
+};
+
+/** What one place on the body does and what an ideal sensor there feels. Arrays are rewritten in place. */
+export interface Kinematics {
+  /** Body axes to earth, scalar first. */
+  readonly orientation: Float64Array;
+  /** m, earth axes, from the point of the travel axis abreast of the nose. */
+  readonly position: Float64Array;
+  /** rad/s, body axes. */
+  readonly angularVelocity: Float64Array;
+  /** m/s², body axes: acceleration minus gravity. */
+  readonly specificForce: Float64Array;
+}
+
+export const newKinematics = (): Kinematics => ({
+  orientation: new Float64Array(4),
+  position: new Float64Array(3),
+  angularVelocity: new Float64Array(3),
+  specificForce: new Float64Array(3),
+});
+
+export class Swimmer {
+  readonly #options: SwimmerOptions;
+  readonly #lengthM: number;
+  readonly #frequency: SteppedSignal;
+  readonly #amplitude: SteppedSignal;
+  readonly #course: SteppedSignal;
+  /** Sets the wandering in when the body begins to move. */
+  readonly #gate: SteppedSignal;
+
+  // The present moment, shared by all places.
+  #timeS = Number.NaN;
+  readonly #drive = new WaveDrive();
+  readonly #attitude = new AttitudeMotion();
+  readonly #phaseJet = newJet();
+  readonly #amplitudeJet = newJet();
+  readonly #gateJet = newJet();
+
+  readonly #motion: PlaneMotion = { behind: newJet(), lateral: newJet(), angle: newJet() };
+  readonly #vector = new Float64Array(3);
+  readonly #bend = new Float64Array(4);
+
+  /** @throws BendwatchError COMMAND_INVALID for an amplitude under which the body would fold over */
+  constructor(lengthM: number, options: SwimmerOptions) {
+    const { restS, startS, changes } = options;
+    this.#options = options;
+    this.#lengthM = lengthM;
+    const start: Step = { atS: restS, overS: startS, to: options.amplitude };
+    const amplitudes = [start, ...stepsOf(changes, (change) => change.amplitude)];
+    for (const { to } of amplitudes) checkAmplitude(options.gait, to);
+    this.#amplitude = new SteppedSignal(0, amplitudes);
+    this.#frequency = new SteppedSignal(
+      options.frequencyHz,
+      stepsOf(changes, (change) => change.frequencyHz),
+    );
+    let heading = options.heading;
+    const courses = options.turns.map(({ atS, overS, by }): Step => {
+      heading += by;
+      return { atS, overS, to: heading };
+    });
+    this.#course = new SteppedSignal(options.heading, courses);
+    this.#gate = new SteppedSignal(0, [{ atS: restS, overS: startS, to: 1 }]);
+  }
+
+  /** A place on this body, made once and asked often. @param station 0 nose to 1 tail tip */
+  place(station: number): WavePlace {
+    return new WavePlace(this.#options.gait, this.#lengthM, station);
+  }
+
+  /** Writes what `place` does at `timeS` to `out`. */
+  kinematics(timeS: number, place: WavePlace, out: Kinematics): void {
+    this.#moveTo(timeS);
+    const { behind, lateral, angle } = this.#motion;
+    place.motion(this.#drive, this.#motion);
+    const attitude = this.#attitude;
+    const { orientation, position, angularVelocity, specificForce } = out;
+
+    position[0] = -behind.value;
+    position[1] = lateral.value;
+    position[2] = 0;
+    attitude.pointAcceleration(behind, lateral, specificForce);
+    rotate(position, attitude.orientation, position);
+    const up = this.#vector;
+    attitude.up(up);
+    for (let axis = 0; axis < 3; axis++) specificForce[axis] += STANDARD_GRAVITY * up[axis];
+
+    turnAboutZ(specificForce, -angle.value, specificForce);
+    turnAboutZ(attitude.angularVelocity, -angle.value, angularVelocity);
+    angularVelocity[2] += angle.rate;
+    setTurn(this.#bend, 3, angle.value);
+    multiply(orientation, attitude.orientation, this.#bend);
+  }
+
+  /**
+   * Writes the true midline to `out`: 3 per place, m, earth axes, relative to the first place.
+   * @param places nose first, as `place` gave them
+   */
+  midline(timeS: number, places: readonly WavePlace[], out: Float64Array): void {
+    this.#moveTo(timeS);
+    const { behind, lateral } = this.#motion;
+    const noseward = this.#vector;
+    let noseLateral = 0;
+    places.forEach((place, i) => {
+      place.motion(this.#drive, this.#motion);
+      if (i === 0) noseLateral = lateral.value;
+      noseward[0] = -behind.value;
+      noseward[1] = lateral.value - noseLateral;
+      noseward[2] = 0;
+      rotate(out, this.#attitude.orientation, noseward, 3 * i);
+    });
+  }
+
+  /** Writes the plane motion of `place` at `timeS` (angle and sway against the travel axis) to `out`. */
+  planeMotion(timeS: number, place: WavePlace, out: PlaneMotion): void {
+    this.#moveTo(timeS);
+    place.motion(this.#drive, out);
+  }
+
+  #moveTo(timeS: number): void {
+    if (timeS === this.#timeS) return;
+    this.#timeS = timeS;
+    const { headingWander, pitchWander, rollWander } = this.#options;
+    const phase = this.#phaseJet;
+    clear(phase);
+    this.#frequency.addTo(phase, timeS);
+    phase.acceleration = 2 * Math.PI * phase.rate;
+    phase.rate = 2 * Math.PI * phase.value;
+    phase.value = 2 * Math.PI * this.#frequency.integral(timeS);
+    clear(this.#amplitudeJet);
+    this.#amplitude.addTo(this.#amplitudeJet, timeS);
+    this.#drive.set(this.#amplitudeJet, phase);
+
+    const gate = this.#gateJet;
+    clear(gate);
+    this.#gate.addTo(gate, timeS);
+    const { heading, pitch, roll } = this.#attitude;
+    clear(heading);
+    clear(pitch);
+    clear(roll);
+    this.#course.addTo(heading, timeS);
+    addWander(heading, headingWander, gate, timeS);
+    addWander(pitch, pitchWander, gate, timeS);
+    addWander(roll, rollWander, gate, timeS);
+    this.#attitude.update();
+  }
+}
+
+function stepsOf(changes: readonly PaceChange[], pick: (change: PaceChange) => number | undefined): Step[] {
+  return changes.flatMap((change) => {
+    const to = pick(change);
+    return to === undefined ? [] : [{ atS: change.atS, overS: change.overS, to }];
+  });
+}
+
+/** out = v turned about z; out may be v. */
+export function turnAboutZ(v: Float64Array, angle: number, out: Float64Array): void {
+  const c = Math.cos(angle);
+  const s = Math.sin(angle);
+  const x = v[0];
+  const y = v[1];
+  out[0] = c * x - s * y;
+  out[1] = s * x + c * y;
+  out[2] = v[2];
+}
