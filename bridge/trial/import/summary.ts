@@ -62,12 +62,12 @@ export function formatImportSummary(summary: ImportSummary): string {
 
 function fileLines(file: FileSummary): string[] {
   const skipped = [
-    file.comments > 0 ? `${file.comments} comment lines` : "",
+    file.comments > 0 ? `comment lines: ${file.comments}` : "",
     file.ignored.length > 0 ? `columns ignored by the map: ${file.ignored.join(", ")}` : "",
     file.unmentioned.length > 0 ? `columns the map does not mention: ${file.unmentioned.join(", ")}` : "",
   ].filter((part) => part !== "");
   return [
-    `${file.path}: ${file.rows} rows${file.badCells > 0 ? `, ${file.badCells} cells that are no numbers` : ""}`,
+    `${file.path}: ${file.rows} rows${file.badCells > 0 ? `; cells that are no numbers, taken as lost: ${file.badCells}` : ""}`,
     ...skipped.map((part) => `  left out: ${part}`),
   ];
 }

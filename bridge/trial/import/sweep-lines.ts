@@ -14,10 +14,13 @@ export interface ImportWriter {
   bytes(chunk: Uint8Array, hostTimeMs: number): void;
 }
 
+/** link's encodeTextLine: one sweep as a line of the text layout; parts whose presence bit is off are left empty. */
+export type LineEncoder = (sweep: Sweep, models: Rig["models"]) => string;
+
 export interface SweepLineOptions {
   readonly columnMap: ColumnMap;
   readonly rig: Rig;
-  readonly encodeLine: (sweep: Sweep) => Uint8Array;
+  readonly encodeLine: LineEncoder;
 }
 
 /** Turns merged rows into sweeps, hands each over as one line of the text layout, and counts what they hold. */
@@ -34,6 +37,7 @@ export class SweepLines {
   #startUs = 0;
   #lastUs = 0;
 
+  /** @param places the rig's sensors (counting from 0) that each table holds */
   constructor(
     options: SweepLineOptions,
     places: readonly (readonly number[])[],
@@ -57,6 +61,7 @@ export class SweepLines {
   }
 
   write({ timeUs, rows }: MergedRow): void {
+    const { encodeLine, rig } = this.#options;
     if (this.#sweeps === 0) this.#startUs = timeUs;
     else this.#sequence += sequenceStep(timeUs - this.#lastUs, this.#grid);
     this.#lastUs = timeUs;
@@ -78,7 +83,7 @@ export class SweepLines {
         );
       });
     });
-    this.#writer.bytes(this.#options.encodeLine(sweep), sweep.hostTimeMs);
+    this.#writer.bytes(Buffer.from(encodeLine(sweep, rig.models)), sweep.hostTimeMs);
   }
 
   #count(sensor: number, state: "present" | "held" | "lost" | "absent", bits: number): void {

@@ -64,6 +64,7 @@ function parserOptions(format: ColumnMap["format"]): Options {
     trim: true,
     skip_empty_lines: true,
     relax_column_count: true,
+    relax_quotes: true,
     max_record_size: MAX_ROW_CHARACTERS,
   };
 }

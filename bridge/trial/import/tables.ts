@@ -8,20 +8,18 @@
  */
 import type { ColumnMap } from "../../rig/column-map.ts";
 import type { Rig } from "../../rig/load.ts";
-import type { Sweep } from "../../sweep.ts";
 import { findGrid } from "./grid.ts";
 import { mergeTables } from "./merge.ts";
 import { checkMapFitsRig, placeFiles, type TableFile } from "./places.ts";
 import type { FileSummary, ImportSummary } from "./summary.ts";
-import { type ImportWriter, SweepLines } from "./sweep-lines.ts";
+import { type ImportWriter, type LineEncoder, SweepLines } from "./sweep-lines.ts";
 import { Table } from "./table.ts";
 
 export interface ImportOptions {
   readonly files: readonly TableFile[];
   readonly columnMap: ColumnMap;
   readonly rig: Rig;
-  /** One sweep as a line of the text layout, sensor axes in SI units; parts whose presence bit is off left empty. */
-  readonly encodeLine: (sweep: Sweep) => Uint8Array;
+  readonly encodeLine: LineEncoder;
 }
 
 /** The rig to store with the imported trial: the given one, its hub sending text lines. */
