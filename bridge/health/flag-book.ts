@@ -111,4 +111,9 @@ export class FlagBook {
     if (this.#ended.length > ENDED_KEPT) this.#ended.pop();
     for (const listener of this.#listeners) listener.onEnded?.(flag);
   }
+
+  /** The run is over: whatever is open ends with it. @param endS hub time, s */
+  endAll(endS: number): void {
+    for (const flag of [...this.#open]) this.clear(flag.kind, flag.sensor, endS);
+  }
 }

@@ -1,0 +1,106 @@
+/**
+ * Health: whether every sensor can be believed. The detectors, in the order they run; each looks at a sweep, sets its
+ * condition bits and writes its flags into the book.
+ *
+ * To add one: a file with a class that has `observe(sweep)`, its kind in wire/flag.ts, its sentence in advice.ts, its
+ * threshold with a reason in rig/thresholds.ts and config/thresholds.json, a line below, and a test that injects exactly
+ * that fault and expects exactly that flag.
+ */
+import type { Sweep } from "../sweep.ts";
+import { CorruptPackets } from "./corrupt-packets.ts";
+import { Delivery } from "./delivery.ts";
+import { Headroom } from "./headroom.ts";
+import { MagneticInterference } from "./magnetic.ts";
+import { HubRestarts, ReadErrors } from "./read-errors.ts";
+import { Saturation } from "./saturation.ts";
+import type { HealthSetup } from "./setup.ts";
+import { Silence } from "./silence.ts";
+import { StuckAxes } from "./stuck.ts";
+
+export class Health {
+  readonly #silence: Silence;
+  readonly #restarts: HubRestarts;
+  readonly #corrupt: CorruptPackets;
+  readonly #readErrors: ReadErrors;
+  readonly #delivery: Delivery;
+  readonly #saturation: Saturation;
+  readonly #headroom: Headroom;
+  readonly #stuck: StuckAxes;
+  readonly #magnetic: MagneticInterference;
+
+  constructor(setup: HealthSetup) {
+    this.#silence = new Silence(setup);
+    this.#restarts = new HubRestarts(setup);
+    this.#corrupt = new CorruptPackets(setup);
+    this.#readErrors = new ReadErrors(setup);
+    this.#delivery = new Delivery(setup);
+    this.#saturation = new Saturation(setup);
+    this.#headroom = new Headroom(setup);
+    this.#stuck = new StuckAxes(setup);
+    this.#magnetic = new MagneticInterference(setup);
+  }
+
+  /**
+   * Looks at one admitted sweep (late and duplicate ones never get here), calibrated but not yet fused; sets
+   * `sweep.conditions`.
+   * @param orientations body axes to earth as fused with the sweep before, scalar first, sensors x 4
+   */
+  observe(sweep: Sweep, orientations: Float64Array): void {
+    // What explains a loss comes before the loss; what breaks a reading comes before what is read from it.
+    const restarted = this.#restarts.observe(sweep);
+    const endsSilence = this.#silence.observe(sweep);
+    const uncorrupted = this.#corrupt.observe(sweep);
+    this.#readErrors.observe(sweep);
+    this.#delivery.observe(sweep, endsSilence || restarted ? 0 : uncorrupted);
+    this.#saturation.observe(sweep);
+    this.#headroom.observe(sweep);
+    this.#stuck.observe(sweep);
+    this.#magnetic.observe(sweep, orientations);
+  }
+
+  /** No sweep has come for a while, or one has again; saying the same again changes nothing. @param timeS hub time, s */
+  linkSilent(silent: boolean, timeS: number): void {
+    this.#silence.linkSilent(silent, timeS);
+    if (silent) this.#delivery.silent();
+  }
+
+  /** So many more packets were unreadable: told before the sweep that follows them, with its hub time, s. */
+  corruption(deltaBad: number, timeS: number): void {
+    this.#corrupt.corruption(deltaBad, timeS);
+  }
+
+  /** The hub started anew: told before its first sweep, with that sweep's hub time, s. */
+  hubRestarted(timeS: number): void {
+    this.#restarts.restarted(timeS);
+  }
+
+  /** Share of the gyroscope's range that the last second left free, per sensor, 0 .. 1. */
+  get gyroHeadroom(): Float64Array {
+    return this.#headroom.gyro;
+  }
+
+  /** The same for the accelerometer. */
+  get accelHeadroom(): Float64Array {
+    return this.#headroom.accel;
+  }
+
+  /** Share by which the magnetic field is off, per sensor; NaN without magnetometer or before there is a reference. */
+  get fieldOff(): Float64Array {
+    return this.#magnetic.fieldOff;
+  }
+
+  /** Share of the readings due that came over the last 60 s, per sensor, 0 .. 1. */
+  get delivered60(): Float64Array {
+    return this.#delivery.delivered60;
+  }
+
+  /** Share of all readings lost over the last 60 s, 0 .. 1. */
+  get lostShare60(): number {
+    return this.#delivery.lostShare60;
+  }
+
+  /** Sweeps that came in the last second; 0 while the link is silent. */
+  get sweepsPerS(): number {
+    return this.#delivery.sweepsPerS;
+  }
+}
