@@ -45,24 +45,11 @@ export interface Manifest extends Omit<z.infer<typeof manifestSchema>, "rig"> {
   readonly rig: Rig;
 }
 
-/** The bytes of trial.json. */
-export function encodeManifest(manifest: Manifest): Buffer {
-  return Buffer.from(`${JSON.stringify(manifest, null, 2)}\n`);
-}
-
-/** Writes trial.json into a folder that has none. @throws BendwatchError TRIAL_EXISTS; the system's error otherwise */
-export function writeManifest(folder: string, manifest: Manifest): void {
-  const path = join(folder, MANIFEST_FILE);
-  try {
-    writeFileSync(path, encodeManifest(manifest), { flag: "wx", flush: true });
-  } catch (cause) {
-    if ((cause as NodeJS.ErrnoException).code !== "EEXIST") throw cause;
-    throw new BendwatchError(
-      "TRIAL_EXISTS",
-      { where: path, found: "a trial already there", expected: "a folder without one" },
-      { cause },
-    );
-  }
+/** Writes trial.json, which must not exist, through to the disk; returns its bytes. @throws the system's error */
+export function writeManifest(folder: string, manifest: Manifest): Buffer {
+  const bytes = Buffer.from(`${JSON.stringify(manifest, null, 2)}\n`);
+  writeFileSync(join(folder, MANIFEST_FILE), bytes, { flag: "wx", flush: true });
+  return bytes;
 }
 
 /**

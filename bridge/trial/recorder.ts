@@ -4,26 +4,16 @@
  * most the last second. When writing fails the monitor goes on: data waits in a queue of limited size, writing is tried
  * again once a second, and what did not fit the queue is stated in the recording as a gap. Nothing is dropped silently.
  */
-import { mkdir, open } from "node:fs/promises";
-import { basename, dirname, join } from "node:path";
-import { BendwatchError } from "../errors.ts";
+import { basename, join } from "node:path";
 import type { ByteSink, LinkState } from "../link/source.ts";
 import type { Rig } from "../rig/load.ts";
 import type { Flag, Mark } from "../wire/flag.ts";
 import type { StatusMessage } from "../wire/messages.ts";
 import { AppendFile, type OpenAppend, openAppend } from "./append-file.ts";
-import {
-  encodeManifest,
-  FLAGS_FILE,
-  MANIFEST_FILE,
-  MARKS_FILE,
-  type Manifest,
-  type Origin,
-  PACKETS_FILE,
-  SEALS_FILE,
-} from "./manifest.ts";
+import { FLAGS_FILE, MARKS_FILE, type Manifest, type Origin, PACKETS_FILE, SEALS_FILE } from "./manifest.ts";
 import { encodeRecord, type Gap, MAX_CHUNK_BYTES, type TrialRecord } from "./records.ts";
 import { manifestSeal, SealChain } from "./seals.ts";
+import { createTrialFolder, syncFolder, unwritable } from "./trial-folder.ts";
 
 /** Memory goes to the file this often, or as soon as WRITE_BYTES wait. */
 const WRITE_INTERVAL_MS = 200;
@@ -86,14 +76,8 @@ export class TrialRecorder implements Pick<ByteSink, "bytes" | "linkState"> {
   static async create(options: RecorderOptions): Promise<TrialRecorder> {
     const { folder } = options;
     const openFile = options.openFile ?? openAppend;
-    await makeFolder(folder);
+    const first = manifestSeal(createTrialFolder(folder, manifestOf(options)));
     try {
-      const manifest = encodeManifest(manifestOf(options));
-      const handle = await open(join(folder, MANIFEST_FILE), "wx");
-      await handle.writeFile(manifest);
-      await handle.sync();
-      await handle.close();
-      const first = manifestSeal(manifest);
       const chain = new SealChain(first);
       const fileOf = async (name: string, onWritten?: (bytes: Uint8Array) => void) =>
         new AppendFile(await openFile(join(folder, name)), onWritten);
@@ -104,7 +88,7 @@ export class TrialRecorder implements Pick<ByteSink, "bytes" | "linkState"> {
         flags: await fileOf(FLAGS_FILE),
       };
       files.seals.offerLine(first);
-      await syncFolder(folder);
+      syncFolder(folder);
       return new TrialRecorder(options, files, chain);
     } catch (cause) {
       throw unwritable(folder, cause as Error);
@@ -266,38 +250,4 @@ function manifestOf(options: RecorderOptions): Manifest {
     settings: options.settings ?? {},
     rig: options.rig,
   };
-}
-
-async function makeFolder(folder: string): Promise<void> {
-  await mkdir(dirname(folder), { recursive: true }).catch((cause) => {
-    throw unwritable(folder, cause);
-  });
-  try {
-    await mkdir(folder);
-  } catch (cause) {
-    if ((cause as NodeJS.ErrnoException).code !== "EEXIST") throw unwritable(folder, cause as Error);
-    throw new BendwatchError(
-      "TRIAL_EXISTS",
-      { where: folder, found: "something of that name", expected: "a name not taken yet" },
-      { cause },
-    );
-  }
-}
-
-function unwritable(folder: string, cause: Error): BendwatchError {
-  return new BendwatchError(
-    "TRIAL_UNWRITABLE",
-    { where: folder, found: cause.message, expected: "a folder that can be written" },
-    { cause },
-  );
-}
-
-/** Puts the new folder's entries on the disk, where the system can do that. */
-async function syncFolder(folder: string): Promise<void> {
-  try {
-    const handle = await open(folder, "r");
-    await handle.sync().finally(() => handle.close());
-  } catch {
-    // Windows cannot open a folder; its file systems journal the entries.
-  }
 }
