@@ -1,5 +1,5 @@
 /** For the tests of link/: a sink that keeps copies of all it is given, and bytes from hexadecimal text. */
-import type { PacketDecoder, PacketSink } from "../../bridge/link/packets.ts";
+import type { PacketSink } from "../../bridge/link/packets.ts";
 import type { Sweep } from "../../bridge/sweep.ts";
 
 export type Heard = readonly [kind: string, record: unknown];
@@ -44,7 +44,7 @@ export function join(...parts: readonly Uint8Array[]): Uint8Array {
 
 /** Pushes `bytes` cut at the given places; every chunk arrives at host time 0. */
 export function pushCut(
-  decoder: Pick<PacketDecoder, "push">,
+  decoder: { push(chunk: Uint8Array, hostTimeMs: number): void },
   bytes: Uint8Array,
   cuts: readonly number[],
 ): void {
