@@ -8,53 +8,72 @@
  */
 import type { ColumnMap } from "../../rig/column-map.ts";
 import type { Rig } from "../../rig/load.ts";
-import { findGrid } from "./grid.ts";
+import { findGrid, type Grid } from "./grid.ts";
 import { mergeTables } from "./merge.ts";
 import { checkMapFitsRig, placeFiles, type TableFile } from "./places.ts";
 import type { FileSummary, ImportSummary } from "./summary.ts";
 import { type ImportWriter, type LineEncoder, SweepLines } from "./sweep-lines.ts";
 import { Table } from "./table.ts";
 
-export interface ImportOptions {
+export interface ImportSources {
   readonly files: readonly TableFile[];
   readonly columnMap: ColumnMap;
   readonly rig: Rig;
+}
+
+export interface ImportOptions extends ImportSources {
   readonly encodeLine: LineEncoder;
 }
 
 /** The rig to store with the imported trial: the given one, its hub sending text lines. */
 export function importedRig(rig: Rig): Rig {
-  return Object.freeze({ ...rig, hub: Object.freeze({ ...rig.hub, layout: "text" }) });
+  return Object.freeze({ ...rig, hub: Object.freeze({ ...rig.hub, layout: "text" }), packetLayout: null });
 }
 
 /**
- * Imports `files` by `columnMap` as the readings of `rig`'s sensors.
- * @throws BendwatchError TABLE_INVALID naming file, line, column, found and expected, before anything is written
+ * Reads all tables once and writes nothing: call it before a trial is created, so that a wrong table leaves none behind.
+ * @returns the tables' grid of times, for importTables
+ * @throws BendwatchError TABLE_INVALID naming file, line, column, found and expected
  */
-export async function importTables(options: ImportOptions, writer: ImportWriter): Promise<ImportSummary> {
-  const { files, columnMap, rig } = options;
+export async function checkTables(options: ImportSources): Promise<Grid> {
+  const { columnMap, rig } = options;
   checkMapFitsRig(columnMap, rig);
-  const places = placeFiles(files, columnMap, rig);
-  const open = () => files.map((file, i) => new Table(file.path, places[i]!, columnMap, rig));
-
   const times: number[][] = [];
-  for (const table of open()) {
+  for (const table of openTables(options)) {
     const own: number[] = [];
     for await (const row of table.read()) own.push(row.timeUs);
     times.push(own);
   }
-  const grid = findGrid(times, 1e6 / rig.hub.rateHz);
+  return findGrid(times, 1e6 / rig.hub.rateHz);
+}
 
+/**
+ * Imports `files` by `columnMap` as the readings of `rig`'s sensors.
+ * @param checked what checkTables found; left out, the tables are checked first, before anything is written
+ * @throws BendwatchError TABLE_INVALID
+ */
+export async function importTables(
+  options: ImportOptions,
+  writer: ImportWriter,
+  checked?: Grid,
+): Promise<ImportSummary> {
+  const { files, columnMap, rig } = options;
+  const grid = checked ?? (await checkTables(options));
   const { mergeToleranceMs } = columnMap;
   const toleranceUs = mergeToleranceMs === undefined ? grid.intervalUs / 3 : mergeToleranceMs * 1000;
-  const tables = open();
+  const tables = openTables(options);
   const rows = mergeTables(
     tables.map((table) => table.read()),
     toleranceUs,
   );
-  const lines = new SweepLines(options, places, grid, writer);
+  const lines = new SweepLines(options, placeFiles(files, columnMap, rig), grid, writer);
   for await (const merged of rows) lines.write(merged);
   return lines.summary(tables.map((table, i) => fileSummary(files[i]!.path, table)));
+}
+
+function openTables({ files, columnMap, rig }: ImportSources): Table[] {
+  const places = placeFiles(files, columnMap, rig);
+  return files.map((file, i) => new Table(file.path, places[i]!, columnMap, rig));
 }
 
 function fileSummary(path: string, table: Table): FileSummary {

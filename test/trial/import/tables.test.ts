@@ -4,7 +4,7 @@ import type { PacketSink } from "../../../bridge/link/packets.ts";
 import { encodeTextLine, TextLineDecoder } from "../../../bridge/link/text.ts";
 import { HAS_INERTIAL, HAS_MAG } from "../../../bridge/sweep.ts";
 import { IMPORT_EPOCH_MS } from "../../../bridge/trial/import/sweep-lines.ts";
-import { importedRig, importTables } from "../../../bridge/trial/import/tables.ts";
+import { checkTables, importedRig, importTables } from "../../../bridge/trial/import/tables.ts";
 import { HEADER, imported, mapOf, NINE_AXIS, rigOf, row, tableOf } from "./fixtures.ts";
 
 const ALL = HAS_INERTIAL | HAS_MAG;
@@ -114,13 +114,14 @@ test("nothing is written when the last row of the last table is wrong", async ()
     rig: rigOf(2),
     encodeLine: encodeTextLine,
   };
+  await expect(checkTables(options)).rejects.toThrow("line 4");
   await expect(importTables(options, { bytes: (chunk) => written.push(chunk) })).rejects.toThrow("line 4");
   expect(written).toEqual([]);
 });
 
 test("the trial's rig is the given one with the text layout", () => {
   const rig = rigOf(2);
-  expect(importedRig(rig)).toEqual({ ...rig, hub: { ...rig.hub, layout: "text" } });
+  expect(importedRig(rig)).toEqual({ ...rig, hub: { ...rig.hub, layout: "text" }, packetLayout: null });
   expect(rig.hub.layout).toBe("native");
 });
 
