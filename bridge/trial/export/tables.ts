@@ -1,0 +1,147 @@
+/**
+ * The tables of an export: columns, types, units and how many decimals. The decimals keep more than the measurement
+ * knows, and little enough to read:
+ *
+ *     time         6   1 µs, the hub's tick
+ *     mm           3   1 µm, far below what the method resolves
+ *     quaternion   7   rounding turns an orientation by at most 0.00002 degrees
+ *     degrees      3   finer than any sensor's noise
+ *     Hz           4   a tailbeat of 10 s timed to 1 ms differs in the fourth place
+ */
+
+/** Table Schema (Frictionless, v1) types we use. */
+export type FieldType = "number" | "integer" | "string" | "boolean";
+
+export interface Column {
+  readonly name: string;
+  readonly type: FieldType;
+  /** Unit symbol (SI, or deg, mm); "1" for pure numbers; absent for texts and counts. */
+  readonly unit?: string;
+  readonly description: string;
+}
+
+export const DECIMALS = { time: 6, mm: 3, quaternion: 7, degrees: 3, frequency: 4 } as const;
+
+/** Stations of the midline table, evenly spaced from nose to tail tip. */
+export const STATION_COUNT = 41;
+
+const seconds = (name: string, description: string): Column => ({
+  name,
+  type: "number",
+  unit: "s",
+  description,
+});
+const number = (name: string, unit: string, description: string): Column => ({
+  name,
+  type: "number",
+  unit,
+  description,
+});
+const text = (name: string, description: string): Column => ({ name, type: "string", description });
+const integer = (name: string, description: string): Column => ({ name, type: "integer", description });
+
+const hubTime = seconds("time_s", "Hub time since the first sweep.");
+
+const AXES = [
+  ["x_mm", "east"],
+  ["y_mm", "north"],
+  ["z_mm", "up"],
+] as const;
+
+export interface Table {
+  readonly name: string;
+  readonly description: string;
+  readonly columns: readonly Column[];
+}
+
+export const MIDLINE: Table = {
+  name: "midline",
+  description: "Where the midline is, one row a sweep: earth axes, the nose at the origin.",
+  columns: [
+    hubTime,
+    ...Array.from({ length: STATION_COUNT }, (_, i) =>
+      AXES.map(([axis, direction]) =>
+        number(
+          `${axis}_${String(i).padStart(3, "0")}`,
+          "mm",
+          `How far ${direction} of the nose the midline is at ${((100 * i) / (STATION_COUNT - 1)).toFixed(1)} % of body length.`,
+        ),
+      ),
+    ).flat(),
+  ],
+};
+
+export const SENSORS: Table = {
+  name: "sensors",
+  description: "Orientation of each sensor (body axes x nose, y left, z up, to earth axes east, north, up).",
+  columns: [
+    hubTime,
+    text("sensor", "Name of the sensor."),
+    ...["qw", "qx", "qy", "qz"].map((name) =>
+      number(name, "1", "Unit quaternion, Hamilton, scalar part qw, body axes to earth."),
+    ),
+    number(
+      "yaw_deg",
+      "deg",
+      "Turn about the vertical from nose east; left (anticlockwise from above) positive.",
+    ),
+    number("pitch_deg", "deg", "Elevation of the nose; nose-up positive."),
+    number("roll_deg", "deg", "Turn about the body's long axis; right side down positive."),
+    text("trust", "good, settling, bridged, clipped, heading unaided or lost."),
+    {
+      name: "bridged",
+      type: "boolean",
+      description: "1 where no reading arrived and the orientation is a prediction, 0 otherwise.",
+    },
+  ],
+};
+
+export const FLAGS: Table = {
+  name: "flags",
+  description: "Conditions the monitor raised.",
+  columns: [
+    text("kind", "What was wrong."),
+    text("sensor", "Name of the sensor; empty for the whole rig."),
+    text("severity", "notice, caution or alarm."),
+    seconds("start_s", "Hub time of the onset."),
+    seconds("end_s", "Hub time of the end; empty where it lasted to the trial's end."),
+    text("detail", "What was measured."),
+  ],
+};
+
+export const GAIT: Table = {
+  name: "gait",
+  description: "One row a tailbeat cycle.",
+  columns: [
+    integer("cycle", "Counts cycles from 1."),
+    seconds("start_s", "Hub time of the cycle's start."),
+    seconds("end_s", "Hub time of the cycle's end."),
+    number("frequency_hz", "Hz", "Tailbeat frequency."),
+    number(
+      "tail_amplitude_mm",
+      "mm",
+      "Peak to peak, of the tail tip across the travel axis, against the nose.",
+    ),
+  ],
+};
+
+export const MARKS: Table = {
+  name: "marks",
+  description: "Notes made during the trial.",
+  columns: [
+    hubTime,
+    text("text", "The note."),
+    text("from", "Who made it: operator, hub button or trial (replayed)."),
+  ],
+};
+
+export const SYNC: Table = {
+  name: "sync",
+  description: "Camera frame pulses.",
+  columns: [hubTime, integer("edge", "The hub's count of pulses.")],
+};
+
+export const TABLES: readonly Table[] = [MIDLINE, SENSORS, FLAGS, GAIT, MARKS, SYNC];
+
+/** Trust states by their number in sweep.ts, as written in sensors.csv. */
+export const TRUST_WORDS = ["good", "settling", "bridged", "clipped", "heading unaided", "lost"] as const;

@@ -1,0 +1,75 @@
+/** An export of an invented trial, for the tests of its tables and of its description. */
+import { join } from "node:path";
+import { emptyCounters } from "../../../bridge/link/packets.ts";
+import { loadRig } from "../../../bridge/rig/load.ts";
+import { TRUST } from "../../../bridge/sweep.ts";
+import { type ExportSummary, ExportWriter } from "../../../bridge/trial/export/export-writer.ts";
+import { STATION_COUNT } from "../../../bridge/trial/export/tables.ts";
+import type { Flag } from "../../../bridge/wire/flag.ts";
+import { temporaryFolder } from "../fixtures.ts";
+
+export const rig = loadRig("ribbon-foil");
+export const SENSORS = rig.sensors.length;
+
+export const summary: ExportSummary = {
+  startedAt: "2026-06-01T09:30:00.000Z",
+  notes: "",
+  lostSweeps: 5,
+  counters: { ...emptyCounters(), good: 20 },
+  settings: { heading: "magnetic" },
+};
+
+const flag: Flag = {
+  id: 2,
+  kind: "low headroom",
+  sensor: 3,
+  severity: "caution",
+  startS: 0.05,
+  endS: null,
+  detail: "7 % left on y",
+  advice: "Use a wider range.",
+};
+
+export function createWriter(folder: string, overwrite = false): ExportWriter {
+  return new ExportWriter({ folder, trialName: "Trial 7", rig, softwareVersion: "0.1.0", overwrite });
+}
+
+/** Sweeps of a straight body bending a little more each sweep, all sensors turned left by 90 degrees. */
+export function writeSweeps(writer: ExportWriter, count: number): void {
+  const midline = new Float64Array(STATION_COUNT * 3);
+  const orientations = new Float64Array(SENSORS * 4);
+  const trust = new Uint8Array(SENSORS).fill(TRUST.GOOD);
+  const bridged = new Uint8Array(SENSORS);
+  trust[1] = TRUST.HEADING_UNAIDED;
+  bridged[2] = 1;
+  for (let sensor = 0; sensor < SENSORS; sensor++) {
+    orientations[4 * sensor] = Math.SQRT1_2;
+    orientations[4 * sensor + 3] = Math.SQRT1_2;
+  }
+  for (let n = 0; n < count; n++) {
+    for (let i = 0; i < STATION_COUNT; i++) {
+      midline[3 * i] = -0.016 * i;
+      midline[3 * i + 1] = 0.0001 * n * i;
+    }
+    writer.sweep(n / 100, midline, orientations, trust, bridged);
+  }
+}
+
+/** All tables, some of them with awkward texts. */
+export function writeAll(folder: string, overwrite = false): void {
+  const writer = createWriter(folder, overwrite);
+  writeSweeps(writer, 20);
+  writer.flag(flag);
+  writer.flag({ ...flag, id: 1, kind: "link silent", sensor: -1, detail: "=gone, 0.4 s" });
+  writer.flag({ ...flag, endS: 0.15, severity: "alarm" });
+  writer.beat({ startS: 0.02, endS: 0.145, frequencyHz: 8, tailAmplitudeM: 0.0451234 });
+  writer.mark({ timeS: 0.1, text: 'said "go"', from: "operator" });
+  writer.sync(0.03, 17);
+  writer.finish(summary);
+}
+
+export function exported(): string {
+  const folder = join(temporaryFolder(), "export");
+  writeAll(folder);
+  return folder;
+}
