@@ -5,16 +5,13 @@
 import { NativeEncoder } from "../link/native-encoder.ts";
 import type { HubHello } from "../link/packets.ts";
 import type { Rig } from "../rig/load.ts";
+import { OutPort } from "./out-port.ts";
 import type { SimulatedRig } from "./simulated-rig.ts";
 
 const HELLO_PERIOD_S = 1;
 const STATUS_PERIOD_S = 2;
 const REFERENCE_PERIOD_S = 0.02;
 
-/** Bits on the wire for one byte: start, eight data, stop. */
-const BITS_PER_BYTE = 10;
-/** What the hub can hold back while the port is busy; packets that do not fit are lost, as on a real hub. */
-const OUT_BUFFER_BYTES = 16_384;
 /** Status fault bit: buffer overrun (as in link/packets.ts). */
 const OVERRUN = 4;
 
@@ -50,15 +47,11 @@ export class SimulatedHub {
   #tickAtOriginUs: number;
   #edges = 0;
   #overrun = false;
-
-  readonly #out = new Uint8Array(OUT_BUFFER_BYTES);
-  #held = 0;
-  /** What advanceTo gives out. */
-  readonly #sent = new Uint8Array(OUT_BUFFER_BYTES);
-  #sentUntilS = 0;
+  readonly #port: OutPort;
 
   constructor({ rig, simulated, firstTickUs, syncHz }: SimulatedHubOptions) {
     this.#rig = rig;
+    this.#port = new OutPort(rig.hub.baudRate);
     this.#simulated = simulated;
     this.#tickAtOriginUs = firstTickUs;
     this.#restartsS = simulated.effects.flatMap(({ restartS }) => restartS ?? []).sort((a, b) => a - b);
@@ -90,7 +83,7 @@ export class SimulatedHub {
       next.send(dueS);
       next.count++;
     }
-    return this.#drain(timeS);
+    return this.#port.take(timeS);
   }
 
   /** The routine whose turn is next; of those due together, the first listed. */
@@ -149,22 +142,6 @@ export class SimulatedHub {
     const { effects } = this.#simulated;
     for (const effect of effects) effect.damage?.(timeS, frame);
     if (effects.some((effect) => effect.isDark?.(timeS))) return;
-    if (this.#held + frame.length > OUT_BUFFER_BYTES) {
-      this.#overrun = true;
-      return;
-    }
-    this.#out.set(frame, this.#held);
-    this.#held += frame.length;
-  }
-
-  #drain(timeS: number): Uint8Array {
-    const bytesPerS = this.#rig.hub.baudRate / BITS_PER_BYTE;
-    const room = Math.floor(timeS * bytesPerS) - Math.floor(this.#sentUntilS * bytesPerS);
-    this.#sentUntilS = timeS;
-    const count = Math.min(this.#held, room);
-    this.#sent.set(this.#out.subarray(0, count));
-    this.#out.copyWithin(0, count, this.#held);
-    this.#held -= count;
-    return this.#sent.subarray(0, count);
+    if (!this.#port.put(timeS, frame)) this.#overrun = true;
   }
 }
