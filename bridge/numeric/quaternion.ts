@@ -85,6 +85,39 @@ export function rotate(out: Slots, q: Slots, v: Slots, outAt = 0, qAt = 0, vAt =
   out[outAt + 2] = vz + w * tz + x * ty - y * tx;
 }
 
+/** out (9 slots, by rows) = the rotation matrix of the unit quaternion q: out · v is v rotated by q. */
+export function toMatrix(out: Slots, q: Slots, outAt = 0, qAt = 0): void {
+  const w = q[qAt]!;
+  const x = q[qAt + 1]!;
+  const y = q[qAt + 2]!;
+  const z = q[qAt + 3]!;
+  out[outAt] = 1 - 2 * (y * y + z * z);
+  out[outAt + 1] = 2 * (x * y - w * z);
+  out[outAt + 2] = 2 * (x * z + w * y);
+  out[outAt + 3] = 2 * (x * y + w * z);
+  out[outAt + 4] = 1 - 2 * (x * x + z * z);
+  out[outAt + 5] = 2 * (y * z - w * x);
+  out[outAt + 6] = 2 * (x * z - w * y);
+  out[outAt + 7] = 2 * (y * z + w * x);
+  out[outAt + 8] = 1 - 2 * (x * x + y * y);
+}
+
+/**
+ * out = q with its length brought back to one, for a quaternion already within rounding of it: one Newton step for
+ * 1/|q|, which squares the error.
+ */
+export function keepUnit(out: Slots, q: Slots, outAt = 0, qAt = 0): void {
+  const w = q[qAt]!;
+  const x = q[qAt + 1]!;
+  const y = q[qAt + 2]!;
+  const z = q[qAt + 3]!;
+  const scale = 1.5 - 0.5 * (w * w + x * x + y * y + z * z);
+  out[outAt] = scale * w;
+  out[outAt + 1] = scale * x;
+  out[outAt + 2] = scale * y;
+  out[outAt + 3] = scale * z;
+}
+
 /**
  * out = exp of a rotation vector (3 slots, rad): a turn by its length about its direction. Exact for any length; a small
  * one uses the series of sine and cosine, so nothing is divided by a length near zero.
