@@ -9,7 +9,7 @@ import {
   type CompiledLayout,
   type FramingRule,
 } from "./declared-readers.ts";
-import { TYPE_BYTES, type Unwrapper } from "./numbers.ts";
+import { TYPE_BYTES } from "./numbers.ts";
 
 /** Reports one thing that does not hold together. */
 export type Report = (where: string, found: string, expected: string) => void;
@@ -26,8 +26,8 @@ export interface LayoutContext {
   readonly maxBytes: number;
   /** Length of all frames, where they have one. */
   readonly fixedBytes: number | null;
-  /** One clock: ticks of the same form are followed together, whichever packet they come in. */
-  readonly clocks: Map<string, Unwrapper>;
+  /** Registers a counter that starts over at `size`; the same name and size give the same counter. */
+  readonly counter: (name: string, size: number) => number;
   readonly report: Report;
 }
 
@@ -40,6 +40,7 @@ export function compileLayout(layout: PacketLayout, sensorCount: number): Compil
   const report: Report = (where, found, expected) => {
     problems.push({ where: `layout "${layout.name}", ${where}`, found, expected });
   };
+  const counters: { readonly name: string; readonly size: number }[] = [];
   const checksum = checksumRule(layout);
   const framing = framingRule(layout, report);
   const isLine = framing.kind === "line";
@@ -51,14 +52,17 @@ export function compileLayout(layout: PacketLayout, sensorCount: number): Compil
     tailBytes: isLine || checksum === null ? 0 : checksum.bytes + checksum.trailingBytes,
     maxBytes: isLine ? maxBytes * COLUMN_BYTES : maxBytes,
     fixedBytes: layout.framing.kind === "fixed" ? layout.framing.bytes : null,
-    clocks: new Map(),
+    counter: (name, size) => {
+      const known = counters.findIndex((c) => c.name === name && c.size === size);
+      return known >= 0 ? known : counters.push({ name, size }) - 1;
+    },
     report,
   };
   const packets = layout.packets.map((packet, i) =>
     new PacketCompiler(packet, `packets[${i}]`, context).compile(),
   );
   if (problems.length > 0) throw new BendwatchError("CONFIG_INVALID", problems);
-  return { name: layout.name, framing, checksum, packets };
+  return { name: layout.name, framing, checksum, packets, counterSizes: counters.map((c) => c.size) };
 }
 
 function checksumRule({ checksum, endian }: PacketLayout): ChecksumRule | null {

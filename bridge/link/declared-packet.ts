@@ -14,7 +14,7 @@ import {
   type SensorIndexReader,
   type StatusReader,
 } from "./declared-readers.ts";
-import { type Place, TYPE_BYTES, Unwrapper, wrapOf } from "./numbers.ts";
+import { type Place, TYPE_BYTES, wrapOf } from "./numbers.ts";
 
 /** A field of the given kinds. */
 type Field<W extends PacketField["what"]> = Extract<PacketField, { what: W }>;
@@ -120,13 +120,11 @@ export class PacketCompiler {
     const { field, where } = listed;
     const place = this.#place(field, where);
     const size = field.wrapsAt ?? (this.#context.isLine ? 0 : wrapOf(place.type));
-    if (field.what === "sequence") return { ...place, factor: 1, unwrapper: new Unwrapper(size) };
+    const { counter } = this.#context;
+    if (field.what === "sequence") return { ...place, factor: 1, counter: counter(this.#where, size) };
+    // The hub has one clock: ticks of one form are followed together, whichever packets they come in.
     const factor = field.scale * unitFactor("tick", field.unit);
-    const { clocks } = this.#context;
-    const form = `${size} ${factor}`;
-    const unwrapper = clocks.get(form) ?? new Unwrapper(size);
-    clocks.set(form, unwrapper);
-    return { ...place, factor, unwrapper };
+    return { ...place, factor, counter: counter(`tick ${factor}`, size) };
   }
 
   #id(): PacketReader["id"] {

@@ -6,7 +6,7 @@
  */
 import type { Checksum } from "./checksum.ts";
 import type { LengthRule } from "./length-framing.ts";
-import type { Place, Unwrapper } from "./numbers.ts";
+import type { Place } from "./numbers.ts";
 
 /** Sensor number of a reading whose packet names its sensor. */
 export const GIVEN = -1;
@@ -51,7 +51,8 @@ export interface PresenceReader extends Place {
 
 export interface CounterReader extends Place {
   readonly factor: number;
-  readonly unwrapper: Unwrapper;
+  /** Which of the layout's counters it shows. */
+  readonly counter: number;
 }
 
 export interface SensorIndexReader extends Place {
@@ -101,4 +102,6 @@ export interface CompiledLayout {
   readonly framing: FramingRule;
   readonly checksum: ChecksumRule | null;
   readonly packets: readonly PacketReader[];
+  /** Where each counter starts over; 0 for never. The decoder follows them. */
+  readonly counterSizes: readonly number[];
 }

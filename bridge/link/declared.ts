@@ -17,7 +17,7 @@ import {
   type ScaledReader,
 } from "./declared-readers.ts";
 import { type Framer, VERDICT, type Verdict } from "./framing.ts";
-import { modulo, type Place, readNumber } from "./numbers.ts";
+import { modulo, type Place, readNumber, Unwrapper } from "./numbers.ts";
 import {
   type ButtonPress,
   emptyCounters,
@@ -47,6 +47,7 @@ export class DeclaredDecoder implements PacketDecoder {
   #isOpen = false;
   /** What the packets of the open sweep agree in. */
   #key = -1;
+  readonly #counters: readonly Unwrapper[];
   readonly #axes = new Float64Array(QUATERNION);
   #hostTimeMs = 0;
   readonly #status: HubStatus = { tickUs: -1, supplyV: 0, temperatureC: 0, faults: 0 };
@@ -57,10 +58,12 @@ export class DeclaredDecoder implements PacketDecoder {
   #lastEdge = Number.NaN;
   #lastButton = 0;
 
+  /** @param layout compiled for `sensorCount` sensors */
   constructor(layout: CompiledLayout, sensorCount: number, sink: PacketSink) {
     this.#layout = layout;
     this.#sink = sink;
     this.#sweep = createSweep(sensorCount);
+    this.#counters = layout.counterSizes.map((size) => new Unwrapper(size));
     const { framing } = layout;
     const onFrame = framing.kind === "line" ? this.#line.bind(this) : this.#frame.bind(this);
     this.#framer = framerOf(framing, this.counters, onFrame);
@@ -250,6 +253,6 @@ export class DeclaredDecoder implements PacketDecoder {
     if (reader === null) return -1;
     const number = this.#number(reader);
     if (!Number.isFinite(number)) return -1;
-    return modulo(Math.round(reader.unwrapper.next(number) * reader.factor), size);
+    return modulo(Math.round(this.#counters[reader.counter].next(number) * reader.factor), size);
   }
 }
