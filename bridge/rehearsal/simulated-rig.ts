@@ -22,11 +22,11 @@ const NO_ANSWER = 1;
 /** Steps a second in which a sensor's peak rate is looked for; far more than any body beats. */
 const PEAK_LOOKS_HZ = 200;
 
-/** 50 µT dipping 68 deg to the north: the field of the invented site, rounded. µT, earth axes. */
+/** 50 µT dipping 69 deg to magnetic north: the field at the site of the rigs in config, rounded. µT, earth axes. */
 export const EARTH_FIELD_UT: readonly number[] = [
   0,
-  50 * Math.cos(68 * RAD_PER_DEG),
-  -50 * Math.sin(68 * RAD_PER_DEG),
+  50 * Math.cos(69 * RAD_PER_DEG),
+  -50 * Math.sin(69 * RAD_PER_DEG),
 ];
 
 /** What really happened at one moment. */
