@@ -44,9 +44,10 @@ export class TrialSource implements ByteSource {
     this.label = `trial ${basename(folder)}`;
     this.#folder = folder;
     this.#options = options;
-    this.#marks = [...readJsonLines(join(folder, MARKS_FILE), markLineSchema).values].sort(
-      (a, b) => a.hostTimeMs - b.hostTimeMs,
-    );
+    // Those of the hub's button come out of the bytes themselves.
+    this.#marks = readJsonLines(join(folder, MARKS_FILE), markLineSchema)
+      .values.filter(({ from }) => from !== "hub button")
+      .sort((a, b) => a.hostTimeMs - b.hostTimeMs);
   }
 
   /** @throws (rejects) BendwatchError TRIAL_UNREADABLE when there are no packets to open */

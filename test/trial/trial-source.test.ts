@@ -88,14 +88,14 @@ describe("an unpaced replay", () => {
 });
 
 describe("marks", () => {
-  test("come back at their host time, between the chunks they lay between", async () => {
+  test("come back at their host time, between the chunks they lay between; those of the hub's button are in the bytes", async () => {
     const folder = await recordedTrial(3);
-    const line = (hostTimeMs: number, text: string): string =>
-      `${JSON.stringify({ hostTimeMs, timeS: 0, text, from: "operator" })}\n`;
+    const line = (hostTimeMs: number, text: string, from = "operator"): string =>
+      `${JSON.stringify({ hostTimeMs, timeS: 0, text, from })}\n`;
     // Out of order, and with a last line cut off by a crash.
     writeFileSync(
       join(folder, "marks.jsonl"),
-      `${line(START_MS + 5000, "after all")}${line(START_MS + 150, "flow on")}{"hostTi`,
+      `${line(START_MS + 5000, "after all")}${line(START_MS + 150, "flow on")}${line(START_MS, "Button 1", "hub button")}{"hostTi`,
     );
     const sink = new NotingSink();
     await new TrialSource(folder, { rate: "max", loop: false }).run(sink);

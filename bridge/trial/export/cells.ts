@@ -7,6 +7,8 @@ const COMMA = 0x2c;
 const MINUS = 0x2d;
 const POINT = 0x2e;
 const ZERO = 0x30;
+/** 10^0 to 10^9, exact. */
+const POWERS = Array.from({ length: 10 }, (_, i) => 10 ** i);
 /** Beyond this an integer no longer holds every digit; such numbers are left to toFixed. */
 const EXACT = 2 ** 52;
 /** Longest number written: sign, 16 digits, point, and leading zeros; toFixed gives up to 21 digits and decimals. */
@@ -25,10 +27,10 @@ export class CellWriter {
     return this.#length;
   }
 
-  /** A number with `decimals` places, rounded half away from zero. Never "-0". */
+  /** A number with `decimals` places (at most 9), rounded half away from zero. Never "-0". */
   number(value: number, decimals: number): void {
     this.#startCell(NUMBER_BYTES);
-    const scaled = Math.round(Math.abs(value) * 10 ** decimals);
+    const scaled = Math.round(Math.abs(value) * POWERS[decimals]!);
     if (scaled < EXACT) this.#digits(scaled, decimals, value < 0 && scaled > 0);
     else if (Number.isFinite(value)) this.#length += this.#bytes.write(value.toFixed(decimals), this.#length);
   }
@@ -71,23 +73,23 @@ export class CellWriter {
     this.#bytes = larger;
   }
 
-  /** An integer, the last `decimals` digits of it behind the point. */
+  /** A whole number, the last `decimals` digits of it behind the point. */
   #digits(scaled: number, decimals: number, negative: boolean): void {
-    if (negative) this.#bytes[this.#length++] = MINUS;
+    const bytes = this.#bytes;
     let places = decimals + 1;
-    for (let limit = 10 ** places; scaled >= limit; limit *= 10) places++;
+    for (let limit = 10 * POWERS[decimals]!; scaled >= limit; limit *= 10) places++;
+    if (negative) bytes[this.#length++] = MINUS;
     const end = this.#length + places + (decimals > 0 ? 1 : 0);
+    const point = decimals > 0 ? end - 1 - decimals : -1;
     let rest = scaled;
-    for (let at = end - 1, place = 0; at >= this.#length; at--) {
-      if (place === decimals && decimals > 0) {
-        this.#bytes[at] = POINT;
-        place++;
+    for (let at = end - 1; at >= this.#length; at--) {
+      if (at === point) {
+        bytes[at] = POINT;
         continue;
       }
       const shorter = Math.floor(rest / 10);
-      this.#bytes[at] = ZERO + (rest - shorter * 10);
+      bytes[at] = ZERO + (rest - shorter * 10);
       rest = shorter;
-      place++;
     }
     this.#length = end;
   }
