@@ -2,7 +2,7 @@
  * Reads configuration: checks it against its schema, reports everything wrong at once, freezes the result. A name
  * without a path or ending is looked up under config/.
  */
-import { existsSync, readFileSync } from "node:fs";
+import { readFileSync } from "node:fs";
 import { join } from "node:path";
 import type { z } from "zod";
 import { BendwatchError, type ErrorDetail } from "../errors.ts";
@@ -64,43 +64,62 @@ export function checkConfig<T>(where: string, json: unknown, schema: z.ZodType<T
  */
 export function loadRig(nameOrPath: string): Rig {
   const file = loadConfig("rigs", nameOrPath, rigSchema);
-  const { layout } = file.hub;
-  const problems: BendwatchError[] = [];
-  const attempt = <T>(load: () => T): T | null => {
-    try {
-      return load();
-    } catch (error) {
-      if (!(error instanceof BendwatchError)) throw error;
-      problems.push(error);
-      return null;
-    }
-  };
-  const names = new Set(file.sensors.map((sensor) => sensor.model));
-  const models = new Map(
-    [...names].map((name) => [name, attempt(() => loadConfig("sensors", name, sensorModelSchema))] as const),
+  const references = new References(configPath("rigs", nameOrPath));
+  const models = file.sensors.map(({ model }, i) =>
+    references.load(`sensors[${i}].model`, "sensors", model, sensorModelSchema),
   );
-  const packetLayout =
-    layout === "native" || layout === "text"
-      ? null
-      : attempt(() => loadConfig("layouts", layout, packetLayoutSchema));
-  const thresholds = attempt(() => loadConfig("", "thresholds", thresholdsSchema));
-  if (problems.length > 0) {
-    throw new BendwatchError(
-      problems[0]!.code,
-      problems.flatMap(({ details }) => details),
-      { cause: problems[0] },
-    );
-  }
+  const { layout } = file.hub;
+  const isDeclared = layout !== "native" && layout !== "text";
+  const packetLayout = isDeclared
+    ? references.load("hub.layout", "layouts", layout, packetLayoutSchema)
+    : null;
+  references.throwProblems();
+  const thresholds = loadConfig("", "thresholds", thresholdsSchema);
   return deepFreeze({
     ...file,
-    models: file.sensors.map((sensor) => models.get(sensor.model)!),
+    models: models as SensorModel[],
     packetLayout,
-    thresholds: { ...thresholds!, ...definedOnly(file.flags) },
+    thresholds: { ...thresholds, ...definedOnly(file.flags) },
   });
 }
 
+/** Loads the files that a rig file names, each once, and keeps what is wrong in them until all were tried. */
+class References {
+  readonly #from: string;
+  readonly #loaded = new Map<string, unknown>();
+  readonly #problems: BendwatchError[] = [];
+
+  constructor(from: string) {
+    this.#from = from;
+  }
+
+  /** @returns null when something is wrong: throwProblems then throws */
+  load<T>(key: string, kind: string, name: string, schema: z.ZodType<T>): T | null {
+    const path = configPath(kind, name);
+    if (!this.#loaded.has(path)) this.#loaded.set(path, this.#attempt(key, kind, name, schema));
+    return this.#loaded.get(path) as T | null;
+  }
+
+  #attempt<T>(key: string, kind: string, name: string, schema: z.ZodType<T>): T | null {
+    try {
+      return loadConfig(kind, name, schema);
+    } catch (error) {
+      if (!(error instanceof BendwatchError)) throw error;
+      const details = error.details.map((d) => ({ ...d, where: `${this.#from}, ${key}: ${d.where}` }));
+      this.#problems.push(new BendwatchError(error.code, details, { cause: error }));
+      return null;
+    }
+  }
+
+  throwProblems(): void {
+    const [first] = this.#problems;
+    if (first === undefined) return;
+    const details = this.#problems.flatMap((problem) => problem.details);
+    throw new BendwatchError(first.code, details, { cause: first });
+  }
+}
+
 function configPath(kind: string, nameOrPath: string): string {
-  if (/[\\/]|\.json$/i.test(nameOrPath) && existsSync(nameOrPath)) return nameOrPath;
   if (/[\\/]|\.json$/i.test(nameOrPath)) return nameOrPath;
   return join(packageRoot, "config", kind, `${nameOrPath}.json`);
 }

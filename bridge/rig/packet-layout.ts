@@ -64,7 +64,7 @@ const framingSchema = z.discriminatedUnion("kind", [
       kind: z.literal("syncLength"),
       syncHex: hexBytes,
       lengthAt: offsetInFrame.describe("Place of the length in the frame, counted from the first sync byte."),
-      lengthType: z.enum(["u8", "u16"]),
+      lengthType: z.enum(["u8", "u16"]).describe("Number format of the length."),
       lengthAdds: z
         .number()
         .int()
@@ -97,7 +97,9 @@ const framingSchema = z.discriminatedUnion("kind", [
 
 const checksumSchema = z
   .strictObject({
-    kind: z.enum(["none", "sum8", "sum16", "xor8", ...CRC_NAMES]),
+    kind: z
+      .enum(["none", "sum8", "sum16", "xor8", ...CRC_NAMES])
+      .describe("Sums and xor run over bytes; CRCs go by their catalogue names."),
     endian: endian.optional().describe("Byte order of the checksum; the layout's own if left out."),
     from: offsetInFrame
       .default(0)
@@ -217,7 +219,8 @@ const fieldSchema = z.discriminatedUnion("what", [
       parts: z
         .array(z.enum(["gyro", "accel", "mag", "quaternion"]))
         .min(1)
-        .default(["gyro", "accel", "mag", "quaternion"]),
+        .default(["gyro", "accel", "mag", "quaternion"])
+        .describe("What the bits speak of."),
       firstSensor: z.number().int().min(0).max(63).default(0).describe("The sensor of the lowest bit."),
     })
     .describe("One bit a sensor, lowest first: its reading is in this packet."),
@@ -265,12 +268,12 @@ const packetSchema = z.strictObject({
 });
 
 export const packetLayoutSchema = z.strictObject({
-  name: z.string().min(1).max(60),
-  notes: z.string().max(2000).default(""),
-  framing: framingSchema,
+  name: z.string().min(1).max(60).describe("Whose packets these are."),
+  notes: z.string().max(2000).default("").describe("Free text."),
+  framing: framingSchema.describe("How frames are told apart in the stream."),
   endian: endian.default("little").describe("Byte order, unless a field says otherwise."),
   checksum: checksumSchema.prefault({ kind: "none" }),
-  packets: z.array(packetSchema).min(1).max(32),
+  packets: z.array(packetSchema).min(1).max(32).describe("The kinds of packets sent."),
 });
 
 export type PacketLayout = z.infer<typeof packetLayoutSchema>;

@@ -10,9 +10,19 @@ const matrix3 = z.tuple([vector3, vector3, vector3]);
 
 const mountingSchema = z
   .strictObject({
-    yawDeg: z.number().min(-180).max(180).default(0).describe("About body z."),
-    pitchDeg: z.number().min(-180).max(180).default(0).describe("About the new y."),
-    rollDeg: z.number().min(-180).max(180).default(0).describe("About the new x."),
+    yawDeg: z.number().min(-180).max(180).default(0).describe("About body z; positive turns left."),
+    pitchDeg: z
+      .number()
+      .min(-180)
+      .max(180)
+      .default(0)
+      .describe("About the new y; right-handed, so positive tips the sensor's x axis down."),
+    rollDeg: z
+      .number()
+      .min(-180)
+      .max(180)
+      .default(0)
+      .describe("About the new x; positive puts the right side down."),
   })
   .describe(
     "Rotation that carries body axes (x nose, y left, z up) onto the sensor's own axes: first yaw about z, then pitch about the new y, then roll about the new x.",
@@ -97,27 +107,31 @@ function checkPlaces(sensors: readonly Partial<z.infer<typeof sensorSchema>>[], 
 export const rigSchema = z.strictObject({
   name: z.string().min(1).max(60).describe("Shown on screen and in exports."),
   notes: z.string().max(2000).default("").describe("Free text."),
-  body: z.strictObject({
-    kind: z.enum(["animal", "dummy", "foil"]).describe("What bends."),
-    lengthMm: z.number().positive().max(100_000).describe("Nose to tail tip along the midline."),
-    widthMm: z.number().positive().max(20_000).optional().describe("Greatest width, for drawing only."),
-  }),
-  hub: z.strictObject({
-    layout: z
-      .string()
-      .min(1)
-      .default("native")
-      .describe("Packet layout: native, text, or a file in config/layouts without .json."),
-    rateHz: z.number().min(1).max(4000).describe("Nominal sweeps a second."),
-    baudRate: z
-      .number()
-      .int()
-      .min(1200)
-      .max(12_000_000)
-      .default(921_600)
-      .describe("Of the serial port, bit/s."),
-    port: portSchema.optional().describe("Which serial port the hub is on."),
-  }),
+  body: z
+    .strictObject({
+      kind: z.enum(["animal", "dummy", "foil"]).describe("What bends."),
+      lengthMm: z.number().positive().max(100_000).describe("Nose to tail tip along the midline."),
+      widthMm: z.number().positive().max(20_000).optional().describe("Greatest width, for drawing only."),
+    })
+    .describe("What the sensors sit on."),
+  hub: z
+    .strictObject({
+      layout: z
+        .string()
+        .min(1)
+        .default("native")
+        .describe("Packet layout: native, text, or a file in config/layouts without .json."),
+      rateHz: z.number().min(1).max(4000).describe("Nominal sweeps a second."),
+      baudRate: z
+        .number()
+        .int()
+        .min(1200)
+        .max(12_000_000)
+        .default(921_600)
+        .describe("Of the serial port, bit/s."),
+      port: portSchema.optional().describe("Which serial port the hub is on: either key."),
+    })
+    .describe("What samples all sensors and sends."),
   sensors: z
     .array(sensorSchema)
     .min(1)
@@ -134,14 +148,16 @@ export const rigSchema = z.strictObject({
         .optional()
         .describe("Date for the World Magnetic Model; the trial's own date if left out."),
     })
-    .optional(),
+    .optional()
+    .describe("Where the rig stands, for the Earth's field there."),
   water: z
     .strictObject({
       kind: z.enum(["fresh", "sea"]).default("fresh").describe("For density and viscosity."),
       temperatureC: z.number().min(-2).max(45).optional().describe("Of the water."),
       flowMPerS: z.number().min(0).max(30).optional().describe("Speed of the water past the body."),
     })
-    .prefault({}),
+    .prefault({})
+    .describe("What the body swims in."),
   heading: z
     .enum(["magnetic", "free"])
     .default("magnetic")
@@ -155,7 +171,8 @@ export const rigSchema = z.strictObject({
         .default("slerp")
         .describe("Between sensors along the body, on the sphere."),
     })
-    .prefault({}),
+    .prefault({})
+    .describe("How the midline is built."),
   flags: thresholdsSchema
     .partial()
     .prefault({})

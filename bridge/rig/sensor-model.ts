@@ -8,18 +8,22 @@ const axisTriple = {
 export const sensorModelSchema = z.strictObject({
   name: z.string().min(1).max(60).describe("In plain words."),
   notes: z.string().max(2000).default("").describe("Where the figures come from."),
-  gyro: z.strictObject({
-    rangeDegPerS: z.number().positive().describe("Plus and minus this."),
-    ...axisTriple,
-    noiseDegPerSPerSqrtHz: z.number().min(0).describe("White-noise density."),
-    biasDegPerS: z.number().min(0).describe("Largest zero-rate offset the data sheet allows."),
-  }),
-  accel: z.strictObject({
-    rangeG: z.number().positive().describe("Plus and minus this."),
-    ...axisTriple,
-    noiseMicroGPerSqrtHz: z.number().min(0).describe("White-noise density."),
-    biasMilliG: z.number().min(0).describe("Largest zero-g offset the data sheet allows."),
-  }),
+  gyro: z
+    .strictObject({
+      rangeDegPerS: z.number().positive().describe("Plus and minus this."),
+      ...axisTriple,
+      noiseDegPerSPerSqrtHz: z.number().min(0).describe("White-noise density."),
+      biasDegPerS: z.number().min(0).describe("Largest zero-rate offset the data sheet allows."),
+    })
+    .describe("Gyroscope."),
+  accel: z
+    .strictObject({
+      rangeG: z.number().positive().describe("Plus and minus this."),
+      ...axisTriple,
+      noiseMicroGPerSqrtHz: z.number().min(0).describe("White-noise density."),
+      biasMilliG: z.number().min(0).describe("Largest zero-g offset the data sheet allows."),
+    })
+    .describe("Accelerometer."),
   mag: z
     .strictObject({
       rangeUT: z.number().positive().describe("Plus and minus this."),
@@ -28,7 +32,7 @@ export const sensorModelSchema = z.strictObject({
       rateHz: z.number().positive().optional().describe("Own rate, where slower than the hub's sweeps."),
     })
     .optional()
-    .describe("Left out for six-axis sensors."),
+    .describe("Magnetometer; left out for six-axis sensors."),
 });
 
 export type SensorModel = z.infer<typeof sensorModelSchema>;

@@ -1,0 +1,82 @@
+/**
+ * Writes config/README.md from the schemas, so that keys, units, defaults, ranges and meanings stand in one place:
+ *
+ *     npx tsx bridge/rig/schema-docs.ts
+ *
+ * A test holds the page to the schemas.
+ */
+import { readFileSync, writeFileSync } from "node:fs";
+import { join } from "node:path";
+import { fileURLToPath } from "node:url";
+import { packageRoot } from "../paths.ts";
+import { columnMapSchema } from "./column-map.ts";
+import { packetLayoutSchema } from "./packet-layout.ts";
+import { rigSchema } from "./rig.ts";
+import { type KeyRow, keyRows } from "./schema-keys.ts";
+import { sensorModelSchema } from "./sensor-model.ts";
+import { thresholdsSchema } from "./thresholds.ts";
+
+export const CONFIG_README = join(packageRoot, "config/README.md");
+
+function table(rows: readonly KeyRow[]): string {
+  const cell = (text: string) => text.replaceAll("|", "\\|");
+  return [
+    "| key | unit | default | range | meaning |",
+    "| --- | --- | --- | --- | --- |",
+    ...rows.map(
+      (row) =>
+        `| \`${row.key}\` | ${row.unit} | ${cell(row.default)} | ${cell(row.range)} | ${cell(row.meaning)} |`,
+    ),
+  ].join("\n");
+}
+
+/** The whole page. */
+export function configReadme(): string {
+  const thresholds = JSON.parse(readFileSync(join(packageRoot, "config/thresholds.json"), "utf8"));
+  const rigRows = keyRows(rigSchema).filter(({ key }) => !key.startsWith("flags."));
+  const thresholdRows = keyRows(thresholdsSchema).map((row) => ({
+    ...row,
+    default: String(thresholds[row.key]),
+  }));
+  return `# Configuration
+
+Written by \`npx tsx bridge/rig/schema-docs.ts\` from the schemas in \`bridge/rig/\`; change those, not this page.
+
+JSON files, one folder a kind. Where a command or another file asks for one, give its name without \`.json\`, or a path.
+A key that is not listed here is an error, and so is a value of another type or out of range; everything wrong in a file
+is reported at once. Units other than SI stand in the key's name. \`left out\`: the key may be missing and then stands for
+nothing. Counts and lists run from the nose to the tail.
+
+## Rigs: \`config/rigs/\`
+
+Body, sensors and where they sit, hub, site. Stations increase and names differ.
+
+${table(rigRows)}
+
+## Sensor models: \`config/sensors/\`
+
+Ranges, noise and rates as a data sheet gives them.
+
+${table(keyRows(sensorModelSchema))}
+
+## Thresholds: \`config/thresholds.json\`
+
+One file; here \`default\` is what it says. A rig overrides any of them under \`flags\`.
+
+${table(thresholdRows)}
+
+## Packet layouts: \`config/layouts/\`
+
+Somebody's existing packets described, for \`hub.layout\`.
+
+${table(keyRows(packetLayoutSchema))}
+
+## Column maps: \`config/columns/\`
+
+Which column of a table holds what, for \`bendwatch import\`.
+
+${table(keyRows(columnMapSchema))}
+`;
+}
+
+if (process.argv[1] === fileURLToPath(import.meta.url)) writeFileSync(CONFIG_README, configReadme());
