@@ -94,3 +94,14 @@ export function setTurn(out: Float64Array, axis: 1 | 2 | 3, angle: number): void
   out[0] = Math.cos(angle / 2);
   out[axis] = Math.sin(angle / 2);
 }
+
+/** out = v turned about z; out may be v. */
+export function turnAboutZ(v: Float64Array, angle: number, out: Float64Array): void {
+  const c = Math.cos(angle);
+  const s = Math.sin(angle);
+  const x = v[0];
+  const y = v[1];
+  out[0] = c * x - s * y;
+  out[1] = s * x + c * y;
+  out[2] = v[2];
+}

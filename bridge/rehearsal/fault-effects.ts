@@ -4,11 +4,11 @@
  * own random numbers, so that a fault changes nothing but what it says.
  */
 import { ACCEL, GYRO, MAG } from "../sweep.ts";
+import { turnAboutZ } from "./attitude.ts";
 import type { Fault, FaultKind } from "./faults.ts";
 import type { Random } from "./random.ts";
 import type { NoisySensor } from "./sensor-noise.ts";
 import { newJet, SteppedSignal } from "./signal.ts";
-import { turnAboutZ } from "./swimmer.ts";
 
 /** What the hub got from a unit in a sweep. */
 export const DELIVERY = { WHOLE: 0, ABSENT: 1, UNREADABLE: 2 } as const;

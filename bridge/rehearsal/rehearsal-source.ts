@@ -8,7 +8,7 @@ import type { Rig } from "../rig/load.ts";
 import { type Fault, parseFault } from "./faults.ts";
 import { SimulatedHub } from "./simulated-hub.ts";
 import { EARTH_FIELD_UT, SimulatedRig, type Truth } from "./simulated-rig.ts";
-import { STEADY_SWIMMER, type SwimmerOptions } from "./swimmer.ts";
+import { STEADY_SWIMMER, type SwimmerOptions } from "./swimmer-options.ts";
 
 /** Bytes are handed over this often, s of rehearsal: as a serial port's driver does. */
 const CHUNK_S = 0.004;

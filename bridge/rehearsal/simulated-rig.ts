@@ -12,7 +12,8 @@ import type { Fault } from "./faults.ts";
 import { Random } from "./random.ts";
 import { NoisySensor } from "./sensor-noise.ts";
 import { newJet } from "./signal.ts";
-import { newKinematics, Swimmer, type SwimmerOptions } from "./swimmer.ts";
+import { newKinematics, Swimmer } from "./swimmer.ts";
+import type { SwimmerOptions } from "./swimmer-options.ts";
 
 /** Points of the true midline: as many as the display's. */
 export const TRUTH_POINTS = 41;

@@ -4,60 +4,11 @@
  * the body does and what an ideal sensor there would feel.
  */
 import { multiply, rotate } from "../numeric/quaternion.ts";
-import { RAD_PER_DEG, STANDARD_GRAVITY } from "../numeric/units.ts";
-import { AttitudeMotion, setTurn } from "./attitude.ts";
-import { checkAmplitude, type GaitName, type PlaneMotion, WaveDrive, WavePlace } from "./body-wave.ts";
-import { addWander, clear, newJet, type Step, SteppedSignal, type Wander } from "./signal.ts";
-
-export interface SwimmerOptions {
-  readonly gait: GaitName;
-  readonly frequencyHz: number;
-  /** Share of the published amplitude. */
-  readonly amplitude: number;
-  /** How long the body lies still first, s: filters settle. */
-  readonly restS: number;
-  /** How long the first beats take to reach full amplitude, s. */
-  readonly startS: number;
-  /** Later changes of pace, in order of time, not overlapping. */
-  readonly changes: readonly PaceChange[];
-  /** rad from east, anticlockwise, at first. */
-  readonly heading: number;
-  /** rad turned left (right when negative), in order of time. */
-  readonly turns: readonly Turn[];
-  readonly headingWander: Wander;
-  /** Nose up positive. */
-  readonly pitchWander: Wander;
-  /** Right side down positive. */
-  readonly rollWander: Wander;
-}
-
-export interface PaceChange {
-  readonly atS: number;
-  readonly overS: number;
-  readonly frequencyHz?: number;
-  readonly amplitude?: number;
-}
-
-export interface Turn {
-  readonly atS: number;
-  readonly overS: number;
-  readonly by: number;
-}
-
-/** A steady swimmer at about a beat a second, wandering by a few degrees. */
-export const STEADY_SWIMMER: SwimmerOptions = {
-  gait: "carangiform",
-  frequencyHz: 1.1,
-  amplitude: 1,
-  restS: 3,
-  startS: 2,
-  changes: [],
-  heading: 80 * RAD_PER_DEG,
-  turns: [],
-  headingWander: { amplitude: 4 * RAD_PER_DEG, periodS: 37 },
-  pitchWander: { amplitude: 3 * RAD_PER_DEG, periodS: 23 },
-  rollWander: { amplitude: 5 * RAD_PER_DEG, periodS: 17 },
-};
+import { STANDARD_GRAVITY } from "../numeric/units.ts";
+import { AttitudeMotion, setTurn, turnAboutZ } from "./attitude.ts";
+import { checkAmplitude, type PlaneMotion, WaveDrive, WavePlace } from "./body-wave.ts";
+import { addWander, clear, newJet, type Step, SteppedSignal } from "./signal.ts";
+import type { PaceChange, SwimmerOptions } from "./swimmer-options.ts";
 
 /** What one place on the body does and what an ideal sensor there feels. Arrays are rewritten in place. */
 export interface Kinematics {
@@ -209,15 +160,4 @@ function stepsOf(changes: readonly PaceChange[], pick: (change: PaceChange) => n
     const to = pick(change);
     return to === undefined ? [] : [{ atS: change.atS, overS: change.overS, to }];
   });
-}
-
-/** out = v turned about z; out may be v. */
-export function turnAboutZ(v: Float64Array, angle: number, out: Float64Array): void {
-  const c = Math.cos(angle);
-  const s = Math.sin(angle);
-  const x = v[0];
-  const y = v[1];
-  out[0] = c * x - s * y;
-  out[1] = s * x + c * y;
-  out[2] = v[2];
 }

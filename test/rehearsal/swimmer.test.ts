@@ -2,12 +2,8 @@ import { expect, test } from "vitest";
 import { multiply, rotate } from "../../bridge/numeric/quaternion.ts";
 import { STANDARD_GRAVITY } from "../../bridge/numeric/units.ts";
 import type { GaitName } from "../../bridge/rehearsal/body-wave.ts";
-import {
-  newKinematics,
-  STEADY_SWIMMER,
-  Swimmer,
-  type SwimmerOptions,
-} from "../../bridge/rehearsal/swimmer.ts";
+import { newKinematics, Swimmer } from "../../bridge/rehearsal/swimmer.ts";
+import { STEADY_SWIMMER, type SwimmerOptions } from "../../bridge/rehearsal/swimmer-options.ts";
 
 const LENGTH_M = 0.8;
 const STATIONS = [0, 0.2, 0.5, 0.9, 1];

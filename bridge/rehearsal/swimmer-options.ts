@@ -1,0 +1,54 @@
+/** How a simulated body swims: what can be chosen, and the choice made where nothing else is asked for. */
+import { RAD_PER_DEG } from "../numeric/units.ts";
+import type { GaitName } from "./body-wave.ts";
+import type { Wander } from "./signal.ts";
+
+export interface SwimmerOptions {
+  readonly gait: GaitName;
+  readonly frequencyHz: number;
+  /** Share of the published amplitude. */
+  readonly amplitude: number;
+  /** How long the body lies still first, s: filters settle. */
+  readonly restS: number;
+  /** How long the first beats take to reach full amplitude, s. */
+  readonly startS: number;
+  /** Later changes of pace, in order of time, not overlapping. */
+  readonly changes: readonly PaceChange[];
+  /** rad from east, anticlockwise, at first. */
+  readonly heading: number;
+  /** rad turned left (right when negative), in order of time. */
+  readonly turns: readonly Turn[];
+  readonly headingWander: Wander;
+  /** Nose up positive. */
+  readonly pitchWander: Wander;
+  /** Right side down positive. */
+  readonly rollWander: Wander;
+}
+
+export interface PaceChange {
+  readonly atS: number;
+  readonly overS: number;
+  readonly frequencyHz?: number;
+  readonly amplitude?: number;
+}
+
+export interface Turn {
+  readonly atS: number;
+  readonly overS: number;
+  readonly by: number;
+}
+
+/** A steady swimmer at about a beat a second, wandering by a few degrees. */
+export const STEADY_SWIMMER: SwimmerOptions = {
+  gait: "carangiform",
+  frequencyHz: 1.1,
+  amplitude: 1,
+  restS: 3,
+  startS: 2,
+  changes: [],
+  heading: 80 * RAD_PER_DEG,
+  turns: [],
+  headingWander: { amplitude: 4 * RAD_PER_DEG, periodS: 37 },
+  pitchWander: { amplitude: 3 * RAD_PER_DEG, periodS: 23 },
+  rollWander: { amplitude: 5 * RAD_PER_DEG, periodS: 17 },
+};
