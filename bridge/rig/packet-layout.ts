@@ -9,7 +9,6 @@ import { MICROTESLA_PER_GAUSS, RAD_PER_DEG, STANDARD_GRAVITY } from "../numeric/
 /** Parametrised CRC algorithms by their catalogue names; the parameters are in link/checksum.ts. */
 export const CRC_NAMES = [
   "CRC-8/SMBUS",
-  "CRC-8/MAXIM-DOW",
   "CRC-16/ARC",
   "CRC-16/DNP",
   "CRC-16/IBM-3740",
@@ -50,11 +49,11 @@ const maxBytes = z
   .number()
   .int()
   .min(4)
-  .max(65_536)
+  .max(8192)
   .default(2048)
   .describe("Longest frame, coding taken off; anything longer is damage.");
 const binaryType = z.enum(["u8", "i8", "u16", "i16", "u24", "i24", "u32", "i32", "u64", "f32", "f64"]);
-const offsetInFrame = z.number().int().min(0).max(65_535);
+const offsetInFrame = z.number().int().min(0).max(8191);
 
 const framingSchema = z.discriminatedUnion("kind", [
   z.strictObject({ kind: z.literal("cobs"), maxBytes }).describe("COBS, each frame ended by 0x00."),
@@ -79,7 +78,7 @@ const framingSchema = z.discriminatedUnion("kind", [
   z
     .strictObject({
       kind: z.literal("fixed"),
-      bytes: z.number().int().min(4).max(65_536).describe("All bytes of every frame, sync to checksum."),
+      bytes: z.number().int().min(4).max(8192).describe("All bytes of every frame, sync to checksum."),
       syncHex: hexBytes.optional(),
     })
     .describe("Every frame has the same length; found by its sync word, its checksum, or both."),
@@ -255,7 +254,7 @@ const packetSchema = z.strictObject({
     .number()
     .int()
     .min(1)
-    .max(65_536)
+    .max(8192)
     .optional()
     .describe("Bytes of the whole frame (columns of the line), where always the same."),
   gather: z

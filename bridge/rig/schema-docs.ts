@@ -18,16 +18,22 @@ import { thresholdsSchema } from "./thresholds.ts";
 
 export const CONFIG_README = join(packageRoot, "config/README.md");
 
+/** A Markdown table, its columns padded to line up as the formatter wants them. */
 function table(rows: readonly KeyRow[]): string {
-  const cell = (text: string) => text.replaceAll("|", "\\|");
-  return [
-    "| key | unit | default | range | meaning |",
-    "| --- | --- | --- | --- | --- |",
-    ...rows.map(
-      (row) =>
-        `| \`${row.key}\` | ${row.unit} | ${cell(row.default)} | ${cell(row.range)} | ${cell(row.meaning)} |`,
+  const cells = rows.map((row) =>
+    [`\`${row.key}\``, row.unit, row.default, row.range, row.meaning].map((text) =>
+      text.replaceAll("|", "\\|"),
     ),
-  ].join("\n");
+  );
+  const head = ["key", "unit", "default", "range", "meaning"];
+  const widths = head.map((name, c) => Math.max(...[name, ...cells.map((row) => row[c]!)].map(widthOf)));
+  const line = (row: readonly string[]) =>
+    `| ${row.map((text, c) => text + " ".repeat(widths[c]! - widthOf(text))).join(" | ")} |`;
+  return [line(head), line(widths.map((width) => "-".repeat(width))), ...cells.map(line)].join("\n");
+}
+
+function widthOf(text: string): number {
+  return [...text].length;
 }
 
 /** The whole page. */
