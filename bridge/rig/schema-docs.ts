@@ -79,7 +79,15 @@ ${table(keyRows(packetLayoutSchema))}
 
 ## Column maps: \`config/columns/\`
 
-Which column of a table holds what, for \`bendwatch import\`.
+Which column of a table holds what, for \`bendwatch import\`. Plain text or gzipped; exponents as in \`1.2e-005\`.
+
+- Times are rounded to whole µs and kept, irregular ones too. Within a file each must be later than the one before.
+- An empty cell, NaN or a declared marker: that gyro, accel or mag is lost in that row. A cell that is no number: likewise,
+  and counted; more of them in a column than one in a hundred rows (one is always allowed) and the table is refused.
+- Every row must have a cell for each column; further cells must be empty.
+- Where at least 95 of 100 steps in time are whole numbers of intervals (within a tenth of one), a step of 1.5 intervals or
+  more shows as lost sweeps. In other tables sweeps are only counted.
+- All tables are read and checked before anything is written.
 
 ${table(keyRows(columnMapSchema))}
 `;

@@ -1,6 +1,11 @@
 /**
- * Imports of real recordings: a pendulum of three segments, one table each, and a single unit at 285.714 Hz. They are not
- * part of the project; without them in ../shared/open-data these tests are skipped and say so.
+ * Imports of real recordings. They are not part of the project; without them in ../shared/open-data these tests are
+ * skipped and say so.
+ *
+ * Pendulum of three segments, one table each: A. Szczęsna, P. Skurowski, P. Pruszowski, D. Pęszor, M. Paszkuta,
+ * K. Wojciechowski, Reference Data Set for Accuracy Evaluation of Orientation Estimation Algorithms for Inertial Motion
+ * Capture Systems, ICCVG 2016. Single unit at 285.714 Hz: D. Laidig, M. Caruso, A. Cereatti, T. Seel, BROAD - A Benchmark
+ * for Robust Inertial Orientation Estimation, Data 6(7):72, 2021, doi:10.3390/data6070072, CC BY 4.0.
  */
 import { existsSync, readFileSync } from "node:fs";
 import { join } from "node:path";
