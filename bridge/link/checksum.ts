@@ -21,7 +21,6 @@ export interface CrcModel {
 
 export const CRC_MODELS: Readonly<Record<CrcName, CrcModel>> = {
   "CRC-8/SMBUS": crcModel(8, 0x07, 0, false, 0),
-  "CRC-8/MAXIM-DOW": crcModel(8, 0x31, 0, true, 0),
   "CRC-16/ARC": crcModel(16, 0x8005, 0, true, 0),
   "CRC-16/DNP": crcModel(16, 0x3d65, 0, true, 0xffff),
   "CRC-16/IBM-3740": crcModel(16, 0x1021, 0xffff, false, 0),

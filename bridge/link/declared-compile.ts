@@ -11,6 +11,9 @@ import {
 } from "./declared-readers.ts";
 import { TYPE_BYTES } from "./numbers.ts";
 
+/** Without a sync word every place in the bytes is tried, and each costs the checksum of a whole frame. */
+const MAX_BYTES_WITHOUT_SYNC = 1024;
+
 /** Reports one thing that does not hold together. */
 export type Report = (where: string, found: string, expected: string) => void;
 
@@ -88,6 +91,9 @@ function framingRule({ framing, checksum, endian }: PacketLayout, report: Report
     const sync = bytesOf(framing.syncHex ?? "");
     if (sync.length === 0 && checksum.kind === "none") {
       report("framing", "neither syncHex nor a checksum", "one of them, to tell where frames begin");
+    }
+    if (sync.length === 0 && bytes > MAX_BYTES_WITHOUT_SYNC) {
+      report("framing.bytes", `${bytes}`, `at most ${MAX_BYTES_WITHOUT_SYNC}, or a syncHex`);
     }
     if (sync.length > bytes) report("framing.bytes", `${bytes}`, `room for the ${sync.length} sync bytes`);
     const rule = { sync, headBytes: Math.max(1, sync.length), maxBytes: bytes, frameBytes: () => bytes };

@@ -197,6 +197,8 @@ export class DeclaredDecoder implements PacketDecoder {
       values[axis.slot] = number * axis.factor + axis.add;
     }
     const isQuaternion = part.bit === HAS_ORIENTATION;
+    // Four zeros are no rotation: fusion on board has not begun.
+    if (isQuaternion && Math.hypot(values[0], values[1], values[2], values[3]) === 0) return;
     const to = isQuaternion ? this.#sweep.onBoard : this.#sweep.raw;
     const at = isQuaternion ? sensor * QUATERNION : sensor * CHANNELS + part.channel;
     for (let slot = 0; slot < part.axes.length; slot++) to[at + slot] = values[slot];

@@ -12,7 +12,6 @@ const NINE_DIGITS = Buffer.from("123456789");
 
 const CHECK: Readonly<Record<CrcName, number>> = {
   "CRC-8/SMBUS": 0xf4,
-  "CRC-8/MAXIM-DOW": 0xa1,
   "CRC-16/ARC": 0xbb3d,
   "CRC-16/DNP": 0xea82,
   "CRC-16/IBM-3740": 0x29b1,
