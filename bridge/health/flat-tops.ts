@@ -1,12 +1,16 @@
 /**
  * Finds axes that are cut off at a level below full scale: the value stays within one count for several readings at the
- * extreme of a large, moving signal, entered and left at a slant. What tells a cut from a natural crest:
+ * crest of a large, moving signal, entered and left at a slant. What tells a cut from a natural crest:
  *
  * A smooth crest of curvature c per reading² that stays within one count q over n = 4 readings has c (1.5)² / 2 <= q, so
  * two readings before them it lay at most 4 c / 2 x 4 = 5.4 q lower. A cut signal was SHARP_COUNTS = 16 q lower or more.
  * With noise s a crest that was 40 s lower two readings before (curvature above 6 s) would need its outer readings
  * displaced by 6 s each to look level: less than 1e-15 a crest. So noise makes no flat top, rest and slow motion have no
  * slant, and small quantised signals are below the least size.
+ *
+ * What tells a cut from a stuck axis: the signal comes down from the level about as steeply as it went up to it, not with
+ * a jump. A long plateau is not waited out: it is a cut when it is the highest level of the last seconds, as a stuck
+ * value is only by chance. A drive that turns at a constant rate for a few readings, with no noise, would look the same.
  */
 import { CHANNELS } from "../sweep.ts";
 import { limitsOf, PARTS } from "./limits.ts";
@@ -15,8 +19,10 @@ import { RollingMax } from "./windows.ts";
 
 /** Readings on one level that make a plateau. */
 const PLATEAU = 4;
-/** So many that repeat one value exactly count before the signal has left it. */
+/** So many that repeat the highest value exactly count before the signal has left it. */
 const LONG_PLATEAU = 12;
+/** The first step down from a level, at most, against the rise over the two readings before it. */
+const STEEPEST_EXIT = 2;
 const SHARP_COUNTS = 16;
 const SHARP_NOISE = 40;
 /** ... and this share of the level: a slant one can see. */
@@ -32,7 +38,9 @@ export class FlatTops {
   /** Rows are sensors x CHANNELS. */
   readonly #count: Float64Array;
   readonly #sharp: Float64Array;
+  /** Levels below the first are no large signal, from the second on they are full scale. */
   readonly #least: Float64Array;
+  readonly #fullScale: Float64Array;
   readonly #last: Float64Array;
   readonly #last2: Float64Array;
   readonly #level: Float64Array;
@@ -41,10 +49,17 @@ export class FlatTops {
   readonly #exact: Uint8Array;
   /** 1 or -1 when the run was entered at a slant rising or falling, else 0. */
   readonly #entry: Int8Array;
+  /** How far below its level the signal was two readings before the run. */
+  readonly #rise: Float64Array;
+  /** Readings beyond which a plateau that was left counts no more: then it was a stuck axis. */
+  readonly #longest: number;
   /** A plateau just left, waiting for the slant behind it: its level, its side, readings since. */
   readonly #leftLevel: Float64Array;
   readonly #leftSide: Int8Array;
   readonly #leftAge: Uint8Array;
+  readonly #leftRun: Uint32Array;
+  /** Readings before this one that were on a level found with this one; 0 when none was found. */
+  readonly foundBehind: Uint32Array;
   /** Levels found: readings there are clipped. */
   readonly #ceiling: Float64Array;
   readonly #floor: Float64Array;
@@ -56,7 +71,8 @@ export class FlatTops {
     const array = (value = 0) => new Float64Array(rows).fill(value);
     this.#count = array();
     this.#sharp = array();
-    this.#least = array(Number.POSITIVE_INFINITY);
+    this.#least = array();
+    this.#fullScale = array();
     setup.sensors.forEach((sensor, i) => {
       limitsOf(sensor, setup.rateHz).forEach((limits, p) => {
         if (limits === null) return;
@@ -65,6 +81,7 @@ export class FlatTops {
         const sharp = Math.max(SHARP_COUNTS * limits.count, SHARP_NOISE * limits.noise);
         this.#sharp.fill(sharp, start, start + 3);
         this.#least.fill(LEAST_SHARE * limits.range, start, start + 3);
+        this.#fullScale.fill(setup.thresholds.fullScaleShare * limits.range, start, start + 3);
       });
     });
     this.#last = array();
@@ -73,9 +90,13 @@ export class FlatTops {
     this.#run = new Uint32Array(rows);
     this.#exact = new Uint8Array(rows);
     this.#entry = new Int8Array(rows);
+    this.#rise = array();
+    this.#longest = setup.thresholds.stuckAxisS * setup.rateHz;
     this.#leftLevel = array();
     this.#leftSide = new Int8Array(rows);
     this.#leftAge = new Uint8Array(rows);
+    this.#leftRun = new Uint32Array(rows);
+    this.foundBehind = new Uint32Array(rows);
     this.#ceiling = array(Number.POSITIVE_INFINITY);
     this.#floor = array(Number.NEGATIVE_INFINITY);
     this.#high = new RollingMax(rows, EXTREME_S, 8);
@@ -90,7 +111,7 @@ export class FlatTops {
   /**
    * Takes one reading of a part.
    * @param afterGap readings before it are missing: no slope can be told across them
-   * @returns bits of the axes that are on a level found to be a cut
+   * @returns bits of the axes that are on a level found to be a cut; `foundBehind` tells of those just found
    */
   reading(raw: Float64Array, sensor: number, part: number, afterGap: boolean): number {
     const start = sensor * CHANNELS + PARTS[part]!.at;
@@ -102,6 +123,7 @@ export class FlatTops {
     let axes = 0;
     for (let k = 0; k < 3; k++) {
       const row = start + k;
+      this.foundBehind[row] = 0;
       if (!held) this.#follow(row, raw[row]!, afterGap);
       const atLevel =
         raw[row]! >= this.#ceiling[row]! - this.#count[row]! ||
@@ -128,8 +150,8 @@ export class FlatTops {
     if (this.#run[row]! > 0 && Math.abs(value - this.#level[row]!) <= count) {
       this.#run[row]!++;
       if (value !== this.#level[row]) this.#exact[row] = 0;
-      if (this.#run[row] === LONG_PLATEAU && this.#exact[row] === 1 && this.#isCut(row)) {
-        this.#found(row, this.#entry[row]!, this.#level[row]!);
+      if (this.#run[row] === LONG_PLATEAU && this.#exact[row] === 1 && this.#isExtreme(row)) {
+        this.#found(row, this.#entry[row]!, this.#level[row]!, LONG_PLATEAU - 1);
       }
     } else {
       this.#begin(row, value);
@@ -140,15 +162,23 @@ export class FlatTops {
 
   /** A run ends and the next begins with `value`. */
   #begin(row: number, value: number): void {
-    if (this.#run[row]! >= PLATEAU && this.#run[row]! < LONG_PLATEAU && this.#isCut(row)) {
+    const drop = (this.#level[row]! - value) * this.#entry[row]!;
+    const run = this.#run[row]!;
+    if (
+      run >= PLATEAU &&
+      run <= this.#longest &&
+      drop <= STEEPEST_EXIT * this.#rise[row]! &&
+      this.#isLarge(row)
+    ) {
       this.#leftLevel[row] = this.#level[row]!;
       this.#leftSide[row] = this.#entry[row]!;
       this.#leftAge[row] = 0;
+      this.#leftRun[row] = run;
       this.#checkExit(row, value);
     }
-    const rise = value - this.#last2[row]!;
     const side = Math.sign(value - this.#last[row]!);
-    this.#entry[row] = rise * side >= this.#sharpness(row, value) ? side : 0;
+    this.#rise[row] = (value - this.#last2[row]!) * side;
+    this.#entry[row] = this.#rise[row]! >= this.#sharpness(row, value) ? side : 0;
     this.#level[row] = value;
     this.#run[row] = 1;
     this.#exact[row] = 1;
@@ -160,26 +190,34 @@ export class FlatTops {
     if (side === 0) return;
     const level = this.#leftLevel[row]!;
     if ((level - value) * side >= this.#sharpness(row, level)) {
-      this.#found(row, side, level);
+      this.#found(row, side, level, this.#leftRun[row]!);
       this.#leftSide[row] = 0;
     } else if (++this.#leftAge[row]! >= 2) {
       this.#leftSide[row] = 0;
     }
   }
 
-  /** The current run is at the extreme of a large, moving signal and was entered at a slant. */
-  #isCut(row: number): boolean {
-    const side = this.#entry[row]!;
-    if (side === 0) return false;
-    const level = this.#level[row]!;
-    const high = this.#high.max(row);
-    const low = -this.#negatedLow.max(row);
-    const atExtreme = side > 0 ? high <= level + this.#count[row]! : low >= level - this.#count[row]!;
-    const size = Math.abs(level);
-    return atExtreme && size >= this.#least[row]! && high - low >= LEAST_SWING * size;
+  /** The current run was entered at a slant and belongs to a large, moving signal. */
+  #isLarge(row: number): boolean {
+    const size = Math.abs(this.#level[row]!);
+    const swing = this.#high.max(row) + this.#negatedLow.max(row);
+    const large = size >= this.#least[row]! && size < this.#fullScale[row]!;
+    return this.#entry[row] !== 0 && large && swing >= LEAST_SWING * size;
   }
 
-  #found(row: number, side: number, level: number): void {
+  /** It is also at the extreme of the last seconds. */
+  #isExtreme(row: number): boolean {
+    const beyond =
+      this.#entry[row]! > 0
+        ? this.#high.max(row) - this.#level[row]!
+        : this.#negatedLow.max(row) + this.#level[row]!;
+    return this.#isLarge(row) && beyond <= this.#count[row]!;
+  }
+
+  #found(row: number, side: number, level: number, readings: number): void {
+    const known = side > 0 ? this.#ceiling[row]! : this.#floor[row]!;
+    if (Math.abs(level - known) <= this.#count[row]!) return;
+    this.foundBehind[row] = readings;
     if (side > 0) this.#ceiling[row] = level;
     else this.#floor[row] = level;
   }

@@ -13,8 +13,9 @@ export const Turn = {
 } as const;
 export type Turn = (typeof Turn)[keyof typeof Turn];
 
-/** Details of open flags are renewed this often, s: as fast as one reads. */
-const REFRESH_S = 0.5;
+/** A flag's detail and severity are renewed once its first readings have come in, then at the pace one reads, s. */
+const FIRST_REFRESH_S = 0.25;
+const REFRESH_S = 1;
 /** Durations are compared with this much rounding, s. */
 const TICK_S = 1e-6;
 
@@ -51,7 +52,7 @@ export class Hysteresis {
       if (timeS - this.sinceS[row]! < this.#onsetS - TICK_S) return Turn.NONE;
       this.on[row] = 1;
       this.lastBadS[row] = timeS;
-      this.#refreshS[row] = timeS + REFRESH_S;
+      this.#refreshS[row] = timeS + FIRST_REFRESH_S;
       return Turn.REPORT;
     }
     if (!calm) this.lastBadS[row] = timeS;

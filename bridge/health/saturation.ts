@@ -61,14 +61,19 @@ export class Saturation {
 
   #part(sweep: Sweep, i: number, p: number): void {
     const row = i * PARTS.length + p;
-    const axes = this.#clippedAxes(sweep, i, p);
-    this.#readings.add(row, 1);
-    if (axes !== 0) {
-      this.#clipped.add(row, 1);
-      this.#axes[row]! |= axes;
-      sweep.conditions[i]! |= PARTS[p]!.clipped;
+    const at = i * CHANNELS + PARTS[p]!.at;
+    const now = this.#clippedAxes(sweep, i, p);
+    let behind = 0;
+    for (let k = 0; k < 3; k++) {
+      const readings = this.#flatTops.foundBehind[at + k]!;
+      if (readings > 0) this.#axes[row]! |= 1 << k;
+      behind = Math.max(behind, readings);
     }
-    const turn = this.#state.step(row, sweep.timeS, axes !== 0);
+    this.#axes[row]! |= now;
+    this.#readings.add(row, 1);
+    this.#clipped.add(row, behind + (now === 0 ? 0 : 1));
+    if (now !== 0) sweep.conditions[i]! |= PARTS[p]!.clipped;
+    const turn = this.#state.step(row, sweep.timeS, now !== 0 || behind > 0);
     if (turn === Turn.REPORT) this.#report(i, p);
     else if (turn === Turn.END) {
       this.#setup.book.clear(KINDS[p]!, i, this.#state.lastBadS[row]!);
@@ -91,7 +96,7 @@ export class Saturation {
 
   #report(i: number, p: number): void {
     const row = i * PARTS.length + p;
-    const share = this.#clipped.sum(row) / this.#readings.sum(row);
+    const share = Math.min(1, this.#clipped.sum(row) / this.#readings.sum(row));
     const where = AXIS_NAMES.filter((_, k) => ((this.#axes[row]! >> k) & 1) === 1).join(", ");
     const how = this.#atFullScale[row] === 1 ? "at full scale" : "flat-topped below full scale";
     this.#setup.book.raise(

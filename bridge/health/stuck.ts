@@ -5,11 +5,12 @@
  *   s in counts, p = 1 / (2 s sqrt(pi))); at rest too.
  * - motion: the axis moved by MOVED_COUNTS just before, and noise is at least half a count (p <= 0.57).
  *
- * Data sheets give noise without the filter a hub may have set, which makes readings repeat more often. So a witness is
- * needed as well: the other axes of the same part must have changed in WITNESS_SHARE of their readings, which bounds p to
- * 0.35 where all three are filtered alike, 2e-14 for thirty repeats. When the whole part stands still, three axes repeat
- * together: 2e-9 even at p = 0.8, where noise is the evidence; else a neighbour's same axis must be changing. An axis of
- * less noise than half a count may rightly stand still and is never called stuck.
+ * Data sheets give noise without the filter a hub may have set, which makes readings repeat more often. So the axis must
+ * have changed in CHANGING_SHARE of its readings before it stood still, and a witness is needed: the other axes of the
+ * same part still change as often, which bounds p to 0.4 for an axis filtered alike, 1e-12 for thirty repeats. When the
+ * whole part stands still, three axes repeat together: where noise is the evidence that is its own witness (2e-9 at
+ * p = 0.8), else a neighbour's same axis must be changing. An axis with less noise than half a count may rightly stand
+ * still and is never called stuck.
  */
 import { CHANNELS, CONDITION, type Sweep } from "../sweep.ts";
 import { Hysteresis, Turn } from "./hysteresis.ts";
@@ -22,9 +23,9 @@ const LEAST_REPEATS = 25;
 const NOISE_COUNTS = 1;
 const NOISE_COUNTS_MOVING = 0.5;
 const MOVED_COUNTS = 20;
-const WITNESS_SHARE = 0.65;
-/** Weight of the newest reading in the share of readings that changed: the last thirty or so count. */
-const SHARE_WEIGHT = 1 / 16;
+const CHANGING_SHARE = 0.6;
+/** Weight of the newest reading in the share of readings that changed: the last sixty or so count. */
+const SHARE_WEIGHT = 1 / 32;
 /** Motion just before the standstill is looked for in this time, s. */
 const MOVED_WITHIN_S = 0.5;
 /** An axis that moves for so long again is free, s. */
@@ -40,8 +41,9 @@ export class StuckAxes {
   readonly #stillSinceS: Float64Array;
   /** Counts moved within MOVED_WITHIN_S before the standstill. */
   readonly #movedCounts: Float64Array;
-  /** Share of readings that differed from the one before. */
+  /** Share of readings that differed from the one before, and that share when the standstill began. */
   readonly #changing: Float64Array;
+  readonly #changedBefore: Float64Array;
   readonly #stuck: Uint8Array;
   readonly #high: RollingMax;
   readonly #negatedLow: RollingMax;
@@ -64,7 +66,9 @@ export class StuckAxes {
     this.#repeats = new Uint32Array(rows);
     this.#stillSinceS = new Float64Array(rows);
     this.#movedCounts = new Float64Array(rows);
-    this.#changing = new Float64Array(rows);
+    // An axis that never moved is judged by its noise.
+    this.#changing = new Float64Array(rows).fill(1);
+    this.#changedBefore = new Float64Array(rows);
     this.#stuck = new Uint8Array(rows);
     this.#high = new RollingMax(rows, MOVED_WITHIN_S, 5);
     this.#negatedLow = new RollingMax(rows, MOVED_WITHIN_S, 5);
@@ -89,9 +93,9 @@ export class StuckAxes {
     for (let row = start; row < start + 3; row++) {
       const value = sweep.raw[row]!;
       const same = value === this.#last[row];
-      this.#changing[row]! += SHARE_WEIGHT * ((same ? 0 : 1) - this.#changing[row]!);
       if (same) {
         if (this.#repeats[row] === 0) {
+          this.#changedBefore[row] = this.#changing[row]!;
           this.#movedCounts[row] = (this.#high.max(row) + this.#negatedLow.max(row)) / this.#count[row]!;
         }
         this.#repeats[row]!++;
@@ -101,6 +105,7 @@ export class StuckAxes {
         this.#last[row] = value;
         this.#stuck[row] = 0;
       }
+      this.#changing[row]! += SHARE_WEIGHT * ((same ? 0 : 1) - this.#changing[row]!);
       this.#high.put(row, value);
       this.#negatedLow.put(row, -value);
     }
@@ -133,19 +138,19 @@ export class StuckAxes {
   #shouldMove(row: number, start: number, timeS: number): boolean {
     const noisy = this.#noiseCounts[row]! >= NOISE_COUNTS;
     const moved = this.#movedCounts[row]! >= MOVED_COUNTS && this.#noiseCounts[row]! >= NOISE_COUNTS_MOVING;
-    if (!noisy && !moved) return false;
+    if ((!noisy && !moved) || this.#changedBefore[row]! < CHANGING_SHARE) return false;
     let still = 0;
     let changing = 0;
     for (let other = start; other < start + 3; other++) {
       if (this.#isStill(other, timeS)) still++;
-      else if (this.#changing[other]! >= WITNESS_SHARE) changing++;
+      else if (this.#changing[other]! >= CHANGING_SHARE) changing++;
     }
     if (still + changing < 3) return false;
     return changing > 0 || noisy || this.#isChanging(row - CHANNELS) || this.#isChanging(row + CHANNELS);
   }
 
   #isChanging(row: number): boolean {
-    return row >= 0 && row < this.#changing.length && this.#changing[row]! >= WITNESS_SHARE;
+    return row >= 0 && row < this.#changing.length && this.#changing[row]! >= CHANGING_SHARE;
   }
 
   #report(i: number): void {
