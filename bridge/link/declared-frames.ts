@@ -41,5 +41,5 @@ export function endOfChecked(rule: ChecksumRule, text: Buffer, length: number): 
 
 /** A decimal number; NaN for anything else, an empty column too. */
 export function decimal(column: string): number {
-  return /^\s*[+-]?(\d+\.?\d*|\.\d+)(e[+-]?\d+)?\s*$/i.test(column) ? Number(column) : Number.NaN;
+  return /^\s*[+-]?(\d+(\.\d*)?|\.\d+)(e[+-]?\d+)?\s*$/i.test(column) ? Number(column) : Number.NaN;
 }

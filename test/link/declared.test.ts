@@ -238,3 +238,32 @@ test.each(FRAMINGS)("a million random bytes pass through: $kind", (framing) => {
   expect(result.good).toBe(0);
   expect(result.discardedBytes).toBeGreaterThan(990_000);
 });
+
+test("random text never throws, chunking changes nothing, and the line after the next LF is found", () => {
+  const decode = decoderOf(
+    {
+      framing: { kind: "line", separator: " ", maxBytes: 40 },
+      packets: [
+        {
+          name: "one",
+          bytes: 4,
+          fields: [
+            { what: "tick", at: 0, unit: "us" },
+            { what: "gyro", sensor: 0, at: 1, unit: "rad/s" },
+          ],
+        },
+      ],
+    },
+    2,
+  );
+  const likely = fc.string({ unit: fc.constantFrom(..."0123456789.-eE  x\r\n\u00ff"), maxLength: 120 });
+  fc.assert(
+    fc.property(likely, fc.array(fc.nat(200), { maxLength: 9 }), (noise, cuts) => {
+      const bytes = Buffer.from(`${noise}\n 2000   1 -2.5 +3e-1\r\n`, "latin1");
+      const whole = decode(bytes);
+      expect(decode(bytes, cuts)).toEqual(whole);
+      expect(whole.sweeps.at(-1)?.tickUs).toBe(2000);
+      expect([...(whole.sweeps.at(-1)?.raw.slice(0, 3) ?? [])]).toEqual([1, -2.5, 0.3]);
+    }),
+  );
+});
