@@ -7,7 +7,7 @@
  * segment's middle: whatever the orientations, its length is the body's. Sensors that are lost drop out and their
  * neighbours carry on.
  */
-import { normalise, rotate, slerp } from "../numeric/quaternion.ts";
+import { arcBetween, normalise, rotate, slerpAlong } from "../numeric/quaternion.ts";
 import { TRUST } from "../sweep.ts";
 
 export interface MidlineOptions {
@@ -23,9 +23,6 @@ const NOSEWARD = new Float64Array([1, 0, 0]);
 export class Midline {
   /** 3 per point, m, earth axes, nose at the origin. Borrowed: rewritten by each step. A straight body facing east at first. */
   readonly positions: Float64Array;
-  /** Per point, rad, right side down positive. Borrowed likewise. */
-  readonly roll: Float64Array;
-
   readonly #segmentM: number;
   readonly #stations: readonly number[];
 
@@ -40,12 +37,16 @@ export class Midline {
   readonly #lost: Uint8Array;
   #sensorsLeft: number;
 
+  /** Angle between each sensor and the next one that is left, as of the last step. */
+  readonly #arc: Float64Array;
+  /** As of the last step. Borrowed from fusion, which rewrites it with the next sweep. */
+  #orientations = new Float64Array(0);
+
   readonly #orientation = new Float64Array(4);
   readonly #direction = new Float64Array(3);
 
   constructor({ lengthM, stations, pointCount }: MidlineOptions) {
     this.positions = new Float64Array(pointCount * 3);
-    this.roll = new Float64Array(pointCount);
     this.#segmentM = lengthM / (pointCount - 1);
     this.#stations = stations;
     this.#placeCount = 2 * pointCount - 1;
@@ -53,40 +54,60 @@ export class Midline {
     this.#behind = new Uint16Array(this.#placeCount);
     this.#share = new Float64Array(this.#placeCount);
     this.#lost = new Uint8Array(stations.length);
+    this.#arc = new Float64Array(stations.length);
     this.#sensorsLeft = stations.length;
     this.#placeSensors();
     for (let point = 1; point < pointCount; point++) this.positions[3 * point] = -point * this.#segmentM;
   }
 
   /**
-   * Rebuilds `positions` and `roll`. With every sensor lost, the last shape stays.
+   * Rebuilds `positions`. With every sensor lost, the last shape stays.
    * @param orientations 4 per sensor, body axes to earth
    * @param trust per sensor, as in sweep.ts
    */
   step(orientations: Float64Array, trust: Uint8Array): void {
     if (this.#lossChanged(trust)) this.#placeSensors();
     if (this.#sensorsLeft === 0) return;
+    this.#orientations = orientations;
     const { positions } = this;
-    for (let place = 0; place < this.#placeCount; place++) {
-      this.#interpolate(orientations, place);
-      const point = place >> 1;
-      if (place % 2 === 0) {
-        this.roll[point] = rollOf(this.#orientation);
-        continue;
-      }
-      rotate(this.#direction, this.#orientation, NOSEWARD);
-      for (let axis = 0; axis < 3; axis++) {
-        positions[3 * point + 3 + axis] =
-          positions[3 * point + axis] - this.#segmentM * this.#direction[axis];
-      }
+    const direction = this.#direction;
+    for (let place = 1, at = 0; place < this.#placeCount; place += 2, at += 3) {
+      this.#measureArc(place);
+      this.#interpolate(place);
+      rotate(direction, this.#orientation, NOSEWARD);
+      positions[at + 3] = positions[at] - this.#segmentM * direction[0];
+      positions[at + 4] = positions[at + 1] - this.#segmentM * direction[1];
+      positions[at + 5] = positions[at + 2] - this.#segmentM * direction[2];
     }
   }
 
+  /**
+   * The roll along the body as of the last step, for the display: rad per point, right side down positive. All 0 before
+   * the first step.
+   */
+  rollInto(out: Float32Array | Float64Array): void {
+    if (this.#orientations.length === 0) return;
+    for (let place = 0; place < this.#placeCount; place += 2) {
+      this.#measureArc(place);
+      this.#interpolate(place);
+      out[place >> 1] = rollOf(this.#orientation);
+    }
+  }
+
+  /** Measures the angle between the sensors before and behind `place`, once for all places between them. */
+  #measureArc(place: number): void {
+    const before = this.#before[place];
+    const behind = this.#behind[place];
+    if (place > 1 && before === this.#before[place - 2] && behind === this.#behind[place - 2]) return;
+    this.#arc[before] = arcBetween(this.#orientations, this.#orientations, 4 * before, 4 * behind);
+  }
+
   /** Leaves the orientation at `place` in #orientation. */
-  #interpolate(orientations: Float64Array, place: number): void {
-    const before = 4 * this.#before[place];
-    const behind = 4 * this.#behind[place];
-    slerp(this.#orientation, orientations, orientations, this.#share[place], 0, before, behind);
+  #interpolate(place: number): void {
+    const q = this.#orientations;
+    const before = this.#before[place];
+    const behind = this.#behind[place];
+    slerpAlong(this.#orientation, q, q, this.#arc[before], this.#share[place], 0, 4 * before, 4 * behind);
     normalise(this.#orientation, this.#orientation);
   }
 

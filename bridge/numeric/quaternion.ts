@@ -162,37 +162,57 @@ export function toRotationVector(out: Slots, q: Slots, outAt = 0, qAt = 0): void
 }
 
 /**
+ * Angle between two unit quaternions on the 3-sphere, the shorter way round (half the angle of the rotation between
+ * them), rad. From chord and co-chord: accurate near 0 as the arc cosine is not.
+ */
+export function arcBetween(a: Slots, b: Slots, aAt = 0, bAt = 0): number {
+  const sign = signOfDot(a, b, aAt, bAt);
+  let chord = 0;
+  let coChord = 0;
+  for (let i = 0; i < 4; i++) {
+    const from = a[aAt + i]!;
+    const to = sign * b[bAt + i]!;
+    chord += (to - from) * (to - from);
+    coChord += (to + from) * (to + from);
+  }
+  return 2 * Math.atan2(Math.sqrt(chord), Math.sqrt(coChord));
+}
+
+/**
  * out = spherical linear interpolation (Shoemake 1985, SIGGRAPH '85, "Animating rotation with quaternion curves") from
  * the unit quaternion a (share 0) to b (share 1), the shorter way round; of the two ways of a half turn, the one of b's
  * own sign. Shares outside 0..1 extrapolate at the same rate.
  */
 export function slerp(out: Slots, a: Slots, b: Slots, share: number, outAt = 0, aAt = 0, bAt = 0): void {
-  const aw = a[aAt]!;
-  const ax = a[aAt + 1]!;
-  const ay = a[aAt + 2]!;
-  const az = a[aAt + 3]!;
-  let bw = b[bAt]!;
-  let bx = b[bAt + 1]!;
-  let by = b[bAt + 2]!;
-  let bz = b[bAt + 3]!;
-  if (aw * bw + ax * bx + ay * by + az * bz < 0) {
-    bw = -bw;
-    bx = -bx;
-    by = -by;
-    bz = -bz;
-  }
-  // Angle between the two on the 3-sphere, from chord and co-chord: accurate near 0 as the arc cosine is not.
-  const chord = Math.hypot(bw - aw, bx - ax, by - ay, bz - az);
-  const coChord = Math.hypot(bw + aw, bx + ax, by + ay, bz + az);
-  const angle = 2 * Math.atan2(chord, coChord);
-  const sine = Math.sin(angle);
+  slerpAlong(out, a, b, arcBetween(a, b, aAt, bAt), share, outAt, aAt, bAt);
+}
+
+/** The same where the angle between the two, `arc` (see arcBetween), is known: for many shares between one pair. */
+export function slerpAlong(
+  out: Slots,
+  a: Slots,
+  b: Slots,
+  arc: number,
+  share: number,
+  outAt = 0,
+  aAt = 0,
+  bAt = 0,
+): void {
+  const sine = Math.sin(arc);
   const near = sine < 1e-9;
-  const fromA = near ? 1 - share : Math.sin((1 - share) * angle) / sine;
-  const fromB = near ? share : Math.sin(share * angle) / sine;
-  out[outAt] = fromA * aw + fromB * bw;
-  out[outAt + 1] = fromA * ax + fromB * bx;
-  out[outAt + 2] = fromA * ay + fromB * by;
-  out[outAt + 3] = fromA * az + fromB * bz;
+  const fromA = near ? 1 - share : Math.sin((1 - share) * arc) / sine;
+  const fromB = signOfDot(a, b, aAt, bAt) * (near ? share : Math.sin(share * arc) / sine);
+  out[outAt] = fromA * a[aAt]! + fromB * b[bAt]!;
+  out[outAt + 1] = fromA * a[aAt + 1]! + fromB * b[bAt + 1]!;
+  out[outAt + 2] = fromA * a[aAt + 2]! + fromB * b[bAt + 2]!;
+  out[outAt + 3] = fromA * a[aAt + 3]! + fromB * b[bAt + 3]!;
+}
+
+/** -1 where b lies on the far half of the 3-sphere from a, else 1. */
+function signOfDot(a: Slots, b: Slots, aAt: number, bAt: number): number {
+  const dot =
+    a[aAt]! * b[bAt]! + a[aAt + 1]! * b[bAt + 1]! + a[aAt + 2]! * b[bAt + 2]! + a[aAt + 3]! * b[bAt + 3]!;
+  return dot < 0 ? -1 : 1;
 }
 
 /**
