@@ -40,7 +40,7 @@ export class Midline {
   /** Angle between each sensor and the next one that is left, as of the last step. */
   readonly #arc: Float64Array;
   /** As of the last step. Borrowed from fusion, which rewrites it with the next sweep. */
-  #orientations = new Float64Array(0);
+  #orientations: Float64Array = new Float64Array(0);
 
   readonly #orientation = new Float64Array(4);
   readonly #direction = new Float64Array(3);
