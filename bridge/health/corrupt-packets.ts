@@ -20,6 +20,8 @@ export class CorruptPackets {
   readonly #credit: RollingSum;
   readonly #state = new Hysteresis(1, 0, QUIET_S);
   #sweepSeen = false;
+  /** Of this episode. */
+  #total = 0;
 
   constructor(setup: HealthSetup) {
     this.#setup = setup;
@@ -33,6 +35,7 @@ export class CorruptPackets {
     this.#advance(timeS);
     this.#bad.add(0, deltaBad);
     this.#credit.add(0, deltaBad * SWEEPS_PER_FRAME);
+    this.#total = this.#state.on[0] === 1 ? this.#total + deltaBad : this.#bad.sum(0);
     this.#step(timeS, deltaBad > 0);
   }
 
@@ -55,12 +58,12 @@ export class CorruptPackets {
     const { book, rateHz, thresholds } = this.#setup;
     const bad = this.#bad.sum(0);
     const many = bad > 0 && bad >= thresholds.corruptPacketsShare * rateHz - 1e-9;
-    const turn = this.#state.step(0, timeS, many, !fresh);
+    const turn = this.#state.step(0, timeS, many, !fresh, bad / rateHz);
     if (turn === Turn.END) book.clear("corrupt packets", -1, this.#state.lastBadS[0]!);
     if (turn !== Turn.REPORT) return;
-    const share = bad / rateHz;
+    const share = this.#state.worst[0]!;
     const severity = share >= ALARM_SHARE ? "alarm" : share >= CAUTION_SHARE ? "caution" : "notice";
-    const detail = `${bad} packets unreadable in the last second`;
+    const detail = `${this.#total} unreadable, up to ${Math.round(share * rateHz)} in a second`;
     book.raise("corrupt packets", -1, severity, this.#state.sinceS[0]!, detail);
   }
 }

@@ -115,13 +115,14 @@ export class Delivery {
     const due = sensor < 0 ? rateHz : rateHz / this.#period[row]!;
     const lost = this.#lost1.sum(row);
     const bad = lost > 0 && lost >= thresholds.lostSamplesShare * due - 1e-9;
-    const turn = this.#state.step(row, timeS, bad, lost === 0);
+    const share = Math.min(1, lost / due);
+    const turn = this.#state.step(row, timeS, bad, lost === 0, share);
     if (turn === Turn.END) book.clear("lost samples", sensor, this.#state.lastBadS[row]!);
     if (turn !== Turn.REPORT) return;
-    const share = lost / due;
-    const severity = share >= ALARM_SHARE ? "alarm" : share >= CAUTION_SHARE ? "caution" : "notice";
+    const worst = this.#state.worst[row]!;
+    const severity = worst >= ALARM_SHARE ? "alarm" : worst >= CAUTION_SHARE ? "caution" : "notice";
     const what = sensor < 0 ? "sweeps" : "readings";
-    const detail = `${Math.round(Math.min(lost, due))} of ${Math.round(due)} ${what} lost in the last second`;
+    const detail = `up to ${Math.round(worst * 100)} % of ${what} lost in a second`;
     book.raise("lost samples", sensor, severity, this.#state.sinceS[row]!, detail);
   }
 

@@ -11,8 +11,8 @@ import type { FieldReference } from "./field-reference.ts";
 
 /** Low-pass, s: a tenth of a beat's noise is left, and a magnet is still seen within a few readings. */
 const SMOOTHING_S = 0.15;
-/** Inclination is corrected from specific force with a time constant of about 3 s: two thirds of an error are gone. */
-const DOUBT_S = 5;
+/** Inclination is corrected from specific force with a time constant of about 3 s: after four of them 2 % is left. */
+const DOUBT_S = 12;
 /** Without gyro and accelerometer for longer than this the vertical drifts off, s. */
 const BRIDGED_S = 0.2;
 const DOUBTFUL = CONDITION.GYRO_CLIPPED | CONDITION.ACCEL_CLIPPED | CONDITION.STUCK | CONDITION.READ_FAILED;

@@ -56,8 +56,8 @@ export class Headroom {
       const free = Math.min(gyro, accel);
       const low = free < thresholds.lowHeadroomShare;
       const calm = free >= thresholds.lowHeadroomShare + RELEASE;
-      const turn = this.#state.step(i, sweep.timeS, low, calm);
-      if (turn === Turn.REPORT) this.#report(i, gyro <= accel ? 0 : 1, free);
+      const turn = this.#state.step(i, sweep.timeS, low, calm, 1 - free);
+      if (turn === Turn.REPORT) this.#report(i, gyro <= accel ? 0 : 1);
       else if (turn === Turn.END) book.clear("low headroom", i, sweep.timeS);
     }
   }
@@ -76,12 +76,12 @@ export class Headroom {
     }
   }
 
-  #report(i: number, p: number, free: number): void {
+  #report(i: number, p: number): void {
     let axis = 0;
     for (let k = 1; k < 3; k++) {
       if (this.#peak.max(i * AXES + p * 3 + k) > this.#peak.max(i * AXES + p * 3 + axis)) axis = k;
     }
-    const left = `${Math.round(free * 100)} % left on ${AXIS_NAMES[axis]}`;
+    const left = `${Math.round((1 - this.#state.worst[i]!) * 100)} % left on ${AXIS_NAMES[axis]}`;
     this.#setup.book.raise(
       "low headroom",
       i,

@@ -25,6 +25,8 @@ export class Hysteresis {
   readonly sinceS: Float64Array;
   /** Last reading that was not calm, s. */
   readonly lastBadS: Float64Array;
+  /** Greatest size given since the onset: what a flag's detail tells. */
+  readonly worst: Float64Array;
   readonly #onsetS: number;
   readonly #quietS: number;
   readonly #pending: Uint8Array;
@@ -34,27 +36,33 @@ export class Hysteresis {
     this.on = new Uint8Array(rows);
     this.sinceS = new Float64Array(rows);
     this.lastBadS = new Float64Array(rows);
+    this.worst = new Float64Array(rows);
     this.#onsetS = onsetS;
     this.#quietS = quietS;
     this.#pending = new Uint8Array(rows);
     this.#refreshS = new Float64Array(rows);
   }
 
-  /** Takes one reading of a row. */
-  step(row: number, timeS: number, bad: boolean, calm = !bad): Turn {
+  /** Takes one reading of a row. @param size how bad it is, in the detector's own measure */
+  step(row: number, timeS: number, bad: boolean, calm = !bad, size = 0): Turn {
     if (this.on[row] === 0) {
       if (!bad) {
         this.#pending[row] = 0;
         return Turn.NONE;
       }
-      if (this.#pending[row] === 0) this.sinceS[row] = timeS;
+      if (this.#pending[row] === 0) {
+        this.sinceS[row] = timeS;
+        this.worst[row] = size;
+      }
       this.#pending[row] = 1;
+      this.worst[row] = Math.max(this.worst[row]!, size);
       if (timeS - this.sinceS[row]! < this.#onsetS - TICK_S) return Turn.NONE;
       this.on[row] = 1;
       this.lastBadS[row] = timeS;
       this.#refreshS[row] = timeS + FIRST_REFRESH_S;
       return Turn.REPORT;
     }
+    this.worst[row] = Math.max(this.worst[row]!, size);
     if (!calm) this.lastBadS[row] = timeS;
     else if (timeS - this.lastBadS[row]! >= this.#quietS - TICK_S) {
       this.on[row] = 0;

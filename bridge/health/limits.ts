@@ -18,20 +18,23 @@ export interface PartLimits {
   readonly count: number;
   /** Standard deviation of one reading: white noise up to half the sampling rate. */
   readonly noise: number;
+  /** Readings a second, nominal. */
+  readonly rateHz: number;
 }
 
 /** Limits of gyro, accel and mag, in this order; null where the model has no such part. */
 export function limitsOf(sensor: HealthSensor, hubRateHz: number): readonly (PartLimits | null)[] {
   const { gyro, accel, mag } = sensor.model;
-  const root = Math.sqrt(Math.min(sensor.rateHz ?? hubRateHz, hubRateHz) / 2);
+  const rateHz = Math.min(sensor.rateHz ?? hubRateHz, hubRateHz);
+  const root = Math.sqrt(rateHz / 2);
   const micro = 1e-6 * STANDARD_GRAVITY;
   return [
-    part(gyro.rangeDegPerS * RAD_PER_DEG, gyro.bits, gyro.noiseDegPerSPerSqrtHz * RAD_PER_DEG * root),
-    part(accel.rangeG * STANDARD_GRAVITY, accel.bits, accel.noiseMicroGPerSqrtHz * micro * root),
-    mag ? part(mag.rangeUT, mag.bits, mag.noiseUT) : null,
+    part(gyro.rangeDegPerS * RAD_PER_DEG, gyro.bits, gyro.noiseDegPerSPerSqrtHz * RAD_PER_DEG * root, rateHz),
+    part(accel.rangeG * STANDARD_GRAVITY, accel.bits, accel.noiseMicroGPerSqrtHz * micro * root, rateHz),
+    mag ? part(mag.rangeUT, mag.bits, mag.noiseUT, Math.min(mag.rateHz ?? rateHz, hubRateHz)) : null,
   ];
 }
 
-function part(range: number, bits: number, noise: number): PartLimits {
-  return { range, count: (2 * range) / 2 ** bits, noise };
+function part(range: number, bits: number, noise: number, rateHz: number): PartLimits {
+  return { range, count: (2 * range) / 2 ** bits, noise, rateHz };
 }

@@ -71,7 +71,7 @@ export class MagneticInterference {
   #judge(i: number, timeS: number): void {
     const off = this.#meter.off[i]!;
     const limit = this.#setup.thresholds.fieldOffShare;
-    const turn = this.#disturbed.step(i, timeS, off >= limit, !(off >= limit * RELEASE));
+    const turn = this.#disturbed.step(i, timeS, off >= limit, !(off >= limit * RELEASE), off);
     if (turn === Turn.REPORT && this.#told[i] === Told.ITSELF) this.#report(i);
     if (turn !== Turn.END) return;
     if (this.#told[i] === Told.ITSELF) {
@@ -114,23 +114,23 @@ export class MagneticInterference {
   }
 
   #report(i: number): void {
-    const off = this.#meter.off[i]!;
+    const off = this.#disturbed.worst[i]!;
     this.#setup.book.raise(
       "magnetic interference",
       i,
       off >= ALARM_OFF ? "alarm" : "caution",
       this.#disturbed.sinceS[i]!,
-      `field ${Math.round(off * 100)} % off`,
+      `field up to ${Math.round(off * 100)} % off`,
     );
   }
 
   #judgeRig(timeS: number): void {
     let count = 0;
     for (let i = 0; i < this.#told.length; i++) if (this.#told[i] === Told.RIG) count++;
-    const turn = this.#rig.step(0, timeS, count >= this.#enough);
+    const turn = this.#rig.step(0, timeS, count >= this.#enough, count < this.#enough, count);
     if (turn === Turn.REPORT) {
       this.#endNotice(timeS);
-      const detail = `field off at ${count} of ${this.#withMag} sensors`;
+      const detail = `field off at ${this.#rig.worst[0]} of ${this.#withMag} sensors`;
       this.#setup.book.raise(RIG, -1, "alarm", this.#rigSinceS, detail);
     } else if (turn === Turn.END) {
       this.#setup.book.clear(RIG, -1, timeS - QUIET_S);

@@ -15,11 +15,14 @@ export class ReadErrors {
   readonly #setup: HealthSetup;
   readonly #failed: RollingSum;
   readonly #state: Hysteresis;
+  /** The last read status that was not 0. */
+  readonly #status: Uint8Array;
 
   constructor(setup: HealthSetup) {
     this.#setup = setup;
     this.#failed = new RollingSum(setup.sensors.length, 1, 10);
     this.#state = new Hysteresis(setup.sensors.length, 0, QUIET_S);
+    this.#status = new Uint8Array(setup.sensors.length);
   }
 
   /** Marks failed readings. */
@@ -33,16 +36,18 @@ export class ReadErrors {
       }
       const failed = this.#failed.sum(i);
       const bad = failed > 0 && failed >= thresholds.readErrorsShare * rateHz - 1e-9;
-      const turn = this.#state.step(i, sweep.timeS, bad, sweep.readStatus[i] === 0);
-      if (turn === Turn.REPORT) this.#report(i, Math.min(1, failed / rateHz), sweep.readStatus[i]!);
+      if (sweep.readStatus[i] !== 0) this.#status[i] = sweep.readStatus[i]!;
+      const share = Math.min(1, failed / rateHz);
+      const turn = this.#state.step(i, sweep.timeS, bad, sweep.readStatus[i] === 0, share);
+      if (turn === Turn.REPORT) this.#report(i);
       else if (turn === Turn.END) book.clear("sensor read errors", i, this.#state.lastBadS[i]!);
     }
   }
 
-  #report(i: number, share: number, status: number): void {
+  #report(i: number): void {
+    const share = this.#state.worst[i]!;
     const severity = share >= ALARM_SHARE ? "alarm" : share >= CAUTION_SHARE ? "caution" : "notice";
-    const code = status === 0 ? "" : `, status ${status}`;
-    const detail = `${Math.round(share * 100)} % of readings failed in the last second${code}`;
+    const detail = `up to ${Math.round(share * 100)} % of readings failed in a second, status ${this.#status[i]}`;
     this.#setup.book.raise("sensor read errors", i, severity, this.#state.sinceS[i]!, detail);
   }
 }

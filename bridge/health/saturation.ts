@@ -21,9 +21,10 @@ export class Saturation {
   readonly #setup: HealthSetup;
   /** Readings at or above this are at full scale; sensors x parts, Infinity where there is no such part. */
   readonly #fullScale: Float64Array;
+  /** Readings a second. */
+  readonly #due: Float64Array;
   readonly #flatTops: FlatTops;
   readonly #state: Hysteresis;
-  readonly #readings: RollingSum;
   readonly #clipped: RollingSum;
   /** Bits of the axes clipped in this episode, and whether any was at full scale. */
   readonly #axes: Uint8Array;
@@ -32,16 +33,12 @@ export class Saturation {
   constructor(setup: HealthSetup) {
     const rows = setup.sensors.length * PARTS.length;
     this.#setup = setup;
-    this.#fullScale = Float64Array.from(
-      setup.sensors.flatMap((sensor) =>
-        limitsOf(sensor, setup.rateHz).map((l) =>
-          l ? l.range * setup.thresholds.fullScaleShare : Number.POSITIVE_INFINITY,
-        ),
-      ),
-    );
+    const limits = setup.sensors.flatMap((sensor) => limitsOf(sensor, setup.rateHz));
+    const share = setup.thresholds.fullScaleShare;
+    this.#fullScale = Float64Array.from(limits, (l) => (l ? l.range * share : Number.POSITIVE_INFINITY));
+    this.#due = Float64Array.from(limits, (l) => l?.rateHz ?? 1);
     this.#flatTops = new FlatTops(setup);
     this.#state = new Hysteresis(rows, 0, QUIET_S);
-    this.#readings = new RollingSum(rows, 1, 10);
     this.#clipped = new RollingSum(rows, 1, 10);
     this.#axes = new Uint8Array(rows);
     this.#atFullScale = new Uint8Array(rows);
@@ -49,7 +46,6 @@ export class Saturation {
 
   /** Needs the gaps of this sweep marked. */
   observe(sweep: Sweep): void {
-    this.#readings.advance(sweep.timeS);
     this.#clipped.advance(sweep.timeS);
     this.#flatTops.advance(sweep.timeS);
     for (let i = 0; i < sweep.sensorCount; i++) {
@@ -70,10 +66,11 @@ export class Saturation {
       behind = Math.max(behind, readings);
     }
     this.#axes[row]! |= now;
-    this.#readings.add(row, 1);
     this.#clipped.add(row, behind + (now === 0 ? 0 : 1));
     if (now !== 0) sweep.conditions[i]! |= PARTS[p]!.clipped;
-    const turn = this.#state.step(row, sweep.timeS, now !== 0 || behind > 0);
+    const bad = now !== 0 || behind > 0;
+    const share = Math.min(1, this.#clipped.sum(row) / this.#due[row]!);
+    const turn = this.#state.step(row, sweep.timeS, bad, !bad, share);
     if (turn === Turn.REPORT) this.#report(i, p);
     else if (turn === Turn.END) {
       this.#setup.book.clear(KINDS[p]!, i, this.#state.lastBadS[row]!);
@@ -96,7 +93,7 @@ export class Saturation {
 
   #report(i: number, p: number): void {
     const row = i * PARTS.length + p;
-    const share = Math.min(1, this.#clipped.sum(row) / this.#readings.sum(row));
+    const share = this.#state.worst[row]!;
     const where = AXIS_NAMES.filter((_, k) => ((this.#axes[row]! >> k) & 1) === 1).join(", ");
     const how = this.#atFullScale[row] === 1 ? "at full scale" : "flat-topped below full scale";
     this.#setup.book.raise(
@@ -104,11 +101,7 @@ export class Saturation {
       i,
       share >= ALARM_SHARE ? "alarm" : "caution",
       this.#state.sinceS[row]!,
-      `${how} on ${where}, ${percent(share)} of the last second`,
+      `${how} on ${where}, up to ${Math.max(1, Math.round(share * 100))} % of a second`,
     );
   }
-}
-
-function percent(share: number): string {
-  return share > 0 && share < 0.01 ? "under 1 %" : `${Math.round(share * 100)} %`;
 }

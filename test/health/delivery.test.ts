@@ -17,7 +17,7 @@ describe("lost sweeps", () => {
     expect(bench.raised).toEqual(["lost samples@-1"]);
     expect(bench.flags[0]).toMatchObject({
       severity: "notice",
-      detail: "3 of 100 sweeps lost in the last second",
+      detail: "up to 3 % of sweeps lost in a second",
     });
     for (const conditions of bench.rig.sweep.conditions) expect(conditions).toBe(CONDITION.GAP);
     bench.run(2.2);

@@ -77,7 +77,7 @@ describe("corrupt packets", () => {
     bench.health.corruption(1, bench.timeS + 0.13);
     bench.run(0.1);
     expect(bench.raised).toEqual(["corrupt packets@-1", "lost samples@-1"]);
-    expect(bench.flags[1]!.detail).toBe("10 of 100 sweeps lost in the last second");
+    expect(bench.flags[1]!.detail).toBe("up to 10 % of sweeps lost in a second");
   });
 
   it("explain none a second later", () => {
@@ -109,7 +109,7 @@ describe("sensor read errors", () => {
     const bench = new HealthBench().run(5).run(0.5, failing(2, withReading));
     expect(bench.raised).toEqual(["sensor read errors@2"]);
     expect(bench.flags[0]).toMatchObject({ severity: "alarm", startS: 5 });
-    expect(bench.flags[0]!.detail).toMatch(/^\d\d % of readings failed in the last second, status 3$/);
+    expect(bench.flags[0]!.detail).toMatch(/^up to \d\d % of readings failed in a second, status 3$/);
     expect(bench.rig.sweep.conditions[2]! & CONDITION.READ_FAILED).toBe(CONDITION.READ_FAILED);
     bench.run(2.2);
     expect(bench.openNow).toEqual([]);

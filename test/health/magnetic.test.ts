@@ -31,7 +31,7 @@ describe.each([
     const spoil = magnet([3], field);
     bench.run(1, spoil);
     expect(bench.raised).toEqual(["magnetic interference@3"]);
-    expect(bench.flags[0]!.detail).toMatch(/^field \d+ % off$/);
+    expect(bench.flags[0]!.detail).toMatch(/^field up to \d+ % off$/);
     bench.run(5, spoil);
     expect(bench.rig.sweep.conditions[3]! & CONDITION.MAG_DISTURBED).toBe(CONDITION.MAG_DISTURBED);
     expect(bench.rig.sweep.conditions[2]! & CONDITION.MAG_DISTURBED).toBe(0);
@@ -155,7 +155,7 @@ describe("a vertical that cannot be believed", () => {
       }
     };
     run(0.1, true);
-    run(3, false);
+    run(10, false);
     expect(bench.raised).toEqual(["gyro saturation@0"]);
     // The same tilt with nothing to excuse it is told.
     run(4, false);
