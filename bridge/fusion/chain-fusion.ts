@@ -14,15 +14,15 @@
 import { setIdentity } from "../numeric/quaternion.ts";
 import { CONDITION, HAS_ACCEL, HAS_GYRO, HAS_INERTIAL, HAS_MAG, type Sweep, TRUST } from "../sweep.ts";
 import { Coefficients } from "./coefficients.ts";
-import { estimateBias, followLevel } from "./gyro-bias.ts";
-import { correctHeading, levelField, noseYaw, startHeading } from "./heading.ts";
+import { estimateBias } from "./gyro-bias.ts";
+import { composeEarth, correctHeading, levelField, noseYaw, startHeading } from "./heading.ts";
 import { composeLevel, correctInclination } from "./inclination.ts";
 import { watchField } from "./magnetic-reference.ts";
 import { DEFAULT_PARAMETERS, type FusionParameters } from "./parameters.ts";
 import { takeReading } from "./reading.ts";
-import { watchAccel, watchRate } from "./rest.ts";
-import { SensorState } from "./sensor-state.ts";
-import { extrapolate, integrateRate, pushRate } from "./strapdown.ts";
+import { createRecord, loseOrientation, resetRecord, Slot } from "./record.ts";
+import { watchRest } from "./rest.ts";
+import { extrapolate, integrateRate, takeRate } from "./strapdown.ts";
 import { trustOf } from "./trust.ts";
 
 export interface ChainFusionOptions {
@@ -49,7 +49,7 @@ export class ChainFusion {
   readonly #parameters: FusionParameters;
   readonly #coefficients: Coefficients;
   readonly #magnetic: boolean;
-  readonly #states: readonly SensorState[];
+  readonly #records: readonly Float64Array[];
   readonly #offsetsS: Float64Array;
   /** A sensor without a reading for longer than this has missed one, s. */
   readonly #dueAfterS: Float64Array;
@@ -67,7 +67,7 @@ export class ChainFusion {
     this.#parameters = { ...DEFAULT_PARAMETERS, ...parameters };
     this.#coefficients = new Coefficients(this.#parameters, rateHz);
     this.#magnetic = heading === "magnetic";
-    this.#states = intervalsS.map((intervalS) => new SensorState(this.#parameters, intervalS));
+    this.#records = intervalsS.map((intervalS) => createRecord(this.#parameters, intervalS));
     this.#offsetsS = Float64Array.from(intervalsS, (_, i) => samplingOffsetsS[i] ?? 0);
     this.#dueAfterS = Float64Array.from(intervalsS, (intervalS) => intervalS - 0.5 / rateHz);
     this.orientations = new Float64Array(sensorCount * 4);
@@ -78,8 +78,8 @@ export class ChainFusion {
 
   /** Back to before the first sweep. */
   reset(): void {
-    this.#states.forEach((state, sensor) => {
-      state.reset(this.#parameters);
+    this.#records.forEach((record, sensor) => {
+      resetRecord(record, this.#parameters);
       setIdentity(this.orientations, sensor * 4);
     });
     this.trust.fill(TRUST.LOST);
@@ -88,105 +88,93 @@ export class ChainFusion {
 
   /** One sweep: reads values, presence, conditions and time; updates all orientations. */
   step(sweep: Sweep): void {
-    for (let sensor = 0; sensor < this.#states.length; sensor++) {
-      const state = this.#states[sensor]!;
-      this.#update(state, sweep, sensor);
-      this.#write(state, sweep.timeS, sensor);
+    for (let sensor = 0; sensor < this.#records.length; sensor++) {
+      const record = this.#records[sensor]!;
+      record[Slot.NOW] = sweep.timeS;
+      this.#update(record, sweep, sensor);
+      this.#write(record, sensor);
     }
   }
 
-  #update(state: SensorState, sweep: Sweep, sensor: number): void {
-    const { timeS } = sweep;
-    const parameters = this.#parameters;
-    if (state.started && timeS - state.gyroTimeS > parameters.lostAfterS) {
-      state.startYaw = noseYaw(state);
-      state.loseOrientation(parameters);
+  #update(r: Float64Array, sweep: Sweep, sensor: number): void {
+    if (r[Slot.STARTED] === 1 && r[Slot.NOW]! - r[Slot.RATE_TIME]! > this.#parameters.lostAfterS) {
+      r[Slot.START_YAW] = noseYaw(r);
+      loseOrientation(r, this.#parameters);
     }
-    const parts = takeReading(state, sweep, sensor);
+    const parts = takeReading(r, sweep, sensor);
     if (!(parts & HAS_GYRO)) return;
-    if (sweep.conditions[sensor]! & CONDITION.GYRO_CLIPPED)
-      state.clippedUntilS = timeS + parameters.clippedHoldS;
-    if (!state.started) {
-      if ((parts & HAS_INERTIAL) === HAS_INERTIAL) this.#start(state, timeS);
+    const conditions = sweep.conditions[sensor]!;
+    if (conditions & CONDITION.GYRO_CLIPPED)
+      r[Slot.CLIPPED_UNTIL] = r[Slot.NOW]! + this.#parameters.clippedHoldS;
+    if (r[Slot.STARTED] === 0) {
+      if ((parts & HAS_INERTIAL) !== HAS_INERTIAL) return;
+      this.#start(r);
     } else {
-      this.#turn(state, timeS);
-      if (parts & HAS_ACCEL) this.#level(state, timeS);
-      else composeLevel(state);
+      turn(r);
+      if (parts & HAS_ACCEL) this.#level(r);
+      else composeLevel(r);
     }
-    if (state.started && this.#magnetic && parts & HAS_MAG) {
-      state.fieldFlagged = (sweep.conditions[sensor]! & CONDITION.MAG_DISTURBED) !== 0;
-      this.#head(state, timeS);
+    if (this.#magnetic && parts & HAS_MAG) {
+      r[Slot.FIELD_FLAGGED] = conditions & CONDITION.MAG_DISTURBED ? 1 : 0;
+      this.#head(r);
     }
   }
 
   /** First reading: its specific force gives the inclination. */
-  #start(state: SensorState, timeS: number): void {
-    const gains = this.#coefficients.forStep(state.intervalS);
-    state.gyroTimeS = timeS;
-    state.gyroStepS = gains.stepS;
-    state.accelTimeS = timeS;
-    state.accelStepS = gains.stepS;
-    pushRate(state);
-    watchRate(state, gains, this.#parameters);
-    watchAccel(state, gains, this.#parameters);
-    correctInclination(state, gains);
-    composeLevel(state);
-    followLevel(state, gains);
-    startHeading(state);
-    state.started = true;
-  }
-
-  /** A new angular rate. */
-  #turn(state: SensorState, timeS: number): void {
-    state.gyroStepS = timeS - state.gyroTimeS;
-    state.gyroTimeS = timeS;
-    watchRate(state, this.#coefficients.forStep(state.gyroStepS), this.#parameters);
-    integrateRate(state);
+  #start(r: Float64Array): void {
+    r[Slot.STARTED] = 1;
+    r[Slot.RATE_TIME] = r[Slot.NOW]!;
+    r[Slot.FORCE_TIME] = r[Slot.NOW]!;
+    r[Slot.RATE_STEP] = r[Slot.INTERVAL]!;
+    r[Slot.FORCE_STEP] = r[Slot.INTERVAL]!;
+    const gains = this.#coefficients.forStep(r, Slot.INTERVAL);
+    takeRate(r);
+    watchRest(r, gains, this.#parameters);
+    correctInclination(r, gains);
+    composeLevel(r);
+    startHeading(r);
   }
 
   /** A new specific force. */
-  #level(state: SensorState, timeS: number): void {
-    state.accelStepS = timeS - state.accelTimeS;
-    state.accelTimeS = timeS;
-    const gains = this.#coefficients.forStep(state.accelStepS);
-    watchAccel(state, gains, this.#parameters);
-    correctInclination(state, gains);
-    composeLevel(state);
-    estimateBias(state, gains, this.#parameters, timeS >= state.clippedUntilS);
+  #level(r: Float64Array): void {
+    r[Slot.FORCE_STEP] = r[Slot.NOW]! - r[Slot.FORCE_TIME]!;
+    r[Slot.FORCE_TIME] = r[Slot.NOW]!;
+    const gains = this.#coefficients.forStep(r, Slot.FORCE_STEP);
+    watchRest(r, gains, this.#parameters);
+    correctInclination(r, gains);
+    composeLevel(r);
+    estimateBias(r, this.#coefficients, this.#parameters);
   }
 
   /** A new magnetic field. */
-  #head(state: SensorState, timeS: number): void {
-    state.magStepS = state.magSeen ? timeS - state.magTimeS : state.intervalS;
-    state.magTimeS = timeS;
-    state.magSeen = true;
-    const gains = this.#coefficients.forStep(state.magStepS);
-    levelField(state);
-    watchField(state, gains, this.#parameters);
-    correctHeading(state, gains, this.#parameters);
+  #head(r: Float64Array): void {
+    r[Slot.FIELD_STEP] = r[Slot.FIELD_SEEN] === 1 ? r[Slot.NOW]! - r[Slot.FIELD_TIME]! : r[Slot.INTERVAL]!;
+    r[Slot.FIELD_TIME] = r[Slot.NOW]!;
+    r[Slot.FIELD_SEEN] = 1;
+    const gains = this.#coefficients.forStep(r, Slot.FIELD_STEP);
+    levelField(r);
+    watchField(r, gains, this.#parameters);
+    correctHeading(r, gains, this.#parameters);
   }
 
-  /** The output: heading on top of the level orientation, at the sweep's own time. A lost orientation stands still. */
-  #write(state: SensorState, timeS: number, sensor: number): void {
-    const ageS = timeS - state.gyroTimeS;
-    const bridged = state.started && ageS > this.#dueAfterS[sensor]!;
-    if (state.started) {
-      const at = sensor * 4;
-      composeEarth(state, this.orientations, at);
+  /** The output at the sweep's own time. A lost orientation stands still. */
+  #write(r: Float64Array, sensor: number): void {
+    const at = sensor * 4;
+    const ageS = r[Slot.NOW]! - r[Slot.RATE_TIME]!;
+    const bridged = r[Slot.STARTED] === 1 && ageS > this.#dueAfterS[sensor]!;
+    if (r[Slot.STARTED] === 1) {
+      composeEarth(r, this.orientations, at);
       const aheadS = ageS - this.#offsetsS[sensor]!;
-      if (aheadS !== 0) extrapolate(state, this.orientations, at, aheadS, this.#parameters.slopeFadeS);
+      if (aheadS !== 0) extrapolate(r, this.orientations, at, aheadS, this.#parameters.slopeFadeS);
     }
     this.bridged[sensor] = bridged ? 1 : 0;
-    this.trust[sensor] = trustOf(state, timeS, this.#magnetic, bridged, this.#parameters);
+    this.trust[sensor] = trustOf(r, this.#magnetic, bridged, this.#parameters);
   }
 }
 
-/** out = heading · level: body axes -> earth. */
-function composeEarth({ heading, level }: SensorState, out: Float64Array, at: number): void {
-  const c = heading[0]!;
-  const s = heading[1]!;
-  out[at] = c * level[0]! - s * level[3]!;
-  out[at + 1] = c * level[1]! - s * level[2]!;
-  out[at + 2] = c * level[2]! + s * level[1]!;
-  out[at + 3] = c * level[3]! + s * level[0]!;
+/** A new angular rate. */
+function turn(r: Float64Array): void {
+  r[Slot.RATE_STEP] = r[Slot.NOW]! - r[Slot.RATE_TIME]!;
+  r[Slot.RATE_TIME] = r[Slot.NOW]!;
+  integrateRate(r);
 }

@@ -16,7 +16,7 @@ const FORGOTTEN_SIGMA = 0.1 * RAD_PER_DEG;
 /** All that a step of one length needs. */
 export class StepGains {
   readonly stepS: number;
-  readonly accel: LowPassGains;
+  readonly force: LowPassGains;
   readonly rest: LowPassGains;
   readonly magCurrent: LowPassGains;
   /** Share of the heading's disagreement with the field that one step takes away. */
@@ -32,7 +32,7 @@ export class StepGains {
 
   constructor(parameters: FusionParameters, stepS: number) {
     this.stepS = stepS;
-    this.accel = new LowPassGains(parameters.accelTauS, stepS);
+    this.force = new LowPassGains(parameters.accelTauS, stepS);
     this.rest = new LowPassGains(parameters.restTauS, stepS);
     this.magCurrent = new LowPassGains(parameters.magCurrentTauS, stepS);
     this.heading = firstOrderGain(parameters.magTauS, stepS);
@@ -59,8 +59,12 @@ export class Coefficients {
     );
   }
 
-  /** The set for a step of this length (above zero). An odd length, which a steady hub never gives, makes its own. */
-  forStep(stepS: number): StepGains {
+  /**
+   * The set for the step length at `at` in a record (s, above zero). An odd length, which a steady hub never gives, makes
+   * a set of its own.
+   */
+  forStep(record: Float64Array, at: number): StepGains {
+    const stepS = record[at]!;
     const steps = stepS * this.#rateHz;
     const whole = Math.round(steps);
     if (whole >= 1 && whole <= MULTIPLES && Math.abs(steps - whole) <= SAME_STEP * whole)

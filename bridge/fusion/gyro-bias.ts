@@ -5,101 +5,121 @@
  * the horizontal part of the bias's error, seen through the level matrix with the same delay as the correction, that is
  * through the same low-pass; about the vertical there is only the weak assumption of no bias.
  *
- * The three rows of a measurement have independent errors, so they are taken one after the other: the same result as the
- * matrix form, without inverting a matrix.
+ * Both are summed over a short span of readings, and the filter measures once a span: against its time constants of
+ * seconds to minutes nothing is lost, and most of the work is saved. The three rows of a measurement have independent
+ * errors, so they are taken one after the other: the same result as the matrix form, without inverting a matrix.
  */
-import type { StepGains } from "./coefficients.ts";
+import { stepLowPass } from "../numeric/low-pass.ts";
+import type { Coefficients, StepGains } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
-import type { SensorState } from "./sensor-state.ts";
+import { Slot } from "./record.ts";
 
-const IDENTITY = Float64Array.of(1, 0, 0, 0, 1, 0, 0, 0, 1);
-/** Disagreement of each row, rad/s, and its variance, (rad/s)². */
+/** The measurement matrix by rows, each row's disagreement (rad/s), and its variance ((rad/s)²). */
+const seenThrough = new Float64Array(9);
 const residual = new Float64Array(3);
 const variance = new Float64Array(3);
 const before = new Float64Array(3);
 
-/**
- * One step, after the inclination correction.
- * @param believable false: the newest corrections come from faulty rates; the covariance grows, and only rest is measured
- */
+/** After each inclination correction: sums, and at the end of a span estimates the bias. */
 export function estimateBias(
-  state: SensorState,
-  gains: StepGains,
+  r: Float64Array,
+  coefficients: Coefficients,
   parameters: FusionParameters,
-  believable: boolean,
 ): void {
-  followLevel(state, gains);
-  grow(state, gains, parameters);
-  if (state.atRest) {
-    measureAtRest(state, gains);
-    update(state, IDENTITY, parameters);
-  } else if (believable) {
-    measureInMotion(state, gains);
-    update(state, state.levelMatrixLowPass.value, parameters);
+  sum(r);
+  if (r[Slot.SPAN]! < parameters.biasSpanS) return;
+  const gains = coefficients.forStep(r, Slot.SPAN);
+  followLevel(r, gains);
+  growCovariance(r, gains, parameters);
+  if (r[Slot.AT_REST] === 1) {
+    measureAtRest(r, gains);
+    updateBias(r, parameters);
+  } else if (r[Slot.NOW]! >= r[Slot.CLIPPED_UNTIL]!) {
+    // Corrections that follow clipped rates would be taken for bias.
+    measureInMotion(r, gains);
+    updateBias(r, parameters);
   }
+  for (let i: number = Slot.SPAN; i < Slot.MEAN_MATRIX; i++) r[i] = 0;
+}
+
+function sum(r: Float64Array): void {
+  const stepS = r[Slot.FORCE_STEP]!;
+  r[Slot.SPAN]! += stepS;
+  r[Slot.SPAN_TILT]! -= r[Slot.UP + 1]!;
+  r[Slot.SPAN_TILT + 1]! += r[Slot.UP]!;
+  for (let i = 0; i < 9; i++) r[Slot.SPAN_MATRIX + i]! += stepS * r[Slot.LEVEL_MATRIX + i]!;
 }
 
 /** Carries the level matrix, and the bias seen through it, through the inclination's low-pass. */
-export function followLevel(state: SensorState, gains: StepGains): void {
-  const { levelMatrix: m, levelBias, bias } = state;
-  levelBias[0] = m[0]! * bias[0]! + m[1]! * bias[1]! + m[2]! * bias[2]!;
-  levelBias[1] = m[3]! * bias[0]! + m[4]! * bias[1]! + m[5]! * bias[2]!;
-  state.levelMatrixLowPass.step(gains.accel, m);
-  state.levelBiasLowPass.step(gains.accel, levelBias);
+function followLevel(r: Float64Array, gains: StepGains): void {
+  const scale = 1 / r[Slot.SPAN]!;
+  for (let i = 0; i < 9; i++) r[Slot.MEAN_MATRIX + i] = scale * r[Slot.SPAN_MATRIX + i]!;
+  r[Slot.LEVEL_BIAS] = along(r, Slot.MEAN_MATRIX);
+  r[Slot.LEVEL_BIAS + 1] = along(r, Slot.MEAN_MATRIX + 3);
+  stepLowPass(r, Slot.LEVEL_LOW_PASS, 11, Slot.MEAN_MATRIX, gains.force);
 }
 
 /** The bias wanders: its variance grows, up to where it started. */
-function grow(state: SensorState, gains: StepGains, parameters: FusionParameters): void {
-  const p = state.biasCovariance;
-  const most = parameters.biasSigmaStart ** 2;
-  if (p[0]! < most) p[0]! += gains.biasNoise;
-  if (p[3]! < most) p[3]! += gains.biasNoise;
-  if (p[5]! < most) p[5]! += gains.biasNoise;
+function growCovariance(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
+  const most = parameters.biasSigmaStart * parameters.biasSigmaStart;
+  for (const axis of [Slot.BIAS_COVARIANCE, Slot.BIAS_COVARIANCE + 3, Slot.BIAS_COVARIANCE + 5]) {
+    if (r[axis]! < most) r[axis]! += gains.biasNoise;
+  }
 }
 
-function measureAtRest(state: SensorState, gains: StepGains): void {
-  for (let i = 0; i < 3; i++) residual[i] = state.restRate.value[i]! - state.bias[i]!;
-  variance.fill(gains.restVariance);
+function measureAtRest(r: Float64Array, gains: StepGains): void {
+  for (let i = 0; i < 9; i++) seenThrough[i] = i % 4 === 0 ? 1 : 0;
+  for (let i = 0; i < 3; i++) {
+    residual[i] = r[Slot.REST_LOW_PASS + 1 + i]! - r[Slot.BIAS + i]!;
+    variance[i] = gains.restVariance;
+  }
 }
 
-function measureInMotion(state: SensorState, gains: StepGains): void {
-  const { up, bias, accelStepS } = state;
-  const m = state.levelMatrixLowPass.value;
-  const seen = state.levelBiasLowPass.value;
-  residual[0] = -up[1]! / accelStepS + seen[0]! - (m[0]! * bias[0]! + m[1]! * bias[1]! + m[2]! * bias[2]!);
-  residual[1] = up[0]! / accelStepS + seen[1]! - (m[3]! * bias[0]! + m[4]! * bias[1]! + m[5]! * bias[2]!);
-  residual[2] = -(m[6]! * bias[0]! + m[7]! * bias[1]! + m[8]! * bias[2]!);
+function measureInMotion(r: Float64Array, gains: StepGains): void {
+  const matrix = Slot.LEVEL_LOW_PASS + 1;
+  const bias = matrix + 9;
+  const scale = 1 / r[Slot.SPAN]!;
+  for (let i = 0; i < 9; i++) seenThrough[i] = r[matrix + i]!;
+  residual[0] = scale * r[Slot.SPAN_TILT]! + r[bias]! - along(r, matrix);
+  residual[1] = scale * r[Slot.SPAN_TILT + 1]! + r[bias + 1]! - along(r, matrix + 3);
+  residual[2] = -along(r, matrix + 6);
   variance[0] = gains.motionVariance;
   variance[1] = gains.motionVariance;
   variance[2] = gains.verticalVariance;
 }
 
-/** Kalman update with the measurement matrix h (3 x 3, by rows); residuals and result are held within the bias limit. */
-function update(state: SensorState, h: Float64Array, parameters: FusionParameters): void {
-  const { bias, biasCovariance: p } = state;
+/** Kalman update, row by row; residuals and the result are held within the bias limit. */
+function updateBias(r: Float64Array, parameters: FusionParameters): void {
   const limit = parameters.biasLimit;
-  before.set(bias);
+  const b: number = Slot.BIAS;
+  const p: number = Slot.BIAS_COVARIANCE;
+  for (let i = 0; i < 3; i++) before[i] = r[b + i]!;
   for (let row = 0; row < 3; row++) {
-    const hx = h[3 * row]!;
-    const hy = h[3 * row + 1]!;
-    const hz = h[3 * row + 2]!;
-    const px = p[0]! * hx + p[1]! * hy + p[2]! * hz;
-    const py = p[1]! * hx + p[3]! * hy + p[4]! * hz;
-    const pz = p[2]! * hx + p[4]! * hy + p[5]! * hz;
-    const moved = hx * (bias[0]! - before[0]!) + hy * (bias[1]! - before[1]!) + hz * (bias[2]! - before[2]!);
+    const hx = seenThrough[3 * row]!;
+    const hy = seenThrough[3 * row + 1]!;
+    const hz = seenThrough[3 * row + 2]!;
+    const px = r[p]! * hx + r[p + 1]! * hy + r[p + 2]! * hz;
+    const py = r[p + 1]! * hx + r[p + 3]! * hy + r[p + 4]! * hz;
+    const pz = r[p + 2]! * hx + r[p + 4]! * hy + r[p + 5]! * hz;
+    const moved = hx * (r[b]! - before[0]!) + hy * (r[b + 1]! - before[1]!) + hz * (r[b + 2]! - before[2]!);
     const inverse = 1 / (hx * px + hy * py + hz * pz + variance[row]!);
     const gain = (clamp(residual[row]!, limit) - moved) * inverse;
-    bias[0]! += px * gain;
-    bias[1]! += py * gain;
-    bias[2]! += pz * gain;
-    p[0]! -= px * px * inverse;
-    p[1]! -= px * py * inverse;
-    p[2]! -= px * pz * inverse;
-    p[3]! -= py * py * inverse;
-    p[4]! -= py * pz * inverse;
-    p[5]! -= pz * pz * inverse;
+    r[b]! += px * gain;
+    r[b + 1]! += py * gain;
+    r[b + 2]! += pz * gain;
+    r[p]! -= px * px * inverse;
+    r[p + 1]! -= px * py * inverse;
+    r[p + 2]! -= px * pz * inverse;
+    r[p + 3]! -= py * py * inverse;
+    r[p + 4]! -= py * pz * inverse;
+    r[p + 5]! -= pz * pz * inverse;
   }
-  for (let i = 0; i < 3; i++) bias[i] = clamp(bias[i]!, limit);
+  for (let i = b; i < b + 3; i++) r[i] = clamp(r[i]!, limit);
+}
+
+/** The bias along a row of a matrix in the record. */
+function along(r: Float64Array, row: number): number {
+  return r[row]! * r[Slot.BIAS]! + r[row + 1]! * r[Slot.BIAS + 1]! + r[row + 2]! * r[Slot.BIAS + 2]!;
 }
 
 function clamp(value: number, limit: number): number {

@@ -1,74 +1,89 @@
 /** Heading: one angle about the vertical, drawn towards magnetic north by the horizontal field in the level frame. */
 import type { StepGains } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
-import type { SensorState } from "./sensor-state.ts";
+import { Slot } from "./record.ts";
 
 /** Below this horizontal length the nose axis has no heading. */
 const VERTICAL = 1e-3;
 
-/** Yaw of the nose axis, rad, left of east; the last start's where the nose looks straight up or down. */
-export function noseYaw(state: SensorState): number {
-  const east = state.levelMatrix[0]!;
-  const north = state.levelMatrix[3]!;
-  if (Math.hypot(east, north) < VERTICAL) return state.startYaw;
-  return Math.atan2(north, east) + 2 * Math.atan2(state.heading[1]!, state.heading[0]!);
+/** Yaw of the nose axis, rad, left of east; the start's where the nose looks straight up or down. */
+export function noseYaw(r: Float64Array): number {
+  const east = r[Slot.LEVEL_MATRIX]!;
+  const north = r[Slot.LEVEL_MATRIX + 3]!;
+  if (Math.hypot(east, north) < VERTICAL) return r[Slot.START_YAW]!;
+  return Math.atan2(north, east) + 2 * Math.atan2(r[Slot.HEADING + 1]!, r[Slot.HEADING]!);
 }
 
-/** Without a field: turns the nose axis to where it pointed before, at first east (yaw 0), so a straight chain starts straight. */
-export function startHeading(state: SensorState): void {
-  const half = 0.5 * (state.startYaw - noseYaw(state));
-  state.heading[0] = Math.cos(half);
-  state.heading[1] = Math.sin(half);
+/** Without a field: turns the nose axis to the start's yaw, at first east (0), so that a straight chain starts straight. */
+export function startHeading(r: Float64Array): void {
+  const half = 0.5 * (r[Slot.START_YAW]! - noseYaw(r));
+  r[Slot.HEADING] = Math.cos(half);
+  r[Slot.HEADING + 1] = Math.sin(half);
 }
 
-/** levelMag = the newest field in the level frame. */
-export function levelField(state: SensorState): void {
-  const { levelMatrix: m, levelMag, mag } = state;
-  levelMag[0] = m[0]! * mag[0]! + m[1]! * mag[1]! + m[2]! * mag[2]!;
-  levelMag[1] = m[3]! * mag[0]! + m[4]! * mag[1]! + m[5]! * mag[2]!;
-  levelMag[2] = m[6]! * mag[0]! + m[7]! * mag[1]! + m[8]! * mag[2]!;
+/** The newest field in the level frame. */
+export function levelField(r: Float64Array): void {
+  const x = r[Slot.FIELD]!;
+  const y = r[Slot.FIELD + 1]!;
+  const z = r[Slot.FIELD + 2]!;
+  for (let i = 0; i < 3; i++) {
+    const row = Slot.LEVEL_MATRIX + 3 * i;
+    r[Slot.LEVEL_FIELD + i] = r[row]! * x + r[row + 1]! * y + r[row + 2]! * z;
+  }
 }
 
 /** Turns the heading by a share of its disagreement with the field. A field without horizontal part turns nothing. */
-export function correctHeading(state: SensorState, gains: StepGains, parameters: FusionParameters): void {
-  const { heading, levelMag } = state;
-  const gain = correctionGain(state, gains, parameters);
+export function correctHeading(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
+  chooseGain(r, gains, parameters);
+  const gain = r[Slot.HEADING_GAIN]!;
   if (gain === 0) return;
-  const c = heading[0]!;
-  const s = heading[1]!;
+  const c = r[Slot.HEADING]!;
+  const s = r[Slot.HEADING + 1]!;
   const cosine = c * c - s * s;
   const sine = 2 * c * s;
-  const east = cosine * levelMag[0]! - sine * levelMag[1]!;
-  const north = sine * levelMag[0]! + cosine * levelMag[1]!;
-  const half = 0.5 * gain * Math.atan2(east, north);
-  const ch = Math.cos(half);
-  const sh = Math.sin(half);
-  heading[0] = c * ch - s * sh;
-  heading[1] = s * ch + c * sh;
-  const scale = 1.5 - 0.5 * (heading[0]! ** 2 + heading[1]! ** 2);
-  heading[0]! *= scale;
-  heading[1]! *= scale;
+  const east = cosine * r[Slot.LEVEL_FIELD]! - sine * r[Slot.LEVEL_FIELD + 1]!;
+  const north = sine * r[Slot.LEVEL_FIELD]! + cosine * r[Slot.LEVEL_FIELD + 1]!;
+  // A turn by this half angle, as its tangent; then back to unit length.
+  const tangent = Math.tan(0.5 * gain * Math.atan2(east, north));
+  const scale = 1 / Math.sqrt(1 + tangent * tangent) / Math.sqrt(c * c + s * s);
+  r[Slot.HEADING] = (c - s * tangent) * scale;
+  r[Slot.HEADING + 1] = (s + c * tangent) * scale;
+}
+
+/** out (4 slots) = heading · level: body axes -> earth. */
+export function composeEarth(r: Float64Array, out: Float64Array, outAt: number): void {
+  const c = r[Slot.HEADING]!;
+  const s = r[Slot.HEADING + 1]!;
+  const w = r[Slot.LEVEL]!;
+  const x = r[Slot.LEVEL + 1]!;
+  const y = r[Slot.LEVEL + 2]!;
+  const z = r[Slot.LEVEL + 3]!;
+  out[outAt] = c * w - s * z;
+  out[outAt + 1] = c * x - s * y;
+  out[outAt + 2] = c * y + s * x;
+  out[outAt + 3] = c * z + s * w;
 }
 
 /**
  * The share to correct by: the first readings are averaged (1, 1/2, 1/3 ... until the steady gain is reached); a disturbed
  * field counts for nothing until the allowance for rejection is used up, then for less.
  */
-function correctionGain(state: SensorState, gains: StepGains, parameters: FusionParameters): number {
+function chooseGain(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
   let gain = gains.heading;
-  if (state.disturbed) {
-    if (state.rejectionS <= parameters.magMaxRejectionS) {
-      state.rejectionS += state.magStepS;
-      gain = 0;
-    } else {
-      gain /= parameters.magRejectionFactor;
-    }
+  if (r[Slot.DISTURBED] === 0) {
+    const wonBack = parameters.magRejectionFactor * r[Slot.FIELD_STEP]!;
+    r[Slot.REJECTED_TIME] = Math.max(0, r[Slot.REJECTED_TIME]! - wonBack);
+  } else if (r[Slot.REJECTED_TIME]! > parameters.magMaxRejectionS) {
+    gain /= parameters.magRejectionFactor;
   } else {
-    state.rejectionS = Math.max(0, state.rejectionS - parameters.magRejectionFactor * state.magStepS);
+    r[Slot.REJECTED_TIME]! += r[Slot.FIELD_STEP]!;
+    gain = 0;
   }
-  if (state.headingAveraged) return gain;
-  state.headingReadings++;
-  const average = 1 / state.headingReadings;
-  if (average < gains.heading) state.headingAveraged = true;
-  return Math.max(gain, average);
+  if (r[Slot.HEADING_SETTLED] === 0) {
+    r[Slot.HEADING_COUNT]! += 1;
+    const average = 1 / r[Slot.HEADING_COUNT]!;
+    if (average < gains.heading) r[Slot.HEADING_SETTLED] = 1;
+    gain = Math.max(gain, average);
+  }
+  r[Slot.HEADING_GAIN] = gain;
 }

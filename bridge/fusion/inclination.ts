@@ -2,51 +2,54 @@
  * Inclination: over a few seconds the mean specific force points up. It is averaged in the strapdown frame, which hardly
  * moves, so the body may turn as it likes meanwhile.
  */
+import { stepLowPass } from "../numeric/low-pass.ts";
 import { keepUnit, multiply, rotate, toMatrix } from "../numeric/quaternion.ts";
 import type { StepGains } from "./coefficients.ts";
-import type { SensorState } from "./sensor-state.ts";
+import { Slot } from "./record.ts";
 
 const correction = new Float64Array(4);
 /** Below this cosine the measured vertical is taken as straight down, and the correction is a half turn about x. */
 const UPSIDE_DOWN = -1 + 1e-12;
 
 /** Averages the newest specific force and turns the level frame so that the average points up. */
-export function correctInclination(state: SensorState, gains: StepGains): void {
-  const { inertialAccel, accelLowPass, inclination, up } = state;
-  rotate(inertialAccel, state.strapdown, state.accel);
-  accelLowPass.step(gains.accel, inertialAccel);
-  rotate(up, inclination, accelLowPass.value);
-  const length = Math.sqrt(up[0]! * up[0]! + up[1]! * up[1]! + up[2]! * up[2]!);
+export function correctInclination(r: Float64Array, gains: StepGains): void {
+  rotate(r, r, r, Slot.INERTIAL_FORCE, Slot.STRAPDOWN, Slot.FORCE);
+  stepLowPass(r, Slot.FORCE_LOW_PASS, 3, Slot.INERTIAL_FORCE, gains.force);
+  rotate(r, r, r, Slot.UP, Slot.INCLINATION, Slot.FORCE_LOW_PASS + 1);
+  const length = Math.sqrt(
+    r[Slot.UP]! * r[Slot.UP]! + r[Slot.UP + 1]! * r[Slot.UP + 1]! + r[Slot.UP + 2]! * r[Slot.UP + 2]!,
+  );
   if (!(length > 0)) {
     // Free fall on average: no direction, so no correction.
-    up[0] = 0;
-    up[1] = 0;
-    up[2] = 1;
+    r[Slot.UP] = 0;
+    r[Slot.UP + 1] = 0;
+    r[Slot.UP + 2] = 1;
     return;
   }
-  for (let i = 0; i < 3; i++) up[i]! /= length;
-  tiltTo(up);
-  multiply(inclination, correction, inclination);
-  keepUnit(inclination, inclination);
+  const scale = 1 / length;
+  for (let i = Slot.UP; i < Slot.UP + 3; i++) r[i]! *= scale;
+  tiltToVertical(r);
+  multiply(r, correction, r, Slot.INCLINATION, 0, Slot.INCLINATION);
+  keepUnit(r, r, Slot.INCLINATION, Slot.INCLINATION);
 }
 
 /** Body axes -> level frame, from its two parts. */
-export function composeLevel(state: SensorState): void {
-  multiply(state.level, state.inclination, state.strapdown);
-  toMatrix(state.levelMatrix, state.level);
+export function composeLevel(r: Float64Array): void {
+  multiply(r, r, r, Slot.LEVEL, Slot.INCLINATION, Slot.STRAPDOWN);
+  toMatrix(r, r, Slot.LEVEL_MATRIX, Slot.LEVEL);
 }
 
 /** correction = the shortest rotation that carries the unit vector `up` to the z axis. */
-function tiltTo(up: Float64Array): void {
-  if (up[2]! < UPSIDE_DOWN) {
+function tiltToVertical(r: Float64Array): void {
+  if (r[Slot.UP + 2]! < UPSIDE_DOWN) {
     correction[0] = 0;
     correction[1] = 1;
     correction[2] = 0;
   } else {
-    const w = Math.sqrt(0.5 * (1 + up[2]!));
+    const w = Math.sqrt(0.5 * (1 + r[Slot.UP + 2]!));
     correction[0] = w;
-    correction[1] = (0.5 * up[1]!) / w;
-    correction[2] = (-0.5 * up[0]!) / w;
+    correction[1] = (0.5 * r[Slot.UP + 1]!) / w;
+    correction[2] = (-0.5 * r[Slot.UP]!) / w;
   }
   correction[3] = 0;
 }

@@ -3,65 +3,76 @@
  * steady other field, met for long enough in motion, becomes the new reference. What the health stage has flagged is
  * disturbed in any case and becomes no reference.
  */
+import { stepLowPass } from "../numeric/low-pass.ts";
 import type { StepGains } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
-import type { SensorState } from "./sensor-state.ts";
+import { Slot } from "./record.ts";
+
+const CURRENT = Slot.FIELD_LOW_PASS + 1;
 
 /** Judges the newest field (in the level frame, not zero) against the reference, and lets the reference follow. */
-export function watchField(state: SensorState, gains: StepGains, parameters: FusionParameters): void {
-  const { levelMag, normAndDip, currentField } = state;
-  const norm = Math.sqrt(levelMag[0]! ** 2 + levelMag[1]! ** 2 + levelMag[2]! ** 2);
-  normAndDip[0] = norm;
-  normAndDip[1] = -Math.asin(levelMag[2]! / norm);
-  currentField.step(gains.magCurrent, normAndDip);
-  compareWithReference(state, gains, parameters);
-  considerNewReference(state, gains, parameters);
+export function watchField(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
+  const east = r[Slot.LEVEL_FIELD]!;
+  const north = r[Slot.LEVEL_FIELD + 1]!;
+  const up = r[Slot.LEVEL_FIELD + 2]!;
+  const norm = Math.sqrt(east * east + north * north + up * up);
+  r[Slot.NORM_AND_DIP] = norm;
+  r[Slot.NORM_AND_DIP + 1] = -Math.asin(up / norm);
+  stepLowPass(r, Slot.FIELD_LOW_PASS, 2, Slot.NORM_AND_DIP, gains.magCurrent);
+  compareWithReference(r, gains, parameters);
+  considerNewReference(r, gains, parameters);
 }
 
-function compareWithReference(state: SensorState, gains: StepGains, parameters: FusionParameters): void {
-  if (state.fieldFlagged || !isNear(state, state.referenceNorm, state.referenceDip, parameters)) {
-    state.undisturbedS = 0;
-    state.disturbed = true;
+function compareWithReference(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
+  if (r[Slot.FIELD_FLAGGED] === 1 || !isCurrent(r, Slot.REFERENCE, parameters)) {
+    r[Slot.UNDISTURBED_TIME] = 0;
+    r[Slot.DISTURBED] = 1;
     return;
   }
-  state.undisturbedS += state.magStepS;
-  if (state.undisturbedS < parameters.magMinUndisturbedS) return;
-  const field = state.currentField.value;
-  state.disturbed = false;
-  state.referenceNorm += gains.magReference * (field[0]! - state.referenceNorm);
-  state.referenceDip += gains.magReference * (field[1]! - state.referenceDip);
+  r[Slot.UNDISTURBED_TIME]! += r[Slot.FIELD_STEP]!;
+  if (r[Slot.UNDISTURBED_TIME]! < parameters.magMinUndisturbedS) return;
+  r[Slot.DISTURBED] = 0;
+  follow(r, Slot.REFERENCE, gains);
 }
 
-function considerNewReference(state: SensorState, gains: StepGains, parameters: FusionParameters): void {
-  const field = state.currentField.value;
-  if (state.fieldFlagged || !isNear(state, state.candidateNorm, state.candidateDip, parameters)) {
-    state.candidateS = 0;
-    state.candidateNorm = field[0]!;
-    state.candidateDip = field[1]!;
+function considerNewReference(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
+  if (r[Slot.FIELD_FLAGGED] === 1 || !isCurrent(r, Slot.CANDIDATE, parameters)) {
+    r[Slot.CANDIDATE_TIME] = 0;
+    copyField(r, Slot.CANDIDATE, CURRENT);
     return;
   }
-  if (isMoving(state, parameters)) state.candidateS += state.magStepS;
-  state.candidateNorm += gains.magReference * (field[0]! - state.candidateNorm);
-  state.candidateDip += gains.magReference * (field[1]! - state.candidateDip);
-  const needed = state.referenceKnown ? parameters.magNewS : parameters.magFirstS;
-  if (!state.disturbed || state.candidateS < needed) return;
-  state.referenceKnown = true;
-  state.referenceNorm = state.candidateNorm;
-  state.referenceDip = state.candidateDip;
-  state.disturbed = false;
-  state.undisturbedS = parameters.magMinUndisturbedS;
+  if (isMoving(r, parameters)) r[Slot.CANDIDATE_TIME]! += r[Slot.FIELD_STEP]!;
+  follow(r, Slot.CANDIDATE, gains);
+  const neededS = r[Slot.REFERENCE_KNOWN] === 1 ? parameters.magNewS : parameters.magFirstS;
+  if (r[Slot.DISTURBED] === 0 || r[Slot.CANDIDATE_TIME]! < neededS) return;
+  r[Slot.REFERENCE_KNOWN] = 1;
+  copyField(r, Slot.REFERENCE, Slot.CANDIDATE);
+  r[Slot.DISTURBED] = 0;
+  r[Slot.UNDISTURBED_TIME] = parameters.magMinUndisturbedS;
 }
 
-/** Is the current field within the limits of this one? Never of a norm of zero, which stands for none yet. */
-function isNear(state: SensorState, norm: number, dip: number, parameters: FusionParameters): boolean {
-  const field = state.currentField.value;
+/** Is the current field within the limits of the one at `at`? Never of a norm of zero, which stands for none yet. */
+function isCurrent(r: Float64Array, at: number, parameters: FusionParameters): boolean {
+  const norm = r[at]!;
   return (
-    Math.abs(field[0]! - norm) < parameters.magNormShare * norm &&
-    Math.abs(field[1]! - dip) < parameters.magDipLimit
+    Math.abs(r[CURRENT]! - norm) < parameters.magNormShare * norm &&
+    Math.abs(r[CURRENT + 1]! - r[at + 1]!) < parameters.magDipLimit
   );
 }
 
-function isMoving(state: SensorState, parameters: FusionParameters): boolean {
-  const rate = state.restRate.value;
-  return rate[0]! ** 2 + rate[1]! ** 2 + rate[2]! ** 2 >= parameters.magNewMinRate ** 2;
+function isMoving(r: Float64Array, parameters: FusionParameters): boolean {
+  const x = r[Slot.REST_LOW_PASS + 1]!;
+  const y = r[Slot.REST_LOW_PASS + 2]!;
+  const z = r[Slot.REST_LOW_PASS + 3]!;
+  return x * x + y * y + z * z >= parameters.magNewMinRate * parameters.magNewMinRate;
+}
+
+function follow(r: Float64Array, at: number, gains: StepGains): void {
+  r[at]! += gains.magReference * (r[CURRENT]! - r[at]!);
+  r[at + 1]! += gains.magReference * (r[CURRENT + 1]! - r[at + 1]!);
+}
+
+function copyField(r: Float64Array, to: number, from: number): void {
+  r[to] = r[from]!;
+  r[to + 1] = r[from + 1]!;
 }

@@ -1,9 +1,9 @@
 /**
  * What can be chosen about the fusion; none of it depends on the sampling rate.
  *
- * The values of the first five groups are the published ones of Laidig & Seel, "VQF: Highly accurate IMU orientation
- * estimation with bias estimation and magnetic disturbance rejection", Information Fusion 91 (2023) 187-204, given from
- * memory. The last group is ours.
+ * The values are the published ones of Laidig & Seel, "VQF: Highly accurate IMU orientation
+ * estimation with bias estimation and magnetic disturbance rejection", Information Fusion 91 (2023) 187-204, given from memory,
+ * except where one is called ours.
  */
 import { RAD_PER_DEG } from "../numeric/units.ts";
 
@@ -28,6 +28,11 @@ export interface FusionParameters {
   readonly biasVerticalWeight: number;
   /** Standard deviation of the converged bias at rest, rad/s. */
   readonly biasSigmaRest: number;
+  /**
+   * Span of readings that make one measurement of the bias, s; a single reading where the interval is longer. Small: more
+   * work. Large: fast turns blur. Ours, no source: well below the time constant of the inclination correction.
+   */
+  readonly biasSpanS: number;
 
   /** Rest is believed after this long, s. Small: a slow even turn may pass for rest. */
   readonly restMinS: number;
@@ -86,6 +91,7 @@ export const DEFAULT_PARAMETERS: FusionParameters = {
   biasSigmaMotion: 0.1 * RAD_PER_DEG,
   biasVerticalWeight: 1e-4,
   biasSigmaRest: 0.03 * RAD_PER_DEG,
+  biasSpanS: 0.05,
 
   restMinS: 1.5,
   restTauS: 0.5,

@@ -1,38 +1,42 @@
 /** Rest: for a while neither the angular rate nor the specific force strays from its own low-pass. */
+import { stepLowPass } from "../numeric/low-pass.ts";
 import type { StepGains } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
-import type { SensorState } from "./sensor-state.ts";
+import { Slot } from "./record.ts";
 
-/** The newest angular rate: a deviation, or an even rate too great to be bias, ends rest. */
-export function watchRate(state: SensorState, gains: StepGains, parameters: FusionParameters): void {
-  const { restRate, rate } = state;
-  restRate.step(gains.rest, rate);
-  const limit = parameters.biasLimit;
-  const [x, y, z] = [restRate.value[0]!, restRate.value[1]!, restRate.value[2]!];
-  const tooFast = Math.abs(x) > limit || Math.abs(y) > limit || Math.abs(z) > limit;
-  if (tooFast || squaredDistance(rate, restRate.value) >= parameters.restRateLimit ** 2) endRest(state);
-}
+/** Low-passed angular rate and specific force. */
+const RATE = Slot.REST_LOW_PASS + 1;
+const FORCE = RATE + 3;
 
-/** The newest specific force: a deviation ends rest, time without one brings it. */
-export function watchAccel(state: SensorState, gains: StepGains, parameters: FusionParameters): void {
-  const { restAccel, accel } = state;
-  restAccel.step(gains.rest, accel);
-  if (squaredDistance(accel, restAccel.value) >= parameters.restAccelLimit ** 2) {
-    endRest(state);
+/**
+ * The newest angular rate and specific force: a deviation, or an even rate too great to be bias, ends rest; time without
+ * brings it.
+ */
+export function watchRest(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
+  stepLowPass(r, Slot.REST_LOW_PASS, 6, Slot.RATE, gains.rest);
+  if (!isQuiet(r, parameters)) {
+    r[Slot.REST_TIME] = 0;
+    r[Slot.AT_REST] = 0;
     return;
   }
-  state.restS += state.accelStepS;
-  if (state.restS >= parameters.restMinS) state.atRest = true;
+  r[Slot.REST_TIME]! += r[Slot.FORCE_STEP]!;
+  if (r[Slot.REST_TIME]! >= parameters.restMinS) r[Slot.AT_REST] = 1;
 }
 
-function endRest(state: SensorState): void {
-  state.restS = 0;
-  state.atRest = false;
+function isQuiet(r: Float64Array, parameters: FusionParameters): boolean {
+  const { biasLimit, restRateLimit, restAccelLimit } = parameters;
+  return (
+    squaredDistance(r, Slot.RATE, RATE) < restRateLimit * restRateLimit &&
+    squaredDistance(r, Slot.FORCE, FORCE) < restAccelLimit * restAccelLimit &&
+    Math.abs(r[RATE]!) <= biasLimit &&
+    Math.abs(r[RATE + 1]!) <= biasLimit &&
+    Math.abs(r[RATE + 2]!) <= biasLimit
+  );
 }
 
-function squaredDistance(a: Float64Array, b: Float64Array): number {
-  const x = a[0]! - b[0]!;
-  const y = a[1]! - b[1]!;
-  const z = a[2]! - b[2]!;
+function squaredDistance(r: Float64Array, a: number, b: number): number {
+  const x = r[a]! - r[b]!;
+  const y = r[a + 1]! - r[b + 1]!;
+  const z = r[a + 2]! - r[b + 2]!;
   return x * x + y * y + z * z;
 }

@@ -4,104 +4,113 @@
  * A reading stands for the mean rate over the interval that it ends, as in the published method. Where readings were
  * lost, the missing ones are filled in on the polynomial through the two readings before the gap and those after it, and
  * integrated like any other: first through one reading after the gap, so that there is an orientation at once, and when
- * the next reading has come, again through both. An even rate is thereby bridged exactly, an even angular acceleration
- * too.
+ * the next reading has come, again through both. An even rate is thereby bridged exactly, and so is an even change of
+ * rate about one axis.
  */
 import { fromRotationVector, keepUnit, multiply } from "../numeric/quaternion.ts";
-import { RATES, type SensorState } from "./sensor-state.ts";
+import { Slot } from "./record.ts";
 
 /** A step longer than this many nominal intervals has a gap in it. */
 const GAP = 1.5;
-const NEWEST = RATES - 1;
+/** Rates in the record's history, and the slots of one: three components and its time. */
+const NODES = 4;
+const STRIDE = 4;
 
 const turn = new Float64Array(3);
 const rotation = new Float64Array(4);
-const filled = new Float64Array(3);
-const weights = new Float64Array(RATES);
+const weights = new Float64Array(NODES);
 
 /** Takes the newest angular rate, bias off, into the history of rates. */
-export function pushRate(state: SensorState): void {
-  const { rates, rateTimesS, rate, bias } = state;
-  for (let i = 0; i < 3 * NEWEST; i++) rates[i] = rates[i + 3]!;
-  for (let i = 0; i < NEWEST; i++) rateTimesS[i] = rateTimesS[i + 1]!;
-  for (let i = 0; i < 3; i++) rates[3 * NEWEST + i] = rate[i]! - bias[i]!;
-  rateTimesS[NEWEST] = state.gyroTimeS;
-  if (state.rateCount < RATES) state.rateCount++;
+export function takeRate(r: Float64Array): void {
+  for (let i: number = Slot.PAST_RATES; i < Slot.TRUE_RATE; i++) r[i] = r[i + STRIDE]!;
+  r[Slot.TRUE_RATE] = r[Slot.RATE]! - r[Slot.BIAS]!;
+  r[Slot.TRUE_RATE + 1] = r[Slot.RATE + 1]! - r[Slot.BIAS + 1]!;
+  r[Slot.TRUE_RATE + 2] = r[Slot.RATE + 2]! - r[Slot.BIAS + 2]!;
+  r[Slot.TRUE_RATE + 3] = r[Slot.RATE_TIME]!;
+  if (r[Slot.RATES_KNOWN]! < NODES) r[Slot.RATES_KNOWN]! += 1;
 }
 
 /** Turns the strapdown quaternion from the reading before to the newest one. */
-export function integrateRate(state: SensorState): void {
-  pushRate(state);
-  const { strapdown, beforeGap } = state;
-  if (state.gapRevisable) {
-    state.gapRevisable = false;
-    strapdown.set(beforeGap);
-    fillGap(state, NEWEST - 2);
+export function integrateRate(r: Float64Array): void {
+  takeRate(r);
+  if (r[Slot.GAP_OPEN] === 1) {
+    r[Slot.GAP_OPEN] = 0;
+    copyQuaternion(r, Slot.STRAPDOWN, Slot.BEFORE_GAP);
+    fillGap(r, Slot.TRUE_RATE - 2 * STRIDE);
   }
-  if (state.gyroStepS <= GAP * state.intervalS) {
-    turnBy(strapdown, state.rates, 3 * NEWEST, state.gyroStepS);
+  const stepS = r[Slot.RATE_STEP]!;
+  if (stepS <= GAP * r[Slot.INTERVAL]!) {
+    turn[0] = stepS * r[Slot.TRUE_RATE]!;
+    turn[1] = stepS * r[Slot.TRUE_RATE + 1]!;
+    turn[2] = stepS * r[Slot.TRUE_RATE + 2]!;
+    turnStrapdown(r);
   } else {
-    beforeGap.set(strapdown);
-    state.gapRevisable = true;
-    fillGap(state, NEWEST - 1);
+    copyQuaternion(r, Slot.BEFORE_GAP, Slot.STRAPDOWN);
+    r[Slot.GAP_OPEN] = 1;
+    fillGap(r, Slot.TRUE_RATE - STRIDE);
   }
 }
 
 /**
- * out = the quaternion out (body -> any frame), carried on by `aheadS` seconds, or back: with the newest rate and its slope,
- * which fades, so that a long prediction ends in an even turn.
+ * Carries the quaternion at `outAt` (body -> any frame) on by `aheadS` seconds, or back: with the newest rate and its
+ * slope, which fades, so that a long prediction ends in an even turn.
  */
 export function extrapolate(
-  state: SensorState,
+  r: Float64Array,
   out: Float64Array,
   outAt: number,
   aheadS: number,
   fadeS: number,
 ): void {
-  const { rates, rateTimesS } = state;
-  const spanS = rateTimesS[NEWEST]! - rateTimesS[NEWEST - 1]!;
-  const slopeFor = state.rateCount < 2 ? 0 : (fadeS * (aheadS + fadeS * Math.expm1(-aheadS / fadeS))) / spanS;
+  const before = Slot.TRUE_RATE - STRIDE;
+  const spanS = r[Slot.TRUE_RATE + 3]! - r[before + 3]!;
+  const slopeFor =
+    r[Slot.RATES_KNOWN]! < 2 ? 0 : (fadeS * (aheadS + fadeS * Math.expm1(-aheadS / fadeS))) / spanS;
   for (let i = 0; i < 3; i++) {
-    const newest = rates[3 * NEWEST + i]!;
-    turn[i] = aheadS * newest + slopeFor * (newest - rates[3 * (NEWEST - 1) + i]!);
+    const newest = r[Slot.TRUE_RATE + i]!;
+    turn[i] = aheadS * newest + slopeFor * (newest - r[before + i]!);
   }
   fromRotationVector(rotation, turn);
   multiply(out, out, rotation, outAt, outAt, 0);
 }
 
-/** Integrates the gap between two neighbours in the history of rates, the first at index `before`. */
-function fillGap(state: SensorState, before: number): void {
-  const { strapdown, rateTimesS } = state;
-  const startS = rateTimesS[before]!;
-  const gapS = rateTimesS[before + 1]! - startS;
-  const steps = Math.max(1, Math.round(gapS / state.intervalS));
+/** Integrates the gap between the rate at `before` in the history and the one after it. */
+function fillGap(r: Float64Array, before: number): void {
+  const startS = r[before + 3]!;
+  const gapS = r[before + STRIDE + 3]! - startS;
+  const steps = Math.max(1, Math.round(gapS / r[Slot.INTERVAL]!));
   for (let step = 1; step <= steps; step++) {
-    interpolate(state, startS + (gapS * step) / steps);
-    turnBy(strapdown, filled, 0, gapS / steps);
+    weighRates(r, startS + (gapS * step) / steps);
+    for (let i = 0; i < 3; i++) {
+      let rate = 0;
+      for (let node = 0; node < NODES; node++)
+        rate += weights[node]! * r[Slot.PAST_RATES + STRIDE * node + i]!;
+      turn[i] = (gapS / steps) * rate;
+    }
+    turnStrapdown(r);
   }
 }
 
-/** filled = the rate at a time, on the polynomial (Lagrange's form) through all rates in the history. */
-function interpolate(state: SensorState, timeS: number): void {
-  const { rates, rateTimesS } = state;
-  const oldest = RATES - state.rateCount;
-  for (let node = oldest; node < RATES; node++) {
-    weights[node] = 1;
-    for (let other = oldest; other < RATES; other++) {
+/** weights = those of the known rates at a time, on the polynomial through all of them (Lagrange's form). */
+function weighRates(r: Float64Array, timeS: number): void {
+  const times = Slot.PAST_RATES + 3;
+  const oldest = NODES - r[Slot.RATES_KNOWN]!;
+  for (let node = 0; node < NODES; node++) {
+    weights[node] = node < oldest ? 0 : 1;
+    for (let other = oldest; other < NODES; other++) {
       if (other === node) continue;
-      weights[node]! *= (timeS - rateTimesS[other]!) / (rateTimesS[node]! - rateTimesS[other]!);
+      const otherS = r[times + STRIDE * other]!;
+      weights[node]! *= (timeS - otherS) / (r[times + STRIDE * node]! - otherS);
     }
   }
-  for (let i = 0; i < 3; i++) {
-    filled[i] = 0;
-    for (let node = oldest; node < RATES; node++) filled[i]! += weights[node]! * rates[3 * node + i]!;
-  }
 }
 
-/** Turns the strapdown quaternion by one step at the rate at `at`. */
-function turnBy(strapdown: Float64Array, rates: Float64Array, at: number, stepS: number): void {
-  for (let i = 0; i < 3; i++) turn[i] = stepS * rates[at + i]!;
+function turnStrapdown(r: Float64Array): void {
   fromRotationVector(rotation, turn);
-  multiply(strapdown, strapdown, rotation);
-  keepUnit(strapdown, strapdown);
+  multiply(r, r, rotation, Slot.STRAPDOWN, Slot.STRAPDOWN, 0);
+  keepUnit(r, r, Slot.STRAPDOWN, Slot.STRAPDOWN);
+}
+
+function copyQuaternion(r: Float64Array, to: number, from: number): void {
+  for (let i = 0; i < 4; i++) r[to + i] = r[from + i]!;
 }

@@ -1,7 +1,7 @@
 /** What an orientation is worth, and why: the worst reason that holds. */
 import { TRUST } from "../sweep.ts";
 import type { FusionParameters } from "./parameters.ts";
-import type { SensorState } from "./sensor-state.ts";
+import { Slot } from "./record.ts";
 
 /**
  * The sensor's TRUST code.
@@ -9,22 +9,22 @@ import type { SensorState } from "./sensor-state.ts";
  * @param bridged the orientation is predicted across a lost reading
  */
 export function trustOf(
-  state: SensorState,
-  timeS: number,
+  r: Float64Array,
   magnetic: boolean,
   bridged: boolean,
   parameters: FusionParameters,
 ): number {
-  if (!state.started) return TRUST.LOST;
-  if (!magnetic || isHeadingUnaided(state, timeS, parameters)) return TRUST.HEADING_UNAIDED;
-  if (timeS < state.clippedUntilS) return TRUST.CLIPPED;
+  if (r[Slot.STARTED] === 0) return TRUST.LOST;
+  if (!magnetic || isHeadingUnaided(r, parameters)) return TRUST.HEADING_UNAIDED;
+  if (r[Slot.NOW]! < r[Slot.CLIPPED_UNTIL]!) return TRUST.CLIPPED;
   if (bridged) return TRUST.BRIDGED;
-  if (state.accelLowPass.elapsedS < parameters.accelTauS || !state.headingAveraged) return TRUST.SETTLING;
+  if (r[Slot.FORCE_LOW_PASS]! < parameters.accelTauS || r[Slot.HEADING_SETTLED] === 0) return TRUST.SETTLING;
   return TRUST.GOOD;
 }
 
 /** Before there is a reference the field cannot be called disturbed: then the heading is settling, not unaided. */
-function isHeadingUnaided(state: SensorState, timeS: number, parameters: FusionParameters): boolean {
-  if (!state.magSeen || timeS - state.magTimeS > parameters.magMissingAfterS) return true;
-  return state.fieldFlagged || (state.referenceKnown && state.disturbed);
+function isHeadingUnaided(r: Float64Array, parameters: FusionParameters): boolean {
+  if (r[Slot.FIELD_SEEN] === 0 || r[Slot.NOW]! - r[Slot.FIELD_TIME]! > parameters.magMissingAfterS)
+    return true;
+  return r[Slot.FIELD_FLAGGED] === 1 || (r[Slot.REFERENCE_KNOWN] === 1 && r[Slot.DISTURBED] === 1);
 }

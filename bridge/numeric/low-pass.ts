@@ -2,18 +2,30 @@
  * Second-order Butterworth low-pass for readings that come at true, uneven times.
  *
  * With the time constant τ the cut-off is √2 / (2π τ) Hz, which puts the two poles at (-1 ± i) / τ; the filter is solved
- * exactly over each step h for an input held at the mean of the readings on both sides (the trapezoidal rule). So a
- * step may have any length: a lost sample is a longer step, along the straight line between its neighbours.
+ * exactly over each step for an input held at the mean of the readings on both sides (the trapezoidal rule). So a step
+ * may have any length: a lost sample is a longer step, along the straight line between its neighbours.
  *
  * For the first τ seconds the value is the time-weighted mean of what has come so far, so that a start is quick and
  * smooth; then the filter runs on from that mean.
+ *
+ * A filter of n channels lives in the caller's flat record, lowPassSize(n) slots from some place on:
+ *
+ *     0                seconds filtered so far; 0 = not started
+ *     1 .. n           value, by channel
+ *     n+1 .. 2n        slope of the value, times τ
+ *     2n+1 .. 3n       the input before
  */
 
-/** What one step of length `stepS` does to a filter with time constant `tauS`; derived once, shared by all channels. */
+/** Slots of a filter of so many channels. All zeros is a filter not started. */
+export function lowPassSize(channels: number): number {
+  return 1 + 3 * channels;
+}
+
+/** What one step of a certain length does to a filter with a certain time constant; shared by all its channels. */
 export class LowPassGains {
   readonly stepS: number;
   readonly tauS: number;
-  /** Deviation from the input and scaled slope after the step, from those before it: a 2 x 2 matrix. */
+  /** Deviation from the held input, and slope times τ, after the step from those before it: a 2 x 2 matrix. */
   readonly deviationFromDeviation: number;
   readonly deviationFromSlope: number;
   readonly slopeFromDeviation: number;
@@ -34,56 +46,48 @@ export class LowPassGains {
   }
 }
 
-/** A low-pass of several channels that step together. */
-export class LowPass {
-  /** The filtered value, by channel. Borrowed: it changes with each step. */
-  readonly value: Float64Array;
-  /** Seconds filtered so far; 0 = not started. */
-  elapsedS = 0;
-  /** Slope of the value times τ. */
-  readonly #slope: Float64Array;
-  readonly #lastInput: Float64Array;
-
-  constructor(channels: number) {
-    this.value = new Float64Array(channels);
-    this.#slope = new Float64Array(channels);
-    this.#lastInput = new Float64Array(channels);
+/**
+ * One step of the filter at `at` in the record, to the new input at `inputAt` in the same record (finite).
+ * @param channels of both
+ */
+export function stepLowPass(
+  record: Float64Array,
+  at: number,
+  channels: number,
+  inputAt: number,
+  gains: LowPassGains,
+): void {
+  if (record[at]! < gains.tauS) {
+    average(record, at, channels, inputAt, gains);
+    return;
   }
-
-  /** Forgets all input: the next one starts it anew. */
-  reset(): void {
-    this.value.fill(0);
-    this.#slope.fill(0);
-    this.#lastInput.fill(0);
-    this.elapsedS = 0;
+  const { deviationFromDeviation, deviationFromSlope, slopeFromDeviation, slopeFromSlope } = gains;
+  for (let i = 0; i < channels; i++) {
+    const valueAt = at + 1 + i;
+    const slopeAt = valueAt + channels;
+    const beforeAt = slopeAt + channels;
+    const input = record[inputAt + i]!;
+    const held = 0.5 * (record[beforeAt]! + input);
+    const deviation = record[valueAt]! - held;
+    const slope = record[slopeAt]!;
+    record[valueAt] = held + deviationFromDeviation * deviation + deviationFromSlope * slope;
+    record[slopeAt] = slopeFromDeviation * deviation + slopeFromSlope * slope;
+    record[beforeAt] = input;
   }
+}
 
-  /** One step to a new input (as many slots as channels, finite). */
-  step(gains: LowPassGains, input: Float64Array): void {
-    if (this.elapsedS < gains.tauS) this.#average(gains, input);
-    else this.#advance(gains, input);
-  }
-
-  #average(gains: LowPassGains, input: Float64Array): void {
-    this.elapsedS += gains.stepS;
-    const share = gains.stepS / this.elapsedS;
-    const { value } = this;
-    for (let i = 0; i < value.length; i++) value[i]! += share * (input[i]! - value[i]!);
-    this.#lastInput.set(input);
-  }
-
-  #advance(gains: LowPassGains, input: Float64Array): void {
-    const { deviationFromDeviation, deviationFromSlope, slopeFromDeviation, slopeFromSlope } = gains;
-    const { value } = this;
-    const slopes = this.#slope;
-    const lastInput = this.#lastInput;
-    for (let i = 0; i < value.length; i++) {
-      const held = 0.5 * (lastInput[i]! + input[i]!);
-      const deviation = value[i]! - held;
-      const slope = slopes[i]!;
-      value[i] = held + deviationFromDeviation * deviation + deviationFromSlope * slope;
-      slopes[i] = slopeFromDeviation * deviation + slopeFromSlope * slope;
-      lastInput[i] = input[i]!;
-    }
+function average(
+  record: Float64Array,
+  at: number,
+  channels: number,
+  inputAt: number,
+  gains: LowPassGains,
+): void {
+  record[at]! += gains.stepS;
+  const share = gains.stepS / record[at]!;
+  for (let i = 0; i < channels; i++) {
+    const input = record[inputAt + i]!;
+    record[at + 1 + i]! += share * (input - record[at + 1 + i]!);
+    record[at + 1 + 2 * channels + i] = input;
   }
 }

@@ -1,0 +1,150 @@
+/**
+ * All that changes about one sensor: one flat record of doubles. The steps of the fusion are functions that read and
+ * write the record; numbers pass between them through it, never as boxed values. The layout is an enum because the
+ * bundler turns its members into plain numbers, which halves the time of a step.
+ *
+ * Frames: the body axes at the sensor; the *strapdown* frame, in which the gyroscope alone would hold still, and which
+ * therefore only creeps against the earth; the *level* frame, whose z axis is up; the earth, x east, y north, z up. The
+ * orientation body -> earth is heading · inclination · strapdown.
+ */
+import { setIdentity } from "../numeric/quaternion.ts";
+import type { FusionParameters } from "./parameters.ts";
+
+/** Where things lie in a record. Angles in rad, times in s, rates in rad/s, forces in m/s², fields in µT; flags are 0 or 1. */
+export enum Slot {
+  /** There is an orientation: an inclination has been found. */
+  STARTED = 0,
+  /** Hub time of the sweep at hand. */
+  NOW = STARTED + 1,
+  /** The sensor's own nominal interval between readings. */
+  INTERVAL = NOW + 1,
+
+  /** The newest reading, body axes: angular rate as calibrated, then specific force, then field. */
+  RATE = INTERVAL + 1,
+  FORCE = RATE + 3,
+  FIELD = FORCE + 3,
+  /** Hub time of the newest reading of each, and the step that it closed. */
+  RATE_TIME = FIELD + 3,
+  FORCE_TIME = RATE_TIME + 1,
+  FIELD_TIME = FORCE_TIME + 1,
+  RATE_STEP = FIELD_TIME + 1,
+  FORCE_STEP = RATE_STEP + 1,
+  FIELD_STEP = FORCE_STEP + 1,
+  /** A field has been read. */
+  FIELD_SEEN = FIELD_STEP + 1,
+  /** Hub time until which a clipped gyroscope reading is held against the orientation. */
+  CLIPPED_UNTIL = FIELD_SEEN + 1,
+
+  /** The newest four rates, bias off, oldest first, each followed by its hub time; how many of them are known. */
+  PAST_RATES = CLIPPED_UNTIL + 1,
+  TRUE_RATE = PAST_RATES + 12, // the newest of them
+  RATES_KNOWN = TRUE_RATE + 4,
+  /** The newest gap waits to be filled in again with the second reading after it. */
+  GAP_OPEN = RATES_KNOWN + 1,
+  /** Body axes -> strapdown frame, now and before the newest gap. */
+  STRAPDOWN = GAP_OPEN + 1,
+  BEFORE_GAP = STRAPDOWN + 4,
+
+  /** Specific force in the strapdown frame, and its low-pass. */
+  INERTIAL_FORCE = BEFORE_GAP + 4,
+  FORCE_LOW_PASS = INERTIAL_FORCE + 3,
+  /** Direction of the low-passed specific force in the level frame, before it was made vertical. */
+  UP = FORCE_LOW_PASS + 1 + 3 * 3,
+  /** Strapdown frame -> level frame. */
+  INCLINATION = UP + 3,
+  /** Body axes -> level frame, as quaternion and as matrix by rows. */
+  LEVEL = INCLINATION + 4,
+  LEVEL_MATRIX = LEVEL + 4,
+
+  /** Gyroscope bias, body axes, and its covariance: xx xy xz yy yz zz. */
+  BIAS = LEVEL_MATRIX + 9,
+  BIAS_COVARIANCE = BIAS + 3,
+  /** Sums over the bias's measuring interval: time, tilt corrections about east and north, level matrix times step. */
+  SPAN = BIAS_COVARIANCE + 6,
+  SPAN_TILT = SPAN + 1,
+  SPAN_MATRIX = SPAN_TILT + 2,
+  /** Mean level matrix of the interval, the bias's horizontal components through it, and the low-pass of all eleven. */
+  MEAN_MATRIX = SPAN_MATRIX + 9,
+  LEVEL_BIAS = MEAN_MATRIX + 9,
+  LEVEL_LOW_PASS = LEVEL_BIAS + 2,
+
+  /** At rest; time since the last sign of motion; low-pass of rate and specific force. */
+  AT_REST = LEVEL_LOW_PASS + 1 + 3 * 11,
+  REST_TIME = AT_REST + 1,
+  REST_LOW_PASS = REST_TIME + 1,
+
+  /** Level frame -> earth about z: cosine and sine of half the angle. */
+  HEADING = REST_LOW_PASS + 1 + 3 * 6,
+  /** Share of the disagreement with the field that the newest reading takes away. */
+  HEADING_GAIN = HEADING + 2,
+  /** Field readings averaged since the heading started; the average has reached the steady gain. */
+  HEADING_COUNT = HEADING_GAIN + 1,
+  HEADING_SETTLED = HEADING_COUNT + 1,
+  /** Time for which a disturbed field has been ignored. */
+  REJECTED_TIME = HEADING_SETTLED + 1,
+  /** Yaw of the nose axis to start with where there is no field: east, or where it pointed before it was lost. */
+  START_YAW = REJECTED_TIME + 1,
+
+  /** The newest field in the level frame. */
+  LEVEL_FIELD = START_YAW + 1,
+  /** Norm and dip of the field as just read, and their low-pass. */
+  NORM_AND_DIP = LEVEL_FIELD + 3,
+  FIELD_LOW_PASS = NORM_AND_DIP + 2,
+  /** There is a reference field; its norm and dip. */
+  REFERENCE_KNOWN = FIELD_LOW_PASS + 1 + 3 * 2,
+  REFERENCE = REFERENCE_KNOWN + 1,
+  /** The health stage says of the newest reading that this is not the Earth's field. */
+  FIELD_FLAGGED = REFERENCE + 2,
+  /** The field is flagged, or does not match the reference, or there is no reference yet. */
+  DISTURBED = FIELD_FLAGGED + 1,
+  UNDISTURBED_TIME = DISTURBED + 1,
+  /** Norm and dip of a steady field that may become the reference, and for how long it has been met in motion. */
+  CANDIDATE = UNDISTURBED_TIME + 1,
+  CANDIDATE_TIME = CANDIDATE + 2,
+
+  SIZE = CANDIDATE_TIME + 1,
+}
+
+/** What outlives the loss of the orientation: it is the sensor's and the site's own. */
+const LASTING: readonly (readonly [from: Slot, slots: number])[] = [
+  [Slot.NOW, 1],
+  [Slot.INTERVAL, 1],
+  [Slot.CLIPPED_UNTIL, 1],
+  [Slot.BIAS, 3],
+  [Slot.BIAS_COVARIANCE, 6],
+  [Slot.START_YAW, 1],
+  [Slot.REFERENCE_KNOWN, 1],
+  [Slot.REFERENCE, 2],
+];
+
+/** A record before the first reading. @param intervalS the sensor's own nominal interval between readings, s */
+export function createRecord(parameters: FusionParameters, intervalS: number): Float64Array {
+  const record = new Float64Array(Slot.SIZE);
+  record[Slot.INTERVAL] = intervalS;
+  resetRecord(record, parameters);
+  return record;
+}
+
+/** Back to before the first reading. */
+export function resetRecord(r: Float64Array, parameters: FusionParameters): void {
+  const intervalS = r[Slot.INTERVAL]!;
+  const variance = parameters.biasSigmaStart ** 2;
+  r.fill(0);
+  r[Slot.INTERVAL] = intervalS;
+  r[Slot.CLIPPED_UNTIL] = -Infinity;
+  r.set([variance, 0, 0, variance, 0, variance], Slot.BIAS_COVARIANCE);
+  loseOrientation(r, parameters);
+}
+
+/** Forgets where the body points and all that hangs on it; a rare step, and the only one that allocates. */
+export function loseOrientation(r: Float64Array, parameters: FusionParameters): void {
+  const kept = LASTING.map(([from, slots]) => r.slice(from, from + slots));
+  r.fill(0);
+  LASTING.forEach(([from], i) => {
+    r.set(kept[i]!, from);
+  });
+  for (const quaternion of [Slot.STRAPDOWN, Slot.INCLINATION, Slot.LEVEL]) setIdentity(r, quaternion);
+  r[Slot.HEADING] = 1;
+  r[Slot.REJECTED_TIME] = parameters.magMaxRejectionS;
+  r[Slot.DISTURBED] = 1;
+}
