@@ -1,0 +1,73 @@
+/** bendwatch export: a trial's tables, computed anew from its bytes. */
+import { basename } from "node:path";
+import type { Command } from "commander";
+import { Pipeline } from "../pipeline.ts";
+import { ExportWriter } from "../trial/export/export-writer.ts";
+import { type Manifest, readManifest } from "../trial/manifest.ts";
+import type { ReadEnd } from "../trial/reader.ts";
+import { softwareVersion } from "../version.ts";
+import { trialFolder } from "./places.ts";
+import { runThrough } from "./run-through.ts";
+
+interface ExportCommandOptions {
+  to: string;
+  overwrite: boolean;
+}
+
+export function addExport(program: Command): void {
+  program
+    .command("export")
+    .description("Write a trial's midline, sensors, flags, tailbeats and marks as CSV with datapackage.json.")
+    .argument("<trial>", "by name under recordings/ or by path")
+    .requiredOption("--to <folder>", "folder for the tables")
+    .option("--overwrite", "write into a folder that holds other files too", false)
+    .action(runExport);
+}
+
+function runExport(trial: string, { to, overwrite }: ExportCommandOptions): void {
+  const folder = trialFolder(trial);
+  const manifest = readManifest(folder);
+  const { sweeps, end } = exportTrial(folder, manifest, to, overwrite);
+  console.log(`${sweeps} sweeps written to ${to}`);
+  if (end !== null && end.kind !== "complete") {
+    console.error(
+      `The recording is ${end.kind}: what lies before is exported. Run bendwatch verify ${trial}`,
+    );
+  }
+}
+
+/** Writes the tables of a trial. The same bytes give the same files. */
+export function exportTrial(
+  folder: string,
+  { rig, startedAt, notes, settings }: Manifest,
+  to: string,
+  overwrite = false,
+): { sweeps: number; end: ReadEnd | null } {
+  const writer = new ExportWriter({
+    folder: to,
+    trialName: basename(folder),
+    rig,
+    softwareVersion,
+    overwrite,
+  });
+  let lostSweeps = 0;
+  const pipeline: Pipeline = new Pipeline(rig, {
+    startedAt: new Date(startedAt),
+    ring: false,
+    observer: {
+      sweep({ timeS, lostBefore }) {
+        lostSweeps += lostBefore;
+        const { midline, fusion } = pipeline;
+        writer.sweep(timeS, midline.positions, fusion.orientations, fusion.trust, fusion.bridged);
+      },
+      flag: (flag) => writer.flag(flag),
+      beat: (beat) => writer.beat(beat),
+      mark: (mark) => writer.mark(mark),
+      sync: (timeS, edge) => writer.sync(timeS, edge),
+    },
+  });
+  const { end, marks } = runThrough(folder, pipeline);
+  for (const mark of marks) writer.mark(mark);
+  writer.finish({ startedAt, notes, lostSweeps, counters: pipeline.counters, settings });
+  return { sweeps: pipeline.sweepCount, end };
+}

@@ -1,0 +1,190 @@
+/**
+ * The stages joined: bytes in, flags and midline out. Read it top to bottom.
+ *
+ *     bytes -> link -> clock -> calibration -> health -> fusion -> body -> wave -> ring buffer
+ *
+ * Everything is computed from the hub's own ticks, so the same bytes give the same results at any speed and cut into any
+ * chunks. Arrival times serve two things only: noticing a silent link, and bridging a restart of the hub.
+ */
+import { Midline } from "./body/midline.ts";
+import { TravelAxis } from "./body/travel-axis.ts";
+import { Calibration } from "./calibration/calibration.ts";
+import { Admission, HubClock } from "./clock/hub-clock.ts";
+import { SilenceWatch } from "./clock/silence.ts";
+import { ChainFusion } from "./fusion/chain-fusion.ts";
+import { FlagBook } from "./health/flag-book.ts";
+import { Health } from "./health/health.ts";
+import { siteField } from "./health/site-field.ts";
+import { createDecoder } from "./link/decoder.ts";
+import type { LinkCounters, PacketDecoder } from "./link/packets.ts";
+import type { Rig } from "./rig/load.ts";
+import type { Sweep } from "./sweep.ts";
+import { TrialRing } from "./trial/ring.ts";
+import { type Beat, TailbeatMeter } from "./wave/tailbeat.ts";
+import type { Flag, Mark } from "./wire/flag.ts";
+
+/** Points of the midline, nose and tail tip included. */
+export const POINT_COUNT = 41;
+/** No sweep for this long is a silent link, be it that nothing comes or that nothing can be read. */
+const SILENCE_MS = 300;
+/** The ring buffer's span. */
+const RING_SECONDS = 600;
+
+/** What a run tells whoever watches it. Records are borrowed. */
+export interface PipelineObserver {
+  /** A sweep went through all stages. */
+  sweep?(sweep: Sweep): void;
+  flag?(flag: Flag, change: "raised" | "changed" | "ended"): void;
+  beat?(beat: Beat): void;
+  mark?(mark: Mark): void;
+  /** A camera frame's time, hub s. */
+  sync?(timeS: number, edge: number): void;
+}
+
+export interface PipelineOptions {
+  /** Day of the trial, for the World Magnetic Model. */
+  readonly startedAt: Date;
+  readonly observer?: PipelineObserver;
+  /** false leaves the ring buffer out: an export needs no looking back. */
+  readonly ring?: boolean;
+}
+
+export class Pipeline {
+  readonly rig: Rig;
+  readonly clock: HubClock;
+  readonly flags: FlagBook;
+  readonly health: Health;
+  readonly fusion: ChainFusion;
+  readonly midline: Midline;
+  readonly travel = new TravelAxis();
+  readonly tailbeat: TailbeatMeter;
+  readonly ring: TrialRing | null;
+  /** Sweeps that went through all stages. */
+  sweepCount = 0;
+  /** Hub time of the newest sweep, s. */
+  timeS = 0;
+  /** Arrival of its last byte, ms since the epoch. */
+  hostTimeMs = 0;
+
+  readonly #observer: PipelineObserver;
+  readonly #calibration: Calibration;
+  readonly #decoder: PacketDecoder;
+  readonly #silence = new SilenceWatch(SILENCE_MS);
+  #badPackets = 0;
+
+  constructor(rig: Rig, { startedAt, observer = {}, ring = true }: PipelineOptions) {
+    const { sensors, models, thresholds, hub, site, body } = rig;
+    const sensorCount = sensors.length;
+    const rateHz = hub.rateHz;
+    this.rig = rig;
+    this.#observer = observer;
+    this.#decoder = createDecoder(rig, {
+      sweep: (sweep) => this.#sweep(sweep),
+      hello: () => {},
+      status: () => {},
+      reference: () => {},
+      sync: ({ tickUs, edge }) => observer.sync?.(this.clock.timeOf(tickUs), edge),
+      button: ({ tickUs, button }) => this.#button(tickUs, button),
+    });
+    this.clock = new HubClock({ rateHz });
+    this.#calibration = new Calibration(sensors);
+    this.flags = new FlagBook(sensors, {
+      onRaised: (flag) => observer.flag?.(flag, "raised"),
+      onChanged: (flag) => observer.flag?.(flag, "changed"),
+      onEnded: (flag) => observer.flag?.(flag, "ended"),
+    });
+    this.health = new Health({
+      sensors: sensors.map((sensor, i) => ({ ...sensor, model: models[i]! })),
+      rateHz,
+      thresholds,
+      expectedField: site ? siteField(site, site.date ? new Date(site.date) : startedAt) : null,
+      book: this.flags,
+    });
+    this.fusion = new ChainFusion({
+      sensorCount,
+      rateHz,
+      heading: rig.heading,
+      samplingOffsetsS: sensors.map((sensor) => sensor.samplingOffsetUs / 1e6),
+    });
+    this.midline = new Midline({
+      lengthM: body.lengthMm / 1000,
+      stations: sensors.map((sensor) => sensor.station),
+      pointCount: POINT_COUNT,
+    });
+    this.tailbeat = new TailbeatMeter({ lengthM: body.lengthMm / 1000 });
+    this.ring = ring
+      ? new TrialRing({ sensorCount, pointCount: POINT_COUNT, rateHz, seconds: RING_SECONDS })
+      : null;
+  }
+
+  /** A chunk of bytes as it arrived, of any size. */
+  bytes(chunk: Uint8Array, hostTimeMs: number): void {
+    this.hostTime(hostTimeMs);
+    this.#decoder.push(chunk, hostTimeMs);
+  }
+
+  /** Host time passes, with or without bytes: a link that gives no sweeps is noticed. */
+  hostTime(hostTimeMs: number): void {
+    this.#silence.hostTime(hostTimeMs);
+    if (this.#silence.silent && this.sweepCount > 0)
+      this.health.linkSilent(true, this.timeS + SILENCE_MS / 1000);
+  }
+
+  /** What the operator should know about a hub that does not fit the rig, or null. */
+  get complaint(): string | null {
+    return this.#decoder.complaint;
+  }
+
+  /** A mark by the operator, at the newest sweep's time. */
+  mark(text: string, from: Mark["from"]): Mark {
+    const mark: Mark = { timeS: this.timeS, text, from };
+    this.#observer.mark?.(mark);
+    return mark;
+  }
+
+  /** The run is over: open flags end with it. */
+  finish(): void {
+    for (const flag of [...this.flags.open]) this.flags.clear(flag.kind, flag.sensor, this.timeS);
+  }
+
+  get counters(): Readonly<LinkCounters> {
+    return this.#decoder.counters;
+  }
+
+  get silent(): boolean {
+    return this.#silence.silent;
+  }
+
+  #sweep(sweep: Sweep): void {
+    const admission = this.clock.admit(sweep);
+    if (admission === Admission.DUPLICATE || admission === Admission.LATE) return;
+    this.#silence.bytesArrived(sweep.hostTimeMs);
+    this.#reportBadPackets(sweep.timeS);
+    if (admission === Admission.RESTARTED) this.health.hubRestarted(sweep.timeS);
+    this.#calibration.apply(sweep);
+    this.health.observe(sweep, this.fusion.orientations);
+    this.fusion.step(sweep);
+    this.midline.step(this.fusion.orientations, this.fusion.trust);
+    this.travel.step(sweep.stepS, this.midline.positions);
+    const tail = this.travel.lateral(this.midline.positions, POINT_COUNT - 1);
+    if (this.tailbeat.step(sweep.timeS, tail)) this.#observer.beat?.(this.tailbeat.lastBeat!);
+    this.ring?.push(sweep, this.fusion.orientations, this.fusion.trust, this.midline.positions);
+    this.timeS = sweep.timeS;
+    this.hostTimeMs = sweep.hostTimeMs;
+    this.sweepCount++;
+    this.#observer.sweep?.(sweep);
+  }
+
+  #button(tickUs: number, button: number): void {
+    this.#observer.mark?.({ timeS: this.clock.timeOf(tickUs), text: `Button ${button}`, from: "hub button" });
+  }
+
+  /** Told at the sweep that follows them, so that it does not depend on how the bytes were cut. */
+  #reportBadPackets(timeS: number): void {
+    const { badChecksum, overLong, notUnderstood } = this.#decoder.counters;
+    const bad = badChecksum + overLong + notUnderstood;
+    if (bad === this.#badPackets) return;
+    this.health.corruption(bad - this.#badPackets, timeS);
+    this.#badPackets = bad;
+  }
+}

@@ -1,0 +1,96 @@
+/**
+ * Every rehearsed fault, alone, through real packets and the whole pipeline: its flag and no other, on the right sensor,
+ * in time, and gone after the fault.
+ */
+import { describe, expect, test } from "vitest";
+import type { FlagKind } from "../../bridge/wire/flag.ts";
+import { rehearse } from "../support/rehearse.ts";
+
+const START_S = 10;
+/** Long enough for the slowest condition to end: the magnetic one's second of quiet, the loss window's second. */
+const CLEARED_WITHIN_S = 2;
+const AFTER_S = 4;
+
+interface Case {
+  /** As on the command line, without @start. */
+  readonly fault: string;
+  readonly forS: number;
+  /** Kinds expected, in order of onset, on this sensor (-1: the rig). */
+  readonly kinds: readonly FlagKind[];
+  readonly sensor: number;
+  readonly withinS?: number;
+}
+
+const CASES: readonly Case[] = [
+  { fault: "saturation:S5", forS: 4, kinds: ["gyro saturation"], sensor: 4 },
+  { fault: "flattop:S6", forS: 4, kinds: ["gyro saturation"], sensor: 5 },
+  { fault: "magnet:S4", forS: 4, kinds: ["magnetic interference"], sensor: 3, withinS: 1 },
+  { fault: "field", forS: 4, kinds: ["rig-wide magnetic interference"], sensor: -1, withinS: 1 },
+  { fault: "loss", forS: 4, kinds: ["lost samples"], sensor: -1 },
+  { fault: "burst", forS: 0.2, kinds: ["lost samples"], sensor: -1 },
+  { fault: "loose:S3", forS: 4, kinds: ["lost samples"], sensor: 2 },
+  { fault: "corrupt", forS: 3, kinds: ["corrupt packets"], sensor: -1 },
+  { fault: "silence", forS: 2, kinds: ["link silent"], sensor: -1 },
+  { fault: "stuck:S2.gy", forS: 3, kinds: ["stuck axis"], sensor: 1 },
+  { fault: "stuck:S3.ax", forS: 3, kinds: ["stuck axis"], sensor: 2 },
+  { fault: "stuck:S6.mz", forS: 3, kinds: ["stuck axis"], sensor: 5 },
+  { fault: "unreadable:S1", forS: 3, kinds: ["sensor read errors"], sensor: 0 },
+];
+
+describe.each([
+  // A beat of 2.1 Hz reaches its crest, where a gyroscope flat-tops, four times a second.
+  { rig: "ribbon-foil", frequencyHz: 2.1 },
+  { rig: "long-dummy", frequencyHz: 2.1 },
+])("on $rig", ({ rig, frequencyHz }) => {
+  // The sixth of sixteen units lies too far forward to turn fast enough for a flat top.
+  const cases = rig === "long-dummy" ? CASES.map((c) => (c.fault === "flattop:S6" ? tailUnit(c) : c)) : CASES;
+
+  test.each(cases)("$fault raises its flag, there and only there, and it clears", async (given) => {
+    const { fault, forS, kinds, sensor, withinS = 0.5 } = given;
+    const endS = START_S + forS;
+    const { flags, seenAtS, pipeline } = await rehearse({
+      rig,
+      seed: 3,
+      durationS: endS + AFTER_S,
+      faults: [`${fault}@${START_S}+${forS}`],
+      swimmer: { frequencyHz },
+    });
+    expect(flags.map((flag) => [flag.kind, flag.sensor])).toEqual(kinds.map((kind) => [kind, sensor]));
+    for (const flag of flags) {
+      expect(seenAtS.get(flag.id)! - START_S).toBeLessThanOrEqual(withinS);
+      expect(flag.startS - START_S).toBeLessThanOrEqual(withinS);
+      // At once after a silence, whose end is the first sweep that comes; a sweep's time may be rounded below it.
+      expect(flag.endS! - endS).toBeGreaterThan(-0.6);
+      expect(flag.endS! - endS).toBeLessThanOrEqual(CLEARED_WITHIN_S);
+      expect(flag.advice).not.toBe("");
+    }
+    expect(pipeline.flags.open).toEqual([]);
+  });
+
+  test("a hub that restarts is silent first, then said to have restarted", async () => {
+    const { flags, pipeline } = await rehearse({
+      rig,
+      seed: 3,
+      durationS: 26,
+      faults: [`restart@${START_S}+1.5`],
+    });
+    expect(flags.map(({ kind, sensor }) => [kind, sensor])).toEqual([
+      ["link silent", -1],
+      ["hub restarted", -1],
+    ]);
+    expect(pipeline.flags.open).toEqual([]);
+    // Hub time goes on across the restart: the arrival times bridge it.
+    expect(pipeline.timeS).toBeGreaterThan(25.9);
+    expect(pipeline.timeS).toBeLessThan(26.1);
+  });
+});
+
+test.each([1, 2, 3])("ten healthy minutes raise no flag at all (seed %i)", async (seed) => {
+  const { flags, pipeline } = await rehearse({ rig: "ribbon-foil", seed, durationS: 600 });
+  expect(flags).toEqual([]);
+  expect(pipeline.sweepCount).toBe(60_000);
+});
+
+function tailUnit(c: Case): Case {
+  return { ...c, fault: c.fault.replace("S6", "S16"), sensor: 15 };
+}
