@@ -101,7 +101,7 @@ test("a sensor model that is not there is named with the sensor that wants it", 
   });
   const { code, err } = await bendwatch("rehearse", "--rig", path);
   expect(code).toBe(2);
-  expect(err).toMatch(/sensors\[4\]\.model: found .*no-such-unit/);
+  expect(err).toMatch(/sensors\[4\]\.model: .*no-such-unit\.json: found ENOENT/);
 });
 
 test.each([
