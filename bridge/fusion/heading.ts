@@ -5,6 +5,8 @@ import { Slot } from "./record.ts";
 
 /** Below this horizontal length the nose axis has no heading. */
 const VERTICAL = 1e-3;
+/** A horizontal field below this share of the vertical is rounding, and points anywhere. */
+const VERTICAL_FIELD = 1e-9;
 
 /** Yaw of the nose axis, rad, left of east; the start's where the nose looks straight up or down. */
 export function noseYaw(r: Float64Array): number {
@@ -32,8 +34,13 @@ export function levelField(r: Float64Array): void {
   }
 }
 
-/** Turns the heading by a share of its disagreement with the field. A field without horizontal part turns nothing. */
+/** Turns the heading by a share of its disagreement with the field. A vertical field turns nothing. */
 export function correctHeading(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
+  if (
+    Math.hypot(r[Slot.LEVEL_FIELD]!, r[Slot.LEVEL_FIELD + 1]!) <
+    VERTICAL_FIELD * Math.abs(r[Slot.LEVEL_FIELD + 2]!)
+  )
+    return;
   chooseGain(r, gains, parameters);
   const gain = r[Slot.HEADING_GAIN]!;
   if (gain === 0) return;

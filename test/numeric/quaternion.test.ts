@@ -4,10 +4,12 @@ import {
   conjugate,
   fromRotationVector,
   fromTwoVectors,
+  keepUnit,
   multiply,
   normalise,
   rotate,
   slerp,
+  toMatrix,
   toRotationVector,
 } from "../../bridge/numeric/quaternion.ts";
 
@@ -86,6 +88,31 @@ describe("normalise", () => {
     const out = new Float64Array(4);
     normalise(out, q);
     expect([...out]).toEqual([1, 0, 0, 0]);
+  });
+});
+
+describe("keepUnit", () => {
+  it("squares a small error of length", () => {
+    const out = [0, 0, 0, 0];
+    keepUnit(out, [HALF * (1 + 1e-7), 0, HALF * (1 + 1e-7), 0]);
+    close(out, [HALF, 0, HALF, 0], 2e-14);
+  });
+});
+
+describe("toMatrix", () => {
+  it("rotates as the quaternion does", () => {
+    fc.assert(
+      fc.property(unit, vector, (q, v) => {
+        const m = new Float64Array(9);
+        const rotated = [0, 0, 0];
+        toMatrix(m, q);
+        rotate(rotated, q, v);
+        close(
+          [0, 3, 6].map((row) => m[row]! * v[0] + m[row + 1]! * v[1] + m[row + 2]! * v[2]),
+          rotated,
+        );
+      }),
+    );
   });
 });
 
