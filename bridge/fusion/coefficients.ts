@@ -2,7 +2,7 @@
  * Numbers that follow from the parameters and a step length, worked out before the first sweep: one set for each whole
  * multiple of the nominal interval, so that lost samples and slower sensors cost nothing extra.
  */
-import { LowPassGains } from "../numeric/low-pass.ts";
+import { lowPassGains } from "../numeric/low-pass.ts";
 import { RAD_PER_DEG } from "../numeric/units.ts";
 import type { FusionParameters } from "./parameters.ts";
 
@@ -13,49 +13,37 @@ const SAME_STEP = 0.01;
 /** The bias's standard deviation grows from zero to this in the forgetting time, rad/s. */
 const FORGOTTEN_SIGMA = 0.1 * RAD_PER_DEG;
 
-/** All that a step of one length needs. */
-export class StepGains {
-  readonly stepS: number;
-  readonly force: LowPassGains;
-  readonly rest: LowPassGains;
-  readonly magCurrent: LowPassGains;
+/** Where things lie in a set: flat doubles, as the record. */
+export enum Gain {
+  /** The step length, s. */
+  STEP = 0,
+  /** Low-pass gains for the specific force, for rest, and for the current field. */
+  FORCE = STEP + 1,
+  REST = FORCE + 6,
+  FIELD = REST + 6,
   /** Share of the heading's disagreement with the field that one step takes away. */
-  readonly heading: number;
+  HEADING = FIELD + 6,
   /** Share of the reference field's difference from the current field that one step takes away. */
-  readonly magReference: number;
+  REFERENCE = HEADING + 1,
   /** Variance that the bias gains in the step, (rad/s)². */
-  readonly biasNoise: number;
+  BIAS_NOISE = REFERENCE + 1,
   /** Variances of one step's measurement of the bias, (rad/s)²: horizontal and vertical in motion, and at rest. */
-  readonly motionVariance: number;
-  readonly verticalVariance: number;
-  readonly restVariance: number;
+  MOTION_VARIANCE = BIAS_NOISE + 1,
+  VERTICAL_VARIANCE = MOTION_VARIANCE + 1,
+  REST_VARIANCE = VERTICAL_VARIANCE + 1,
 
-  constructor(parameters: FusionParameters, stepS: number) {
-    this.stepS = stepS;
-    this.force = new LowPassGains(parameters.accelTauS, stepS);
-    this.rest = new LowPassGains(parameters.restTauS, stepS);
-    this.magCurrent = new LowPassGains(parameters.magCurrentTauS, stepS);
-    this.heading = firstOrderGain(parameters.magTauS, stepS);
-    this.magReference = firstOrderGain(parameters.magReferenceTauS, stepS);
-    this.biasNoise = (FORGOTTEN_SIGMA ** 2 * stepS) / parameters.biasForgettingS;
-    this.motionVariance = measurementVariance(parameters.biasSigmaMotion, this.biasNoise);
-    this.verticalVariance = this.motionVariance / parameters.biasVerticalWeight;
-    this.restVariance = measurementVariance(parameters.biasSigmaRest, this.biasNoise);
-  }
+  SIZE = REST_VARIANCE + 1,
 }
 
 export class Coefficients {
-  readonly #rateHz: number;
   readonly #parameters: FusionParameters;
   /** By multiple, from 1. */
-  readonly #multiples: readonly StepGains[];
+  readonly #multiples: readonly Float64Array[];
 
   constructor(parameters: FusionParameters, rateHz: number) {
-    this.#rateHz = rateHz;
     this.#parameters = parameters;
-    this.#multiples = Array.from(
-      { length: MULTIPLES + 1 },
-      (_, n) => new StepGains(parameters, Math.max(n, 1) / rateHz),
+    this.#multiples = Array.from({ length: MULTIPLES + 1 }, (_, n) =>
+      gainsFor(parameters, Math.max(n, 1) / rateHz),
     );
   }
 
@@ -63,14 +51,32 @@ export class Coefficients {
    * The set for the step length at `at` in a record (s, above zero). An odd length, which a steady hub never gives, makes
    * a set of its own.
    */
-  forStep(record: Float64Array, at: number): StepGains {
+  forStep(record: Float64Array, at: number): Float64Array {
     const stepS = record[at]!;
-    const steps = stepS * this.#rateHz;
-    const whole = Math.round(steps);
-    if (whole >= 1 && whole <= MULTIPLES && Math.abs(steps - whole) <= SAME_STEP * whole)
-      return this.#multiples[whole]!;
-    return new StepGains(this.#parameters, stepS);
+    const nominal = this.#multiples[1]!;
+    const nominalS = nominal[Gain.STEP]!;
+    if (Math.abs(stepS - nominalS) <= SAME_STEP * nominalS) return nominal;
+    const multiple = Math.round(stepS / nominalS);
+    const off = Math.abs(stepS - multiple * nominalS);
+    if (multiple >= 1 && multiple <= MULTIPLES && off <= SAME_STEP * stepS) return this.#multiples[multiple]!;
+    return gainsFor(this.#parameters, stepS);
   }
+}
+
+function gainsFor(parameters: FusionParameters, stepS: number): Float64Array {
+  const gains = new Float64Array(Gain.SIZE);
+  const noise = (FORGOTTEN_SIGMA ** 2 * stepS) / parameters.biasForgettingS;
+  gains[Gain.STEP] = stepS;
+  lowPassGains(gains, Gain.FORCE, parameters.accelTauS, stepS);
+  lowPassGains(gains, Gain.REST, parameters.restTauS, stepS);
+  lowPassGains(gains, Gain.FIELD, parameters.magCurrentTauS, stepS);
+  gains[Gain.HEADING] = firstOrderGain(parameters.magTauS, stepS);
+  gains[Gain.REFERENCE] = firstOrderGain(parameters.magReferenceTauS, stepS);
+  gains[Gain.BIAS_NOISE] = noise;
+  gains[Gain.MOTION_VARIANCE] = measurementVariance(parameters.biasSigmaMotion, noise);
+  gains[Gain.VERTICAL_VARIANCE] = gains[Gain.MOTION_VARIANCE]! / parameters.biasVerticalWeight;
+  gains[Gain.REST_VARIANCE] = measurementVariance(parameters.biasSigmaRest, noise);
+  return gains;
 }
 
 /** Gain of a first-order low-pass with time constant `tauS` over one step. */

@@ -10,7 +10,7 @@
  * errors, so they are taken one after the other: the same result as the matrix form, without inverting a matrix.
  */
 import { stepLowPass } from "../numeric/low-pass.ts";
-import type { Coefficients, StepGains } from "./coefficients.ts";
+import { type Coefficients, Gain } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
 
@@ -51,31 +51,31 @@ function sum(r: Float64Array): void {
 }
 
 /** Carries the level matrix, and the bias seen through it, through the inclination's low-pass. */
-function followLevel(r: Float64Array, gains: StepGains): void {
+function followLevel(r: Float64Array, gains: Float64Array): void {
   const scale = 1 / r[Slot.SPAN]!;
   for (let i = 0; i < 9; i++) r[Slot.MEAN_MATRIX + i] = scale * r[Slot.SPAN_MATRIX + i]!;
   r[Slot.LEVEL_BIAS] = along(r, Slot.MEAN_MATRIX);
   r[Slot.LEVEL_BIAS + 1] = along(r, Slot.MEAN_MATRIX + 3);
-  stepLowPass(r, Slot.LEVEL_LOW_PASS, 11, Slot.MEAN_MATRIX, gains.force);
+  stepLowPass(r, Slot.LEVEL_LOW_PASS, 11, Slot.MEAN_MATRIX, gains, Gain.FORCE);
 }
 
 /** The bias wanders: its variance grows, up to where it started. */
-function growCovariance(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
+function growCovariance(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
   const most = parameters.biasSigmaStart * parameters.biasSigmaStart;
   for (const axis of [Slot.BIAS_COVARIANCE, Slot.BIAS_COVARIANCE + 3, Slot.BIAS_COVARIANCE + 5]) {
-    if (r[axis]! < most) r[axis]! += gains.biasNoise;
+    if (r[axis]! < most) r[axis]! += gains[Gain.BIAS_NOISE]!;
   }
 }
 
-function measureAtRest(r: Float64Array, gains: StepGains): void {
+function measureAtRest(r: Float64Array, gains: Float64Array): void {
   for (let i = 0; i < 9; i++) seenThrough[i] = i % 4 === 0 ? 1 : 0;
   for (let i = 0; i < 3; i++) {
     residual[i] = r[Slot.REST_LOW_PASS + 1 + i]! - r[Slot.BIAS + i]!;
-    variance[i] = gains.restVariance;
+    variance[i] = gains[Gain.REST_VARIANCE]!;
   }
 }
 
-function measureInMotion(r: Float64Array, gains: StepGains): void {
+function measureInMotion(r: Float64Array, gains: Float64Array): void {
   const matrix = Slot.LEVEL_LOW_PASS + 1;
   const bias = matrix + 9;
   const scale = 1 / r[Slot.SPAN]!;
@@ -83,9 +83,9 @@ function measureInMotion(r: Float64Array, gains: StepGains): void {
   residual[0] = scale * r[Slot.SPAN_TILT]! + r[bias]! - along(r, matrix);
   residual[1] = scale * r[Slot.SPAN_TILT + 1]! + r[bias + 1]! - along(r, matrix + 3);
   residual[2] = -along(r, matrix + 6);
-  variance[0] = gains.motionVariance;
-  variance[1] = gains.motionVariance;
-  variance[2] = gains.verticalVariance;
+  variance[0] = gains[Gain.MOTION_VARIANCE]!;
+  variance[1] = gains[Gain.MOTION_VARIANCE]!;
+  variance[2] = gains[Gain.VERTICAL_VARIANCE]!;
 }
 
 /** Kalman update, row by row; residuals and the result are held within the bias limit. */

@@ -1,12 +1,12 @@
 /** Heading: one angle about the vertical, drawn towards magnetic north by the horizontal field in the level frame. */
-import type { StepGains } from "./coefficients.ts";
+import { Gain } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
 
 /** Below this horizontal length the nose axis has no heading. */
 const VERTICAL = 1e-3;
-/** A horizontal field below this share of the vertical is rounding, and points anywhere. */
-const VERTICAL_FIELD = 1e-9;
+/** A horizontal field whose square is below this share of the vertical's is rounding, and points anywhere. */
+const VERTICAL_FIELD = 1e-18;
 
 /** Yaw of the nose axis, rad, left of east; the start's where the nose looks straight up or down. */
 export function noseYaw(r: Float64Array): number {
@@ -35,12 +35,11 @@ export function levelField(r: Float64Array): void {
 }
 
 /** Turns the heading by a share of its disagreement with the field. A vertical field turns nothing. */
-export function correctHeading(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
-  if (
-    Math.hypot(r[Slot.LEVEL_FIELD]!, r[Slot.LEVEL_FIELD + 1]!) <
-    VERTICAL_FIELD * Math.abs(r[Slot.LEVEL_FIELD + 2]!)
-  )
-    return;
+export function correctHeading(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
+  const x = r[Slot.LEVEL_FIELD]!;
+  const y = r[Slot.LEVEL_FIELD + 1]!;
+  const z = r[Slot.LEVEL_FIELD + 2]!;
+  if (x * x + y * y <= VERTICAL_FIELD * z * z) return;
   chooseGain(r, gains, parameters);
   const gain = r[Slot.HEADING_GAIN]!;
   if (gain === 0) return;
@@ -48,13 +47,28 @@ export function correctHeading(r: Float64Array, gains: StepGains, parameters: Fu
   const s = r[Slot.HEADING + 1]!;
   const cosine = c * c - s * s;
   const sine = 2 * c * s;
-  const east = cosine * r[Slot.LEVEL_FIELD]! - sine * r[Slot.LEVEL_FIELD + 1]!;
-  const north = sine * r[Slot.LEVEL_FIELD]! + cosine * r[Slot.LEVEL_FIELD + 1]!;
+  const east = cosine * x - sine * y;
+  const north = sine * x + cosine * y;
   // A turn by this half angle, as its tangent; then back to unit length.
-  const tangent = Math.tan(0.5 * gain * Math.atan2(east, north));
-  const scale = 1 / Math.sqrt(1 + tangent * tangent) / Math.sqrt(c * c + s * s);
+  const tangent = tangentOf(0.5 * gain * angleOf(east, north));
+  const scale = 1 / Math.sqrt((1 + tangent * tangent) * (c * c + s * s));
   r[Slot.HEADING] = (c - s * tangent) * scale;
   r[Slot.HEADING + 1] = (s + c * tangent) * scale;
+}
+
+/** Angle from north to a direction, rad, positive to the east. Near north by its series, whose next term is below 1e-13. */
+function angleOf(east: number, north: number): number {
+  if (!(Math.abs(east) < 0.1 * north)) return Math.atan2(east, north);
+  const t = east / north;
+  const q = t * t;
+  return t * (1 - q * (1 / 3 - q * (1 / 5 - q * (1 / 7 - q * (1 / 9 - q * (1 / 11))))));
+}
+
+/** Tangent; of small angles by its series, whose next term is below 1e-15. */
+function tangentOf(angle: number): number {
+  const q = angle * angle;
+  if (q > 1e-6) return Math.tan(angle);
+  return angle * (1 + q * (1 / 3 + (q * 2) / 15));
 }
 
 /** out (4 slots) = heading · level: body axes -> earth. */
@@ -75,8 +89,8 @@ export function composeEarth(r: Float64Array, out: Float64Array, outAt: number):
  * The share to correct by: the first readings are averaged (1, 1/2, 1/3 ... until the steady gain is reached); a disturbed
  * field counts for nothing until the allowance for rejection is used up, then for less.
  */
-function chooseGain(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
-  let gain = gains.heading;
+function chooseGain(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
+  let gain = gains[Gain.HEADING]!;
   if (r[Slot.DISTURBED] === 0) {
     const wonBack = parameters.magRejectionFactor * r[Slot.FIELD_STEP]!;
     r[Slot.REJECTED_TIME] = Math.max(0, r[Slot.REJECTED_TIME]! - wonBack);
@@ -89,7 +103,7 @@ function chooseGain(r: Float64Array, gains: StepGains, parameters: FusionParamet
   if (r[Slot.HEADING_SETTLED] === 0) {
     r[Slot.HEADING_COUNT]! += 1;
     const average = 1 / r[Slot.HEADING_COUNT]!;
-    if (average < gains.heading) r[Slot.HEADING_SETTLED] = 1;
+    if (average < gains[Gain.HEADING]!) r[Slot.HEADING_SETTLED] = 1;
     gain = Math.max(gain, average);
   }
   r[Slot.HEADING_GAIN] = gain;

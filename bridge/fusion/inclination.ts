@@ -4,7 +4,7 @@
  */
 import { stepLowPass } from "../numeric/low-pass.ts";
 import { keepUnit, multiply, rotate, toMatrix } from "../numeric/quaternion.ts";
-import type { StepGains } from "./coefficients.ts";
+import { Gain } from "./coefficients.ts";
 import { Slot } from "./record.ts";
 
 const correction = new Float64Array(4);
@@ -12,9 +12,9 @@ const correction = new Float64Array(4);
 const UPSIDE_DOWN = -1 + 1e-12;
 
 /** Averages the newest specific force and turns the level frame so that the average points up. */
-export function correctInclination(r: Float64Array, gains: StepGains): void {
+export function correctInclination(r: Float64Array, gains: Float64Array): void {
   rotate(r, r, r, Slot.INERTIAL_FORCE, Slot.STRAPDOWN, Slot.FORCE);
-  stepLowPass(r, Slot.FORCE_LOW_PASS, 3, Slot.INERTIAL_FORCE, gains.force);
+  stepLowPass(r, Slot.FORCE_LOW_PASS, 3, Slot.INERTIAL_FORCE, gains, Gain.FORCE);
   rotate(r, r, r, Slot.UP, Slot.INCLINATION, Slot.FORCE_LOW_PASS + 1);
   const length = Math.sqrt(
     r[Slot.UP]! * r[Slot.UP]! + r[Slot.UP + 1]! * r[Slot.UP + 1]! + r[Slot.UP + 2]! * r[Slot.UP + 2]!,
@@ -27,7 +27,9 @@ export function correctInclination(r: Float64Array, gains: StepGains): void {
     return;
   }
   const scale = 1 / length;
-  for (let i = Slot.UP; i < Slot.UP + 3; i++) r[i]! *= scale;
+  r[Slot.UP]! *= scale;
+  r[Slot.UP + 1]! *= scale;
+  r[Slot.UP + 2]! *= scale;
   tiltToVertical(r);
   multiply(r, correction, r, Slot.INCLINATION, 0, Slot.INCLINATION);
   keepUnit(r, r, Slot.INCLINATION, Slot.INCLINATION);
@@ -47,9 +49,10 @@ function tiltToVertical(r: Float64Array): void {
     correction[2] = 0;
   } else {
     const w = Math.sqrt(0.5 * (1 + r[Slot.UP + 2]!));
+    const scale = 0.5 / w;
     correction[0] = w;
-    correction[1] = (0.5 * r[Slot.UP + 1]!) / w;
-    correction[2] = (-0.5 * r[Slot.UP]!) / w;
+    correction[1] = scale * r[Slot.UP + 1]!;
+    correction[2] = -scale * r[Slot.UP]!;
   }
   correction[3] = 0;
 }

@@ -4,26 +4,26 @@
  * disturbed in any case and becomes no reference.
  */
 import { stepLowPass } from "../numeric/low-pass.ts";
-import type { StepGains } from "./coefficients.ts";
+import { Gain } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
 
 const CURRENT = Slot.FIELD_LOW_PASS + 1;
 
 /** Judges the newest field (in the level frame, not zero) against the reference, and lets the reference follow. */
-export function watchField(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
+export function watchField(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
   const east = r[Slot.LEVEL_FIELD]!;
   const north = r[Slot.LEVEL_FIELD + 1]!;
   const up = r[Slot.LEVEL_FIELD + 2]!;
   const norm = Math.sqrt(east * east + north * north + up * up);
   r[Slot.NORM_AND_DIP] = norm;
   r[Slot.NORM_AND_DIP + 1] = -Math.asin(up / norm);
-  stepLowPass(r, Slot.FIELD_LOW_PASS, 2, Slot.NORM_AND_DIP, gains.magCurrent);
+  stepLowPass(r, Slot.FIELD_LOW_PASS, 2, Slot.NORM_AND_DIP, gains, Gain.FIELD);
   compareWithReference(r, gains, parameters);
   considerNewReference(r, gains, parameters);
 }
 
-function compareWithReference(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
+function compareWithReference(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
   if (r[Slot.FIELD_FLAGGED] === 1 || !isCurrent(r, Slot.REFERENCE, parameters)) {
     r[Slot.UNDISTURBED_TIME] = 0;
     r[Slot.DISTURBED] = 1;
@@ -35,7 +35,7 @@ function compareWithReference(r: Float64Array, gains: StepGains, parameters: Fus
   follow(r, Slot.REFERENCE, gains);
 }
 
-function considerNewReference(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
+function considerNewReference(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
   if (r[Slot.FIELD_FLAGGED] === 1 || !isCurrent(r, Slot.CANDIDATE, parameters)) {
     r[Slot.CANDIDATE_TIME] = 0;
     copyField(r, Slot.CANDIDATE, CURRENT);
@@ -67,9 +67,9 @@ function isMoving(r: Float64Array, parameters: FusionParameters): boolean {
   return x * x + y * y + z * z >= parameters.magNewMinRate * parameters.magNewMinRate;
 }
 
-function follow(r: Float64Array, at: number, gains: StepGains): void {
-  r[at]! += gains.magReference * (r[CURRENT]! - r[at]!);
-  r[at + 1]! += gains.magReference * (r[CURRENT + 1]! - r[at + 1]!);
+function follow(r: Float64Array, at: number, gains: Float64Array): void {
+  r[at]! += gains[Gain.REFERENCE]! * (r[CURRENT]! - r[at]!);
+  r[at + 1]! += gains[Gain.REFERENCE]! * (r[CURRENT + 1]! - r[at + 1]!);
 }
 
 function copyField(r: Float64Array, to: number, from: number): void {

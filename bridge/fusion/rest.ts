@@ -1,6 +1,6 @@
 /** Rest: for a while neither the angular rate nor the specific force strays from its own low-pass. */
 import { stepLowPass } from "../numeric/low-pass.ts";
-import type { StepGains } from "./coefficients.ts";
+import { Gain } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
 
@@ -12,8 +12,8 @@ const FORCE = RATE + 3;
  * The newest angular rate and specific force: a deviation, or an even rate too great to be bias, ends rest; time without
  * brings it.
  */
-export function watchRest(r: Float64Array, gains: StepGains, parameters: FusionParameters): void {
-  stepLowPass(r, Slot.REST_LOW_PASS, 6, Slot.RATE, gains.rest);
+export function watchRest(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
+  stepLowPass(r, Slot.REST_LOW_PASS, 6, Slot.RATE, gains, Gain.REST);
   if (!isQuiet(r, parameters)) {
     r[Slot.REST_TIME] = 0;
     r[Slot.AT_REST] = 0;

@@ -21,47 +21,43 @@ export function lowPassSize(channels: number): number {
   return 1 + 3 * channels;
 }
 
-/** What one step of a certain length does to a filter with a certain time constant; shared by all its channels. */
-export class LowPassGains {
-  readonly stepS: number;
-  readonly tauS: number;
-  /** Deviation from the held input, and slope times τ, after the step from those before it: a 2 x 2 matrix. */
-  readonly deviationFromDeviation: number;
-  readonly deviationFromSlope: number;
-  readonly slopeFromDeviation: number;
-  readonly slopeFromSlope: number;
-
-  /** @param tauS time constant, s, above zero; @param stepS step length, s, above zero */
-  constructor(tauS: number, stepS: number) {
-    this.stepS = stepS;
-    this.tauS = tauS;
-    const angle = stepS / tauS;
-    const decay = Math.exp(-angle);
-    const cosine = decay * Math.cos(angle);
-    const sine = decay * Math.sin(angle);
-    this.deviationFromDeviation = cosine + sine;
-    this.deviationFromSlope = sine;
-    this.slopeFromDeviation = -2 * sine;
-    this.slopeFromSlope = cosine - sine;
-  }
+/**
+ * Writes what one step of a certain length does to a filter with a certain time constant: step, time constant, and the
+ * 2 x 2 matrix, by rows, from deviation from the held input and slope times τ before the step to those after it. Shared by
+ * all channels.
+ * @param out six slots from `outAt` on
+ * @param tauS time constant, s, above zero
+ * @param stepS step length, s, above zero
+ */
+export function lowPassGains(out: Float64Array, outAt: number, tauS: number, stepS: number): void {
+  const angle = stepS / tauS;
+  const decay = Math.exp(-angle);
+  const cosine = decay * Math.cos(angle);
+  const sine = decay * Math.sin(angle);
+  out.set([stepS, tauS, cosine + sine, sine, -2 * sine, cosine - sine], outAt);
 }
 
 /**
  * One step of the filter at `at` in the record, to the new input at `inputAt` in the same record (finite).
  * @param channels of both
+ * @param gains as from lowPassGains, at `gainsAt`
  */
 export function stepLowPass(
   record: Float64Array,
   at: number,
   channels: number,
   inputAt: number,
-  gains: LowPassGains,
+  gains: Float64Array,
+  gainsAt: number,
 ): void {
-  if (record[at]! < gains.tauS) {
-    average(record, at, channels, inputAt, gains);
+  if (record[at]! < gains[gainsAt + 1]!) {
+    average(record, at, channels, inputAt, gains[gainsAt]!);
     return;
   }
-  const { deviationFromDeviation, deviationFromSlope, slopeFromDeviation, slopeFromSlope } = gains;
+  const deviationFromDeviation = gains[gainsAt + 2]!;
+  const deviationFromSlope = gains[gainsAt + 3]!;
+  const slopeFromDeviation = gains[gainsAt + 4]!;
+  const slopeFromSlope = gains[gainsAt + 5]!;
   for (let i = 0; i < channels; i++) {
     const valueAt = at + 1 + i;
     const slopeAt = valueAt + channels;
@@ -76,15 +72,9 @@ export function stepLowPass(
   }
 }
 
-function average(
-  record: Float64Array,
-  at: number,
-  channels: number,
-  inputAt: number,
-  gains: LowPassGains,
-): void {
-  record[at]! += gains.stepS;
-  const share = gains.stepS / record[at]!;
+function average(record: Float64Array, at: number, channels: number, inputAt: number, stepS: number): void {
+  record[at]! += stepS;
+  const share = stepS / record[at]!;
   for (let i = 0; i < channels; i++) {
     const input = record[inputAt + i]!;
     record[at + 1 + i]! += share * (input - record[at + 1 + i]!);

@@ -1,13 +1,15 @@
 import { describe, expect, it } from "vitest";
-import { LowPassGains, lowPassSize, stepLowPass } from "../../bridge/numeric/low-pass.ts";
+import { lowPassGains, lowPassSize, stepLowPass } from "../../bridge/numeric/low-pass.ts";
 
 /** A filter of one channel, with its input slot behind it. */
 function filter(tauS: number) {
   const record = new Float64Array(lowPassSize(1) + 1);
   const inputAt = lowPassSize(1);
+  const gains = new Float64Array(6);
   return (input: number, stepS: number) => {
     record[inputAt] = input;
-    stepLowPass(record, 0, 1, inputAt, new LowPassGains(tauS, stepS));
+    lowPassGains(gains, 0, tauS, stepS);
+    stepLowPass(record, 0, 1, inputAt, gains, 0);
     return record[1]!;
   };
 }
@@ -56,11 +58,12 @@ describe("stepLowPass", () => {
     const at = 3;
     const record = new Float64Array(at + lowPassSize(2) + 2);
     const inputAt = at + lowPassSize(2);
-    const gains = new LowPassGains(0.1, 0.01);
+    const gains = new Float64Array(6);
+    lowPassGains(gains, 0, 0.1, 0.01);
     for (let i = 0; i < 200; i++) {
       record[inputAt] = 1;
       record[inputAt + 1] = -2;
-      stepLowPass(record, at, 2, inputAt, gains);
+      stepLowPass(record, at, 2, inputAt, gains, 0);
     }
     expect([...record.subarray(0, at)]).toEqual([0, 0, 0]);
     expect([record[at + 1], record[at + 2]]).toEqual([1, -2]);
