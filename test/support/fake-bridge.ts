@@ -1,0 +1,209 @@
+/**
+ * A bridge without a rig: the real server and messages, an invented travelling wave, and everything else as a test wants
+ * it. The midline is a function of hub time alone, so a test can compute what the page should show.
+ */
+import { createServer, type Server } from "node:http";
+import type { AddressInfo } from "node:net";
+import { join } from "node:path";
+import { packageRoot } from "../../bridge/paths.ts";
+import { every } from "../../bridge/serve/every.ts";
+import { DashboardFiles } from "../../bridge/serve/files.ts";
+import { StreamServer } from "../../bridge/serve/server.ts";
+import { createDisplayFrame, encodeFrame, frameBytes } from "../../bridge/wire/frame.ts";
+import type { BridgeMessage, DashboardMessage } from "../../bridge/wire/messages.ts";
+import { healthyScene, type Scene, tailbeatOf, type Wave, writeMidline } from "./scene.ts";
+
+const DASHBOARD = join(packageRoot, "dist", "dashboard");
+const POINTS = 41;
+const FRAMES_PER_S = 60;
+
+export class FakeBridge {
+  /** What dashboards sent. */
+  readonly received: DashboardMessage[] = [];
+  address = "";
+  #scene: Scene;
+  #server: StreamServer | null = null;
+  #port = 0;
+  #run = 0;
+  #frameNumber = 0;
+  #hubTimeS: number;
+  #timers: (() => void)[] = [];
+
+  private constructor(scene: Scene) {
+    this.#scene = scene;
+    this.#hubTimeS = scene.startS;
+  }
+
+  static async start(change: Partial<Scene> = {}): Promise<FakeBridge> {
+    const bridge = new FakeBridge({ ...healthyScene(), ...change });
+    await bridge.listen();
+    return bridge;
+  }
+
+  get scene(): Scene {
+    return this.#scene;
+  }
+
+  get hubTimeS(): number {
+    return this.#hubTimeS;
+  }
+
+  /** Starts serving, on the same port as before. */
+  async listen(): Promise<void> {
+    this.#server = new StreamServer({
+      host: "127.0.0.1",
+      port: this.#port,
+      dashboardFolder: DASHBOARD,
+      greeting: () => this.#greeting(),
+      onMessage: (message) => this.#take(message),
+    });
+    this.address = await this.#server.listen();
+    this.#port = Number(new URL(this.address).port);
+    this.#timers = [
+      every(1000 / FRAMES_PER_S, () => this.#sendFrame()),
+      every(500, () => this.#send(this.#status())),
+      every(1000, () => this.#send(this.#strip())),
+    ];
+  }
+
+  /** As when the program ends: connections break, the port is free. */
+  async stop(): Promise<void> {
+    for (const stopTimer of this.#timers.splice(0)) stopTimer();
+    await this.#server?.close();
+    this.#server = null;
+  }
+
+  /** Changes the scene and tells the viewers, as the bridge would. */
+  show(change: Partial<Scene>): void {
+    this.#scene = { ...this.#scene, ...change };
+    for (const message of [this.#status(), this.#flags(), this.#marks()]) this.#send(message);
+  }
+
+  /** As when a looped trial starts over: a new run, from hub time 0. */
+  startOver(): void {
+    this.#run++;
+    this.#hubTimeS = 0;
+    this.#scene = { ...this.#scene, startS: 0, marks: [], open: [], ended: [] };
+    for (const message of this.#greeting()) this.#send(message);
+  }
+
+  #send(message: BridgeMessage): void {
+    this.#server?.sendText(message);
+  }
+
+  #take(message: DashboardMessage): void {
+    this.received.push(message);
+    const mark = { timeS: this.#hubTimeS, text: message.text, from: "operator" } as const;
+    this.show({ marks: [mark, ...this.#scene.marks] });
+  }
+
+  #sendFrame(): void {
+    const scene = this.#scene;
+    if (scene.link !== "flowing") return;
+    this.#frameNumber++;
+    this.#hubTimeS += 1 / FRAMES_PER_S;
+    this.#server?.sendFrame(frameOf(scene, this.#hubTimeS, this.#frameNumber));
+  }
+
+  #greeting(): BridgeMessage[] {
+    const { rigName, bodyKind, lengthM, widthM, rateHz, sensors, source, heading } = this.#scene;
+    const welcome = {
+      type: "welcome",
+      softwareVersion: "0.1.0",
+      rigName,
+      bodyKind,
+      lengthM,
+      widthM,
+      rateHz,
+      sensors,
+      pointCount: POINTS,
+      source,
+      heading,
+      flowMPerS: 0.35,
+      runId: `invented-${this.#run}`,
+    } as const;
+    return [welcome, this.#status(), this.#flags(), this.#marks(), this.#strip()];
+  }
+
+  #status(): BridgeMessage {
+    const { link, linkDetail, recording, wave, lengthM, rateHz, lostShare } = this.#scene;
+    return {
+      type: "status",
+      hubTimeS: this.#hubTimeS,
+      link,
+      linkDetail,
+      recording,
+      sweepsPerS: link === "flowing" ? rateHz : 0,
+      lostShare,
+      behindMs: 1.4,
+      counters: { good: Math.round(this.#hubTimeS * rateHz), badChecksum: 3, discardedBytes: 41 },
+      tailbeat: tailbeatOf(wave, lengthM),
+    };
+  }
+
+  #flags(): BridgeMessage {
+    return { type: "flags", open: this.#scene.open, ended: this.#scene.ended };
+  }
+
+  #marks(): BridgeMessage {
+    return { type: "marks", marks: this.#scene.marks };
+  }
+
+  #strip(): BridgeMessage {
+    return stripOf(this.#scene.wave, this.#scene.lengthM, this.#hubTimeS);
+  }
+}
+
+/** Bytes of the frame at a hub time. */
+function frameOf(scene: Scene, timeS: number, frameNumber: number): Uint8Array {
+  const count = scene.sensors.length;
+  const frame = createDisplayFrame(POINTS, count);
+  const { frequencyHz } = scene.wave;
+  frame.frameNumber = frameNumber;
+  frame.sweepCount = Math.round(timeS * scene.rateHz);
+  frame.hubTimeS = timeS;
+  frame.hostTimeMs = Date.now();
+  frame.travelHeading = 0.4;
+  frame.tailbeatPhase = frequencyHz > 0 ? (timeS * frequencyHz) % 1 : Number.NaN;
+  writeMidline(scene.wave, scene.lengthM, timeS, frame.midline);
+  for (let i = 0; i < count; i++) {
+    const { gyro, accel, field, delivered, trust, conditions } = scene.reading(i, timeS);
+    frame.sensorNumbers.set([gyro, accel, field, delivered], 4 * i);
+    frame.sensorStates.set([trust, conditions], 2 * i);
+  }
+  const bytes = new Uint8Array(frameBytes(POINTS, count));
+  encodeFrame(frame, new DataView(bytes.buffer));
+  return bytes;
+}
+
+/** The last ten minutes: bouts of beating, rests, and twenty seconds that were not received. */
+function stripOf({ tailShare }: Wave, lengthM: number, hubTimeS: number): BridgeMessage {
+  const startS = Math.max(0, Math.floor(hubTimeS) - 599);
+  const lowM: (number | null)[] = [];
+  const highM: (number | null)[] = [];
+  for (let second = startS; second <= hubTimeS; second++) {
+    const missing = second % 400 >= 250 && second % 400 < 270;
+    const vigour = second % 90 < 70 ? 1 + 0.15 * Math.sin(second / 7) : 0.1;
+    const tail = Math.round(tailShare * lengthM * vigour * 1e4) / 1e4;
+    lowM.push(missing ? null : -tail);
+    highM.push(missing ? null : tail);
+  }
+  return { type: "strip", startS, columnS: 1, lowM, highM };
+}
+
+/** A server that shows the page and turns every viewer down, as a bridge of another version does. */
+export async function startRefusingBridge(): Promise<{ address: string; stop(): Promise<void> }> {
+  const files = new DashboardFiles(DASHBOARD);
+  const server: Server = createServer((request, response) => files.answer(request, response));
+  server.on("upgrade", (_request, socket) => {
+    socket.end("HTTP/1.1 400 Refused\r\ncontent-length: 0\r\nconnection: close\r\n\r\n");
+  });
+  await new Promise<void>((resolve) => server.listen(0, "127.0.0.1", resolve));
+  return {
+    address: `http://127.0.0.1:${(server.address() as AddressInfo).port}/`,
+    async stop() {
+      server.closeAllConnections();
+      await new Promise((resolve) => server.close(resolve));
+    },
+  };
+}
