@@ -36,6 +36,11 @@ function compareWithReference(r: Float64Array, gains: Float64Array, parameters: 
 }
 
 function considerNewReference(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
+  if (r[Slot.DISTURBED] === 0) {
+    // The candidate would be the reference's own field.
+    r[Slot.CANDIDATE_TIME] = 0;
+    return;
+  }
   if (r[Slot.FIELD_FLAGGED] === 1 || !isCurrent(r, Slot.CANDIDATE, parameters)) {
     r[Slot.CANDIDATE_TIME] = 0;
     copyField(r, Slot.CANDIDATE, CURRENT);
@@ -44,7 +49,7 @@ function considerNewReference(r: Float64Array, gains: Float64Array, parameters: 
   if (isMoving(r, parameters)) r[Slot.CANDIDATE_TIME]! += r[Slot.FIELD_STEP]!;
   follow(r, Slot.CANDIDATE, gains);
   const neededS = r[Slot.REFERENCE_KNOWN] === 1 ? parameters.magNewS : parameters.magFirstS;
-  if (r[Slot.DISTURBED] === 0 || r[Slot.CANDIDATE_TIME]! < neededS) return;
+  if (r[Slot.CANDIDATE_TIME]! < neededS) return;
   r[Slot.REFERENCE_KNOWN] = 1;
   copyField(r, Slot.REFERENCE, Slot.CANDIDATE);
   r[Slot.DISTURBED] = 0;

@@ -35,12 +35,15 @@ export enum Slot {
   /** Hub time until which a clipped gyroscope reading is held against the orientation. */
   CLIPPED_UNTIL = FIELD_SEEN + 1,
 
-  /** The newest four rates, bias off, oldest first, each followed by its hub time; how many of them are known. */
-  PAST_RATES = CLIPPED_UNTIL + 1,
-  TRUE_RATE = PAST_RATES + 12, // the newest of them
-  RATES_KNOWN = TRUE_RATE + 4,
+  /** The newest rate, bias off, and the one before it, each followed by its hub time; how many of the two are known. */
+  TRUE_RATE = CLIPPED_UNTIL + 1,
+  RATE_BEFORE = TRUE_RATE + 4,
+  RATES_KNOWN = RATE_BEFORE + 4,
+  /** The same of the two readings before the newest gap and the two after it; how many of those before are known. */
+  GAP_RATES = RATES_KNOWN + 1,
+  GAP_KNOWN = GAP_RATES + 16,
   /** The newest gap waits to be filled in again with the second reading after it. */
-  GAP_OPEN = RATES_KNOWN + 1,
+  GAP_OPEN = GAP_KNOWN + 1,
   /** Body axes -> strapdown frame, now and before the newest gap. */
   STRAPDOWN = GAP_OPEN + 1,
   BEFORE_GAP = STRAPDOWN + 4,
@@ -102,7 +105,11 @@ export enum Slot {
   CANDIDATE = UNDISTURBED_TIME + 1,
   CANDIDATE_TIME = CANDIDATE + 2,
 
-  SIZE = CANDIDATE_TIME + 1,
+  /** Scratch of a step: a rotation vector, a rotation. */
+  TURN = CANDIDATE_TIME + 1,
+  ROTATION = TURN + 3,
+
+  SIZE = ROTATION + 4,
 }
 
 /** What outlives the loss of the orientation: it is the sensor's and the site's own. */

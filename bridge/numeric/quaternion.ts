@@ -53,10 +53,11 @@ export function normalise(out: Slots, q: Slots, outAt = 0, qAt = 0): void {
     setIdentity(out, outAt);
     return;
   }
-  out[outAt] = w / norm;
-  out[outAt + 1] = x / norm;
-  out[outAt + 2] = y / norm;
-  out[outAt + 3] = z / norm;
+  const scale = 1 / norm;
+  out[outAt] = scale * w;
+  out[outAt + 1] = scale * x;
+  out[outAt + 2] = scale * y;
+  out[outAt + 3] = scale * z;
 }
 
 /** out = the identity rotation. */
@@ -127,20 +128,48 @@ export function fromRotationVector(out: Slots, vector: Slots, outAt = 0, vectorA
   const y = vector[vectorAt + 1]!;
   const z = vector[vectorAt + 2]!;
   const s = 0.25 * (x * x + y * y + z * z); // half angle squared
-  let w: number;
-  let factor: number; // sin(half angle) / angle
-  if (s < SERIES_BELOW) {
-    w = 1 - (s / 2) * (1 - (s / 12) * (1 - (s / 30) * (1 - (s / 56) * (1 - s / 90))));
-    factor = 0.5 * (1 - (s / 6) * (1 - (s / 20) * (1 - (s / 42) * (1 - s / 72))));
-  } else {
-    const half = Math.sqrt(s);
-    w = Math.cos(half);
-    factor = Math.sin(half) / (2 * half);
-  }
-  out[outAt] = w;
+  const factor = halfSineByAngle(s);
+  out[outAt] = halfCosine(s);
   out[outAt + 1] = factor * x;
   out[outAt + 2] = factor * y;
   out[outAt + 3] = factor * z;
+}
+
+/**
+ * out = q exp(vector): the unit quaternion q turned on by a rotation vector in its own inner frame (3 slots, rad), and kept
+ * at unit length as keepUnit does. One pass for the inner loop of strapdown integration.
+ */
+export function turnBy(out: Slots, q: Slots, vector: Slots, outAt = 0, qAt = 0, vectorAt = 0): void {
+  const vx = vector[vectorAt]!;
+  const vy = vector[vectorAt + 1]!;
+  const vz = vector[vectorAt + 2]!;
+  const s = 0.25 * (vx * vx + vy * vy + vz * vz); // half angle squared
+  const factor = halfSineByAngle(s);
+  const bw = halfCosine(s);
+  const bx = factor * vx;
+  const by = factor * vy;
+  const bz = factor * vz;
+  const aw = q[qAt]!;
+  const ax = q[qAt + 1]!;
+  const ay = q[qAt + 2]!;
+  const az = q[qAt + 3]!;
+  const scale = 1.5 - 0.5 * (aw * aw + ax * ax + ay * ay + az * az);
+  out[outAt] = scale * (aw * bw - ax * bx - ay * by - az * bz);
+  out[outAt + 1] = scale * (aw * bx + ax * bw + ay * bz - az * by);
+  out[outAt + 2] = scale * (aw * by - ax * bz + ay * bw + az * bx);
+  out[outAt + 3] = scale * (aw * bz + ax * by - ay * bx + az * bw);
+}
+
+/** Cosine of a half angle, from its square. */
+function halfCosine(s: number): number {
+  if (s >= SERIES_BELOW) return Math.cos(Math.sqrt(s));
+  return 1 - s * (1 / 2 - s * (1 / 24 - s * (1 / 720 - s * (1 / 40320 - s * (1 / 3628800)))));
+}
+
+/** Sine of a half angle divided by the whole angle, from the half angle's square. */
+function halfSineByAngle(s: number): number {
+  if (s >= SERIES_BELOW) return Math.sin(Math.sqrt(s)) / (2 * Math.sqrt(s));
+  return 1 / 2 - s * (1 / 12 - s * (1 / 240 - s * (1 / 10080 - s * (1 / 725760))));
 }
 
 /**

@@ -1,0 +1,79 @@
+/**
+ * Lost samples, bridged. The missing rates are filled in on the polynomial through the two readings before the gap and
+ * those after it, and integrated like any other: first through one reading after the gap, so that there is an orientation
+ * at once, and when the next reading has come, again through both. An even rate is thereby bridged exactly, and so is an
+ * even change of rate about one axis.
+ */
+import { turnBy } from "../numeric/quaternion.ts";
+import { Slot } from "./record.ts";
+
+/** A rate and its hub time. */
+const STRIDE = 4;
+/** Of the four rates around a gap, in their order: the last before it and the two after it. */
+const LAST_BEFORE = 1;
+const FIRST_AFTER = 2;
+const SECOND_AFTER = 3;
+
+const weights = new Float64Array(4);
+
+/** Writes the newest angular rate, bias off, and its hub time to `at`. */
+export function storeRate(r: Float64Array, at: number): void {
+  r[at] = r[Slot.RATE]! - r[Slot.BIAS]!;
+  r[at + 1] = r[Slot.RATE + 1]! - r[Slot.BIAS + 1]!;
+  r[at + 2] = r[Slot.RATE + 2]! - r[Slot.BIAS + 2]!;
+  r[at + 3] = r[Slot.RATE_TIME]!;
+}
+
+/** The newest reading ends a gap: integrates across it, from the reading before. Call before the rate is taken. */
+export function bridgeGap(r: Float64Array): void {
+  copyFour(r, Slot.BEFORE_GAP, Slot.STRAPDOWN);
+  copyFour(r, Slot.GAP_RATES, Slot.RATE_BEFORE);
+  copyFour(r, Slot.GAP_RATES + STRIDE * LAST_BEFORE, Slot.TRUE_RATE);
+  storeRate(r, Slot.GAP_RATES + STRIDE * FIRST_AFTER);
+  r[Slot.GAP_KNOWN] = r[Slot.RATES_KNOWN]!;
+  r[Slot.GAP_OPEN] = 1;
+  fill(r, FIRST_AFTER);
+}
+
+/** The newest reading is the second one after a gap: integrates across the gap again. */
+export function reviseGap(r: Float64Array): void {
+  copyFour(r, Slot.STRAPDOWN, Slot.BEFORE_GAP);
+  storeRate(r, Slot.GAP_RATES + STRIDE * SECOND_AFTER);
+  r[Slot.GAP_OPEN] = 0;
+  fill(r, SECOND_AFTER);
+}
+
+/** Turns the strapdown quaternion across the gap, with the rates up to and including `last`. */
+function fill(r: Float64Array, last: number): void {
+  const startS = r[Slot.GAP_RATES + STRIDE * LAST_BEFORE + 3]!;
+  const gapS = r[Slot.GAP_RATES + STRIDE * FIRST_AFTER + 3]! - startS;
+  const first = r[Slot.GAP_KNOWN] === 2 ? 0 : LAST_BEFORE;
+  const steps = Math.max(1, Math.round(gapS / r[Slot.INTERVAL]!));
+  for (let step = 1; step <= steps; step++) {
+    weigh(r, first, last, startS + (gapS * step) / steps);
+    for (let i = 0; i < 3; i++) {
+      let rate = 0;
+      for (let node = first; node <= last; node++)
+        rate += weights[node]! * r[Slot.GAP_RATES + STRIDE * node + i]!;
+      r[Slot.TURN + i] = (gapS / steps) * rate;
+    }
+    turnBy(r, r, r, Slot.STRAPDOWN, Slot.STRAPDOWN, Slot.TURN);
+  }
+}
+
+/** weights = those of the rates from `first` to `last` at a time, on the polynomial through them (Lagrange's form). */
+function weigh(r: Float64Array, first: number, last: number, timeS: number): void {
+  const times = Slot.GAP_RATES + 3;
+  for (let node = first; node <= last; node++) {
+    weights[node] = 1;
+    for (let other = first; other <= last; other++) {
+      if (other === node) continue;
+      const otherS = r[times + STRIDE * other]!;
+      weights[node]! *= (timeS - otherS) / (r[times + STRIDE * node]! - otherS);
+    }
+  }
+}
+
+function copyFour(r: Float64Array, to: number, from: number): void {
+  for (let i = 0; i < 4; i++) r[to + i] = r[from + i]!;
+}
