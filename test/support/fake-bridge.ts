@@ -2,9 +2,10 @@
  * A bridge without a rig: the real server and messages, an invented travelling wave, and everything else as a test wants
  * it. The midline is a function of hub time alone, so a test can compute what the page should show.
  */
-import { createServer, type Server } from "node:http";
+import { createServer } from "node:http";
 import type { AddressInfo } from "node:net";
 import { join } from "node:path";
+import type { Duplex } from "node:stream";
 import { packageRoot } from "../../bridge/paths.ts";
 import { every } from "../../bridge/serve/every.ts";
 import { DashboardFiles } from "../../bridge/serve/files.ts";
@@ -28,14 +29,16 @@ export class FakeBridge {
   #frameNumber = 0;
   #hubTimeS: number;
   #timers: (() => void)[] = [];
+  readonly #token: string | undefined;
 
-  private constructor(scene: Scene) {
+  private constructor(scene: Scene, token: string | undefined) {
     this.#scene = scene;
+    this.#token = token;
     this.#hubTimeS = scene.startS;
   }
 
-  static async start(change: Partial<Scene> = {}): Promise<FakeBridge> {
-    const bridge = new FakeBridge({ ...healthyScene(), ...change });
+  static async start(change: Partial<Scene> = {}, options: { token?: string } = {}): Promise<FakeBridge> {
+    const bridge = new FakeBridge({ ...healthyScene(), ...change }, options.token);
     await bridge.listen();
     return bridge;
   }
@@ -53,6 +56,7 @@ export class FakeBridge {
     this.#server = new StreamServer({
       host: "127.0.0.1",
       port: this.#port,
+      token: this.#token,
       dashboardFolder: DASHBOARD,
       greeting: () => this.#greeting(),
       onMessage: (message) => this.#take(message),
@@ -136,6 +140,7 @@ export class FakeBridge {
       sweepsPerS: link === "flowing" ? rateHz : 0,
       lostShare,
       behindMs: 1.4,
+      driftPpm: null,
       counters: { good: Math.round(this.#hubTimeS * rateHz), badChecksum: 3, discardedBytes: 41 },
       tailbeat: tailbeatOf(wave, lengthM),
     };
@@ -191,17 +196,26 @@ function stripOf({ tailShare }: Wave, lengthM: number, hubTimeS: number): Bridge
   return { type: "strip", startS, columnS: 1, lowM, highM };
 }
 
-/** A server that shows the page and turns every viewer down, as a bridge of another version does. */
-export async function startRefusingBridge(): Promise<{ address: string; stop(): Promise<void> }> {
+/**
+ * A server that shows the page and has no stream for it: it refuses every viewer, as a bridge of another version does, or
+ * leaves the handshake without an answer.
+ */
+export async function startPageWithoutStream(
+  manner: "refuses" | "silent",
+): Promise<{ address: string; stop(): Promise<void> }> {
   const files = new DashboardFiles(DASHBOARD);
-  const server: Server = createServer((request, response) => files.answer(request, response));
+  const server = createServer((request, response) => files.answer(request, response));
+  const waiting: Duplex[] = [];
   server.on("upgrade", (_request, socket) => {
+    waiting.push(socket);
+    if (manner === "silent") return;
     socket.end("HTTP/1.1 400 Refused\r\ncontent-length: 0\r\nconnection: close\r\n\r\n");
   });
   await new Promise<void>((resolve) => server.listen(0, "127.0.0.1", resolve));
   return {
     address: `http://127.0.0.1:${(server.address() as AddressInfo).port}/`,
     async stop() {
+      for (const socket of waiting) socket.destroy();
       server.closeAllConnections();
       await new Promise((resolve) => server.close(resolve));
     },
