@@ -9,6 +9,7 @@
 import { Midline } from "./body/midline.ts";
 import { TravelAxis } from "./body/travel-axis.ts";
 import { Calibration } from "./calibration/calibration.ts";
+import { DriftMeter } from "./clock/drift.ts";
 import { Admission, HubClock } from "./clock/hub-clock.ts";
 import { SilenceWatch } from "./clock/silence.ts";
 import { ChainFusion } from "./fusion/chain-fusion.ts";
@@ -52,11 +53,13 @@ export interface PipelineOptions {
 export class Pipeline {
   readonly rig: Rig;
   readonly clock: HubClock;
+  /** For the display only. */
+  readonly drift = new DriftMeter();
   readonly flags: FlagBook;
   readonly health: Health;
   readonly fusion: ChainFusion;
   readonly midline: Midline;
-  readonly travel = new TravelAxis();
+  readonly travel: TravelAxis;
   readonly tailbeat: TailbeatMeter;
   readonly ring: TrialRing | null;
   /** Sweeps that went through all stages. */
@@ -111,6 +114,7 @@ export class Pipeline {
       stations: sensors.map((sensor) => sensor.station),
       pointCount: POINT_COUNT,
     });
+    this.travel = new TravelAxis(rateHz);
     this.tailbeat = new TailbeatMeter({ lengthM: body.lengthMm / 1000 });
     this.ring = ring
       ? new TrialRing({ sensorCount, pointCount: POINT_COUNT, rateHz, seconds: RING_SECONDS })
@@ -159,13 +163,14 @@ export class Pipeline {
     const admission = this.clock.admit(sweep);
     if (admission === Admission.DUPLICATE || admission === Admission.LATE) return;
     this.#silence.bytesArrived(sweep.hostTimeMs);
+    this.drift.observe(sweep.timeS, sweep.hostTimeMs);
     this.#reportBadPackets(sweep.timeS);
     if (admission === Admission.RESTARTED) this.health.hubRestarted(sweep.timeS);
     this.#calibration.apply(sweep);
     this.health.observe(sweep, this.fusion.orientations);
     this.fusion.step(sweep);
     this.midline.step(this.fusion.orientations, this.fusion.trust);
-    this.travel.step(sweep.stepS, this.midline.positions);
+    this.travel.step(sweep.stepS, this.midline.positions, this.tailbeat.periodS);
     const tail = this.travel.lateral(this.midline.positions, POINT_COUNT - 1);
     if (this.tailbeat.step(sweep.timeS, tail)) this.#observer.beat?.(this.tailbeat.lastBeat!);
     this.ring?.push(sweep, this.fusion.orientations, this.fusion.trust, this.midline.positions);

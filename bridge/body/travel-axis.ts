@@ -2,26 +2,38 @@
  * The travel axis: the horizontal direction the body points on average, so that a view from above has the nose ahead
  * and lateral excursions are measured across it.
  *
- * The chord from tail tip to nose swings with every tailbeat; its slow mean does not. A plain running mean over the
- * first `timeConstantS`, a first-order low pass from then on: the axis is right from the first beat, and an animal that
- * turns is followed with a lag of about the time constant. A beat of frequency f leaves 1 / (2 pi f timeConstantS) of
- * its swing: 4 % at 1 Hz with 4 s.
+ * The chord from tail tip to nose swings with every tailbeat; its mean over whole beats does not. While the body beats
+ * the mean is taken over the last whole beats (at least LEAST_WINDOW_S of them), otherwise over RESTING_WINDOW_S, and at
+ * first over what there is. So the swing cancels out, and a body that turns is followed with a lag of half the window.
  *
  * Chords are averaged as vectors, not as angles, so there is no jump at +-180 deg, and a body that hangs steeply (a
  * short horizontal chord) hardly moves the axis.
  */
+
+/** Short enough to follow a turn, long enough that a rattle taken for a beat does not swing the view, s. */
+const LEAST_WINDOW_S = 0.75;
+const RESTING_WINDOW_S = 2;
+/** Beats slower than this are not waited for, s. */
+const LONGEST_WINDOW_S = 5;
+
 export class TravelAxis {
-  readonly #timeConstantS: number;
-  #elapsedS = 0;
-  #started = false;
-  #meanX = 0;
-  #meanY = 0;
+  // Ring of the last LONGEST_WINDOW_S: time and the chord's integral since the start, one entry a sweep.
+  readonly #timeS: Float64Array;
+  readonly #sumX: Float64Array;
+  readonly #sumY: Float64Array;
+  /** Sweeps taken; the newest entry is #count - 1. */
+  #count = 0;
+  /** Last entry at or before the window's start: it moves either way as the window does. */
+  #start = 0;
   #cos = 1;
   #sin = 0;
 
-  /** @param timeConstantS of the mean; longer than the slowest tailbeat, shorter than a turn worth following */
-  constructor(timeConstantS = 4) {
-    this.#timeConstantS = timeConstantS;
+  /** @param rateHz sweeps a second, nominal: how many the longest window may hold */
+  constructor(rateHz: number) {
+    const entries = Math.ceil(rateHz * LONGEST_WINDOW_S * 1.5) + 2;
+    this.#timeS = new Float64Array(entries);
+    this.#sumX = new Float64Array(entries);
+    this.#sumY = new Float64Array(entries);
   }
 
   /** rad from east, anticlockwise; 0 (east) until the first sweep. */
@@ -33,21 +45,46 @@ export class TravelAxis {
    * Takes one sweep's midline into the mean.
    * @param stepS time since the sweep before, s
    * @param positions 3 per point, earth axes, m, nose first
+   * @param periodS of the tailbeat; null while the body does not beat
    */
-  step(stepS: number, positions: Float64Array): void {
+  step(stepS: number, positions: Float64Array, periodS: number | null): void {
     const tail = positions.length - 3;
-    const chordX = positions[0] - positions[tail];
-    const chordY = positions[1] - positions[tail + 1];
-    this.#elapsedS += stepS;
-    const memoryS = Math.min(this.#elapsedS, this.#timeConstantS);
-    const weight = this.#started ? 1 - Math.exp(-stepS / memoryS) : 1;
-    this.#started = true;
-    this.#meanX += weight * (chordX - this.#meanX);
-    this.#meanY += weight * (chordY - this.#meanY);
-    const length = Math.hypot(this.#meanX, this.#meanY);
+    const entries = this.#timeS.length;
+    const newest = this.#count % entries;
+    const before = (this.#count + entries - 1) % entries;
+    const first = this.#count === 0;
+    this.#timeS[newest] = first ? 0 : this.#timeS[before] + stepS;
+    this.#sumX[newest] = (first ? 0 : this.#sumX[before]) + stepS * (positions[0] - positions[tail]);
+    this.#sumY[newest] = (first ? 0 : this.#sumY[before]) + stepS * (positions[1] - positions[tail + 1]);
+    this.#count++;
+    this.#pointAlongMean(newest, windowFor(periodS));
+  }
+
+  #pointAlongMean(newest: number, windowS: number): void {
+    const entries = this.#timeS.length;
+    const startS = this.#timeS[newest] - windowS;
+    const oldest = Math.max(0, this.#count - entries);
+    let start = Math.max(this.#start, oldest);
+    while (start > oldest && this.#timeS[start % entries] > startS) start--;
+    while (start + 1 < this.#count && this.#timeS[(start + 1) % entries] <= startS) start++;
+    this.#start = start;
+    let sumX = this.#sumX[newest];
+    let sumY = this.#sumY[newest];
+    const at = start % entries;
+    if (this.#timeS[at] <= startS && start + 1 < this.#count) {
+      // The integral at the window's start, between two sweeps.
+      const next = (start + 1) % entries;
+      const share = (startS - this.#timeS[at]) / (this.#timeS[next] - this.#timeS[at]);
+      sumX -= this.#sumX[at] + share * (this.#sumX[next] - this.#sumX[at]);
+      sumY -= this.#sumY[at] + share * (this.#sumY[next] - this.#sumY[at]);
+    } else if (oldest > 0) {
+      sumX -= this.#sumX[at];
+      sumY -= this.#sumY[at];
+    }
+    const length = Math.hypot(sumX, sumY);
     if (length === 0) return; // no horizontal direction at all: the last one stays
-    this.#cos = this.#meanX / length;
-    this.#sin = this.#meanY / length;
+    this.#cos = sumX / length;
+    this.#sin = sumY / length;
   }
 
   /**
@@ -69,4 +106,10 @@ export class TravelAxis {
   lateral(positions: Float64Array, point: number): number {
     return this.#cos * positions[3 * point + 1] - this.#sin * positions[3 * point];
   }
+}
+
+/** The least number of whole beats that lasts long enough, s. */
+function windowFor(periodS: number | null): number {
+  if (periodS === null) return RESTING_WINDOW_S;
+  return Math.min(Math.ceil(LEAST_WINDOW_S / periodS) * periodS, LONGEST_WINDOW_S);
 }

@@ -214,7 +214,7 @@ export class Monitor implements ByteSink {
 
   #status(): StatusMessage {
     const { recorder, source } = this.#options;
-    const { health, tailbeat, counters, timeS, hostTimeMs, sweepCount } = this.#pipeline;
+    const { health, tailbeat, drift, counters, timeS, hostTimeMs, sweepCount } = this.#pipeline;
     const { good, badChecksum, discardedBytes } = counters;
     return {
       type: "status",
@@ -224,6 +224,7 @@ export class Monitor implements ByteSink {
       sweepsPerS: health.sweepsPerS,
       lostShare: health.lostShare60,
       behindMs: source.kind === "trial" || sweepCount === 0 ? null : Math.max(0, Date.now() - hostTimeMs),
+      driftPpm: drift.ppm,
       counters: { good, badChecksum, discardedBytes },
       tailbeat: {
         frequencyHz: tailbeat.frequencyHz,

@@ -70,6 +70,11 @@ export class TailbeatMeter {
     this.#leastThresholdM = LEAST_THRESHOLD_SHARE * lengthM;
   }
 
+  /** Of the last beat, s; null while the body does not beat. */
+  get periodS(): number | null {
+    return this.#beating ? 1 / this.#lastBeat.frequencyHz : null;
+  }
+
   /** Of the last beat; null while the body does not beat. */
   get frequencyHz(): number | null {
     return this.#beating ? this.#lastBeat.frequencyHz : null;

@@ -58,6 +58,8 @@ export interface StatusMessage {
   readonly lostShare: number;
   /** Processing latency of the newest sweep: host now minus its arrival, ms; null when replaying. */
   readonly behindMs: number | null;
+  /** Hub clock against host clock, parts per million, positive when the hub is fast; null when not yet known. */
+  readonly driftPpm: number | null;
   readonly counters: {
     readonly good: number;
     readonly badChecksum: number;

@@ -19,6 +19,8 @@ const ROOMY_SHARE = 0.4;
 const ROOMY_MS = 4000;
 /** Least distance between two lines of the grid, CSS pixels. */
 const LINE_SPACING = 26;
+/** The lane's name and words beside it reach so far down: no number there. */
+const LABEL_HEIGHT = 60;
 const SENSOR_RADIUS = 5.5;
 
 export class AboveLane implements Lane {
@@ -105,7 +107,7 @@ export class AboveLane implements Lane {
       grid.moveTo(nose, y).lineTo(tail, y);
       const mm = Math.round(i * stepM * 1000);
       const text = mm === 0 ? "0 mm" : mm > 0 ? `+${mm}` : `−${-mm}`;
-      if (y - top > 34 || i < lines) ticks.push({ text, x: nose - 10, y: y - top, align: "left" as const });
+      if (y - top > LABEL_HEIGHT) ticks.push({ text, x: nose - 10, y: y - top, align: "left" as const });
     }
     grid.stroke({ width: 1, color: this.#palette!.faint });
     this.#ticks.show(height > 0 ? ticks : []);

@@ -21,7 +21,7 @@ export function linkWord({ connection, status }: ViewState): LinkWord {
 }
 
 export function drawHeader(view: ViewState): void {
-  const { welcome, status } = view;
+  const { welcome } = view;
   setText(byId("rig-name"), welcome?.rigName ?? "Bendwatch");
   byId("rig-name").title = welcome?.rigName ?? "";
   setText(byId("source"), welcome?.source.label ?? "");
@@ -30,8 +30,23 @@ export function drawHeader(view: ViewState): void {
   const link = byId("link-state");
   link.dataset.state = word;
   setText(link, linkSentence(view, word));
-  link.title = status?.linkDetail ?? "";
+  link.title = linkDetails(view);
   drawRecording(view);
+}
+
+/** For who wants to know more: shown when the pointer rests on the sentence. */
+function linkDetails({ status }: ViewState): string {
+  if (status === null) return "";
+  const { linkDetail, counters, driftPpm } = status;
+  return [
+    linkDetail,
+    `${counters.good} packets good, ${counters.badChecksum} with a wrong checksum, ${counters.discardedBytes} bytes discarded.`,
+    driftPpm === null
+      ? ""
+      : `The hub's clock runs ${Math.abs(driftPpm).toFixed(0)} ppm ${driftPpm < 0 ? "slow" : "fast"}.`,
+  ]
+    .filter((line) => line !== "")
+    .join("\n");
 }
 
 function drawRecording({ welcome, status, connection }: ViewState): void {

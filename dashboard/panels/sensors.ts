@@ -115,7 +115,8 @@ export class SensorsPanel {
     else cell.glyph.dataset.severity = severity;
     const missing = Number.isNaN(value);
     cell.bar.style.transform = `scaleX(${missing ? 0 : Math.min(1, Math.max(0.02, value / row.full)).toFixed(2)})`;
-    setText(cell.number, missing ? "–" : row.say(value));
+    const say = this.#section.dataset.density === "full" ? row.say : percent;
+    setText(cell.number, missing ? "–" : say(value));
   }
 
   #describe({ frame, welcome }: ViewState, sensor: number, trust: string): void {
