@@ -49,26 +49,21 @@ export function correctHeading(r: Float64Array, gains: Float64Array, parameters:
   const sine = 2 * c * s;
   const east = cosine * x - sine * y;
   const north = sine * x + cosine * y;
-  // A turn by this half angle, as its tangent; then back to unit length.
-  const tangent = tangentOf(0.5 * gain * angleOf(east, north));
+  // From north to the field, positive to the east: near north by its series, whose next term is below 1e-13 rad.
+  let angle: number;
+  if (Math.abs(east) < 0.1 * north) {
+    const t = east / north;
+    const q = t * t;
+    angle = t * (1 - q * (1 / 3 - q * (1 / 5 - q * (1 / 7 - q * (1 / 9 - q * (1 / 11))))));
+  } else {
+    angle = Math.atan2(east, north);
+  }
+  // A turn by this half angle, as its tangent (the next term of a small one's series is below 1e-15); back to unit length.
+  const half = 0.5 * gain * angle;
+  const tangent = Math.abs(half) < 1e-3 ? half * (1 + (half * half) / 3) : Math.tan(half);
   const scale = 1 / Math.sqrt((1 + tangent * tangent) * (c * c + s * s));
   r[Slot.HEADING] = (c - s * tangent) * scale;
   r[Slot.HEADING + 1] = (s + c * tangent) * scale;
-}
-
-/** Angle from north to a direction, rad, positive to the east. Near north by its series, whose next term is below 1e-13. */
-function angleOf(east: number, north: number): number {
-  if (!(Math.abs(east) < 0.1 * north)) return Math.atan2(east, north);
-  const t = east / north;
-  const q = t * t;
-  return t * (1 - q * (1 / 3 - q * (1 / 5 - q * (1 / 7 - q * (1 / 9 - q * (1 / 11))))));
-}
-
-/** Tangent; of small angles by its series, whose next term is below 1e-15. */
-function tangentOf(angle: number): number {
-  const q = angle * angle;
-  if (q > 1e-6) return Math.tan(angle);
-  return angle * (1 + q * (1 / 3 + (q * 2) / 15));
 }
 
 /** out (4 slots) = heading · level: body axes -> earth. */

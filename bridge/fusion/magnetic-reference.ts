@@ -10,14 +10,21 @@ import { Slot } from "./record.ts";
 
 const CURRENT = Slot.FIELD_LOW_PASS + 1;
 
-/** Judges the newest field (in the level frame, not zero) against the reference, and lets the reference follow. */
+/**
+ * Judges the newest field (in the level frame, not zero) against the reference, and lets the reference follow. The dip is
+ * worked out to 1e-5 rad, far within its limit: arc tangent by M. Abramowitz & I. A. Stegun, Handbook of Mathematical
+ * Functions, 4.4.47 (from memory; a test holds the bound).
+ */
 export function watchField(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
-  const east = r[Slot.LEVEL_FIELD]!;
-  const north = r[Slot.LEVEL_FIELD + 1]!;
-  const up = r[Slot.LEVEL_FIELD + 2]!;
-  const norm = Math.sqrt(east * east + north * north + up * up);
-  r[Slot.NORM_AND_DIP] = norm;
-  r[Slot.NORM_AND_DIP + 1] = -Math.asin(up / norm);
+  const down = -r[Slot.LEVEL_FIELD + 2]!;
+  const square = r[Slot.LEVEL_FIELD]! ** 2 + r[Slot.LEVEL_FIELD + 1]! ** 2;
+  const level = Math.sqrt(square);
+  const steep = Math.abs(down) > level;
+  const t = steep ? level / down : down / level;
+  const q = t * t;
+  const angle = t * (0.999866 + q * (-0.3302995 + q * (0.180141 + q * (-0.085133 + q * 0.0208351))));
+  r[Slot.NORM_AND_DIP] = Math.sqrt(square + down * down);
+  r[Slot.NORM_AND_DIP + 1] = steep ? Math.sign(down) * 0.5 * Math.PI - angle : angle;
   stepLowPass(r, Slot.FIELD_LOW_PASS, 2, Slot.NORM_AND_DIP, gains, Gain.FIELD);
   compareWithReference(r, gains, parameters);
   considerNewReference(r, gains, parameters);

@@ -26,17 +26,18 @@ export function watchRest(r: Float64Array, gains: Float64Array, parameters: Fusi
 function isQuiet(r: Float64Array, parameters: FusionParameters): boolean {
   const { biasLimit, restRateLimit, restAccelLimit } = parameters;
   return (
-    squaredDistance(r, Slot.RATE, RATE) < restRateLimit * restRateLimit &&
-    squaredDistance(r, Slot.FORCE, FORCE) < restAccelLimit * restAccelLimit &&
+    areNear(r, Slot.RATE, RATE, restRateLimit) &&
+    areNear(r, Slot.FORCE, FORCE, restAccelLimit) &&
     Math.abs(r[RATE]!) <= biasLimit &&
     Math.abs(r[RATE + 1]!) <= biasLimit &&
     Math.abs(r[RATE + 2]!) <= biasLimit
   );
 }
 
-function squaredDistance(r: Float64Array, a: number, b: number): number {
+/** Are two vectors of the record less than `limit` apart? */
+function areNear(r: Float64Array, a: number, b: number, limit: number): boolean {
   const x = r[a]! - r[b]!;
   const y = r[a + 1]! - r[b + 1]!;
   const z = r[a + 2]! - r[b + 2]!;
-  return x * x + y * y + z * z;
+  return x * x + y * y + z * z < limit * limit;
 }

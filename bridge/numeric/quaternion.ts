@@ -18,6 +18,8 @@ export interface Slots {
  */
 const SERIES_BELOW = 0.01;
 
+const IDENTITY = Float64Array.of(1, 0, 0, 0);
+
 /** out = a b: first b, then a, as rotations of a vector. */
 export function multiply(out: Slots, a: Slots, b: Slots, outAt = 0, aAt = 0, bAt = 0): void {
   const aw = a[aAt]!;
@@ -124,28 +126,28 @@ export function keepUnit(out: Slots, q: Slots, outAt = 0, qAt = 0): void {
  * one uses the series of sine and cosine, so nothing is divided by a length near zero.
  */
 export function fromRotationVector(out: Slots, vector: Slots, outAt = 0, vectorAt = 0): void {
-  const x = vector[vectorAt]!;
-  const y = vector[vectorAt + 1]!;
-  const z = vector[vectorAt + 2]!;
-  const s = 0.25 * (x * x + y * y + z * z); // half angle squared
-  const factor = halfSineByAngle(s);
-  out[outAt] = halfCosine(s);
-  out[outAt + 1] = factor * x;
-  out[outAt + 2] = factor * y;
-  out[outAt + 3] = factor * z;
+  turnBy(out, IDENTITY, vector, outAt, 0, vectorAt);
 }
 
 /**
  * out = q exp(vector): the unit quaternion q turned on by a rotation vector in its own inner frame (3 slots, rad), and kept
- * at unit length as keepUnit does. One pass for the inner loop of strapdown integration.
+ * at unit length as keepUnit does. One pass, for the inner loop of strapdown integration.
  */
 export function turnBy(out: Slots, q: Slots, vector: Slots, outAt = 0, qAt = 0, vectorAt = 0): void {
   const vx = vector[vectorAt]!;
   const vy = vector[vectorAt + 1]!;
   const vz = vector[vectorAt + 2]!;
   const s = 0.25 * (vx * vx + vy * vy + vz * vz); // half angle squared
-  const factor = halfSineByAngle(s);
-  const bw = halfCosine(s);
+  let bw: number; // cosine of the half angle
+  let factor: number; // sine of the half angle / angle
+  if (s < SERIES_BELOW) {
+    bw = 1 - s * (1 / 2 - s * (1 / 24 - s * (1 / 720 - s * (1 / 40320 - s * (1 / 3628800)))));
+    factor = 1 / 2 - s * (1 / 12 - s * (1 / 240 - s * (1 / 10080 - s * (1 / 725760))));
+  } else {
+    const half = Math.sqrt(s);
+    bw = Math.cos(half);
+    factor = Math.sin(half) / (2 * half);
+  }
   const bx = factor * vx;
   const by = factor * vy;
   const bz = factor * vz;
@@ -158,18 +160,6 @@ export function turnBy(out: Slots, q: Slots, vector: Slots, outAt = 0, qAt = 0, 
   out[outAt + 1] = scale * (aw * bx + ax * bw + ay * bz - az * by);
   out[outAt + 2] = scale * (aw * by - ax * bz + ay * bw + az * bx);
   out[outAt + 3] = scale * (aw * bz + ax * by - ay * bx + az * bw);
-}
-
-/** Cosine of a half angle, from its square. */
-function halfCosine(s: number): number {
-  if (s >= SERIES_BELOW) return Math.cos(Math.sqrt(s));
-  return 1 - s * (1 / 2 - s * (1 / 24 - s * (1 / 720 - s * (1 / 40320 - s * (1 / 3628800)))));
-}
-
-/** Sine of a half angle divided by the whole angle, from the half angle's square. */
-function halfSineByAngle(s: number): number {
-  if (s >= SERIES_BELOW) return Math.sin(Math.sqrt(s)) / (2 * Math.sqrt(s));
-  return 1 / 2 - s * (1 / 12 - s * (1 / 240 - s * (1 / 10080 - s * (1 / 725760))));
 }
 
 /**

@@ -11,6 +11,7 @@ import {
   slerp,
   toMatrix,
   toRotationVector,
+  turnBy,
 } from "../../bridge/numeric/quaternion.ts";
 
 const HALF = Math.SQRT1_2;
@@ -96,6 +97,28 @@ describe("keepUnit", () => {
     const out = [0, 0, 0, 0];
     keepUnit(out, [HALF * (1 + 1e-7), 0, HALF * (1 + 1e-7), 0]);
     close(out, [HALF, 0, HALF, 0], 2e-14);
+  });
+});
+
+describe("turnBy", () => {
+  it("is the product with the exponential", () => {
+    fc.assert(
+      fc.property(unit, vector, fc.double({ min: 0.001, max: 5, noNaN: true }), (q, direction, angle) => {
+        const v = direction.map((c) => (c / Math.hypot(...direction)) * angle);
+        const expected = [0, 0, 0, 0];
+        const out = [0, 0, 0, 0];
+        fromRotationVector(expected, v);
+        multiply(expected, q, expected);
+        turnBy(out, q, v);
+        close(out, expected);
+      }),
+    );
+  });
+
+  it("holds the unit length over many turns", () => {
+    const q = Float64Array.of(1, 0, 0, 0);
+    for (let i = 0; i < 100_000; i++) turnBy(q, q, [0.01, -0.02, 0.03]);
+    expect(Math.abs(Math.hypot(...q) - 1)).toBeLessThan(1e-14); // rounding of the last turn, not of all
   });
 });
 
