@@ -52,9 +52,11 @@ export interface RunningBridge {
   readonly finished: Promise<Finished>;
 }
 
-/** Starts a command that serves the dashboard, and waits for its address. */
+/** Starts a command that serves the dashboard, on a free port unless the arguments name one, and waits for its address. */
 export async function startBridge(...args: string[]): Promise<RunningBridge> {
-  const { child, text, finished } = launch([...args, "--http-port", "0"]);
+  const { child, text, finished } = launch(
+    args.includes("--http-port") ? args : [...args, "--http-port", "0"],
+  );
   const address = await new Promise<string>((resolve, reject) => {
     child.stdout.on("data", () => {
       const found = /http:\/\/\S+/.exec(text.out);
