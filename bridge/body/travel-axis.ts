@@ -6,8 +6,8 @@
  * the mean is taken over the last whole beats (at least LEAST_WINDOW_S of them), otherwise over RESTING_WINDOW_S, and at
  * first over what there is. So the swing cancels out, and a body that turns is followed with a lag of half the window.
  *
- * Chords are averaged as vectors, not as angles, so there is no jump at +-180 deg, and a body that hangs steeply (a
- * short horizontal chord) hardly moves the axis.
+ * Chords are averaged as vectors, not as angles, so there is no jump at +-180 deg. A body that hangs steeply has no
+ * direction of travel: while the mean chord is level by less than STEEP_SHARE of its length, the last axis stays.
  */
 
 /** Short enough to follow a turn, long enough that a rattle taken for a beat does not swing the view, s. */
@@ -15,6 +15,8 @@ const LEAST_WINDOW_S = 0.75;
 const RESTING_WINDOW_S = 2;
 /** Beats slower than this are not waited for, s. */
 const LONGEST_WINDOW_S = 5;
+/** About 73 deg of pitch: steeper than a body swims, and level enough still to tell a direction. */
+const STEEP_SHARE = 0.3;
 
 export class TravelAxis {
   // Ring of the last LONGEST_WINDOW_S: time and the chord's integral since the start, one entry a sweep.
@@ -25,6 +27,7 @@ export class TravelAxis {
   #count = 0;
   /** Last entry at or before the window's start: it moves either way as the window does. */
   #start = 0;
+  #firstStepS = 0;
   #cos = 1;
   #sin = 0;
 
@@ -53,14 +56,20 @@ export class TravelAxis {
     const newest = this.#count % entries;
     const before = (this.#count + entries - 1) % entries;
     const first = this.#count === 0;
+    if (first) this.#firstStepS = stepS;
     this.#timeS[newest] = first ? 0 : this.#timeS[before] + stepS;
     this.#sumX[newest] = (first ? 0 : this.#sumX[before]) + stepS * (positions[0] - positions[tail]);
     this.#sumY[newest] = (first ? 0 : this.#sumY[before]) + stepS * (positions[1] - positions[tail + 1]);
     this.#count++;
-    this.#pointAlongMean(newest, windowFor(periodS));
+    const chord = Math.hypot(
+      positions[0] - positions[tail],
+      positions[1] - positions[tail + 1],
+      positions[2] - positions[tail + 2],
+    );
+    this.#pointAlongMean(newest, windowFor(periodS), chord);
   }
 
-  #pointAlongMean(newest: number, windowS: number): void {
+  #pointAlongMean(newest: number, windowS: number, chord: number): void {
     const entries = this.#timeS.length;
     const startS = this.#timeS[newest] - windowS;
     const oldest = Math.max(0, this.#count - entries);
@@ -68,6 +77,7 @@ export class TravelAxis {
     while (start > oldest && this.#timeS[start % entries] > startS) start--;
     while (start + 1 < this.#count && this.#timeS[(start + 1) % entries] <= startS) start++;
     this.#start = start;
+    let spanS = this.#timeS[newest] + this.#firstStepS;
     let sumX = this.#sumX[newest];
     let sumY = this.#sumY[newest];
     const at = start % entries;
@@ -75,14 +85,16 @@ export class TravelAxis {
       // The integral at the window's start, between two sweeps.
       const next = (start + 1) % entries;
       const share = (startS - this.#timeS[at]) / (this.#timeS[next] - this.#timeS[at]);
+      spanS = windowS;
       sumX -= this.#sumX[at] + share * (this.#sumX[next] - this.#sumX[at]);
       sumY -= this.#sumY[at] + share * (this.#sumY[next] - this.#sumY[at]);
     } else if (oldest > 0) {
+      spanS = this.#timeS[newest] - this.#timeS[at];
       sumX -= this.#sumX[at];
       sumY -= this.#sumY[at];
     }
     const length = Math.hypot(sumX, sumY);
-    if (length === 0) return; // no horizontal direction at all: the last one stays
+    if (!(length > STEEP_SHARE * chord * spanS)) return;
     this.#cos = sumX / length;
     this.#sin = sumY / length;
   }

@@ -111,3 +111,11 @@ test("a body with no horizontal direction leaves the axis as it was", () => {
   axis.step(STEP_S, upright, null);
   expect(axis.heading / DEG).toBeCloseTo(40, 9);
 });
+
+test("a body that comes to hang steeply keeps the axis it had, wherever it swings", () => {
+  const axis = new TravelAxis(100);
+  for (let i = 0; i < 300; i++) axis.step(STEP_S, straightBody(40 * DEG), null);
+  for (let i = 0; i < 1000; i++) axis.step(STEP_S, straightBody(i * DEG, 85 * DEG), null);
+  // The axis holds once level chords fill less than 0.3 of the 2 s window: 1.4 s of cos 85 deg beside 0.6 s, 11.5 deg.
+  expect(Math.abs(axis.heading / DEG - 40)).toBeLessThan(11.5);
+});
