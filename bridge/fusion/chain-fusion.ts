@@ -53,6 +53,8 @@ export class ChainFusion {
   readonly #offsetsS: Float64Array;
   /** A sensor without a reading for longer than this has missed one, s. */
   readonly #dueAfterS: Float64Array;
+  /** Hub time of the newest sweep, s. */
+  #timeS = -Infinity;
 
   constructor(options: ChainFusionOptions) {
     const {
@@ -84,10 +86,16 @@ export class ChainFusion {
     });
     this.trust.fill(TRUST.LOST);
     this.bridged.fill(0);
+    this.#timeS = -Infinity;
   }
 
-  /** One sweep: reads values, presence, conditions and time; updates all orientations. */
+  /**
+   * One sweep: reads values, presence, conditions and time; updates all orientations. A sweep whose time does not advance
+   * changes nothing.
+   */
   step(sweep: Sweep): void {
+    if (!(sweep.timeS > this.#timeS)) return;
+    this.#timeS = sweep.timeS;
     for (let sensor = 0; sensor < this.#records.length; sensor++) {
       const record = this.#records[sensor]!;
       record[Slot.NOW] = sweep.timeS;

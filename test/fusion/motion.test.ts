@@ -94,7 +94,7 @@ describe("strapdown integration", () => {
       fusion.step(sweep);
     }
     expect(Math.abs(Math.hypot(...fusion.orientations) - 1)).toBeLessThan(1e-12);
-  });
+  }, 240_000);
 });
 
 describe("predictions", () => {
@@ -227,6 +227,20 @@ describe("missing parts and bad numbers", () => {
     sweep.values.set(good);
     advance(fusion, sweep);
     expect(fusion.trust[0]).toBe(TRUST.GOOD);
+    expect(totalError(fusion, truth)).toBeLessThan(1e-6);
+  });
+
+  it("do not poison the state: a time that stands still, goes back, or is not a number", () => {
+    const { fusion, sweep } = start();
+    const before = [...fusion.orientations];
+    const timeS = sweep.timeS;
+    for (const bad of [timeS, timeS - 1, Number.NaN]) {
+      sweep.timeS = bad;
+      fusion.step(sweep);
+      expect([...fusion.orientations]).toEqual(before);
+    }
+    sweep.timeS = timeS;
+    advance(fusion, sweep);
     expect(totalError(fusion, truth)).toBeLessThan(1e-6);
   });
 
