@@ -108,6 +108,7 @@ export class Pipeline {
       rateHz,
       heading: rig.heading,
       samplingOffsetsS: sensors.map((sensor) => sensor.samplingOffsetUs / 1e6),
+      sensorRatesHz: sensors.map((sensor) => sensor.rateHz),
     });
     this.midline = new Midline({
       lengthM: body.lengthMm / 1000,

@@ -54,9 +54,8 @@ export class Stage {
   }
 
   draw(view: ViewState, nowMs: number): void {
-    // A picture that is no longer live is dimmed, so that nobody takes it for now.
-    const live = view.connection === "connected" && view.status?.link === "flowing";
-    this.#root.alpha = live || !view.hasFrame ? 1 : 0.35;
+    const live = view.live || !view.hasFrame ? "yes" : "no";
+    if (this.#host.dataset.live !== live) this.#host.dataset.live = live;
     for (const { lane } of this.#lanes) lane.draw(view, nowMs);
     this.#renderer.render(this.#root);
   }

@@ -81,10 +81,10 @@ export function flagTitle({ welcome }: ViewState, flag: Flag): string {
   return `${welcome?.sensors[flag.sensor]?.name ?? `Sensor ${flag.sensor + 1}`} ${flag.kind}`;
 }
 
-function allWell({ flags, hasFrame, welcome }: ViewState): string {
+function allWell({ flags, live, welcome }: ViewState): string {
   const drifting = welcome?.heading === "free" ? "Heading drifts: gyroscopes only." : "";
   if (flags.open.length > 0) return drifting;
-  return `${hasFrame ? "Nothing speaks against any sensor." : ""} ${drifting}`.trim();
+  return `${live ? "Nothing speaks against any sensor." : ""} ${drifting}`.trim();
 }
 
 function drawList<T>(id: string, values: readonly T[], text: (value: T) => readonly [string, string]): void {

@@ -38,6 +38,10 @@ const ROWS: readonly Row[] = [
 const ROOM_FOR_NUMBERS = 108;
 const ROOM_FOR_BARS = 34;
 
+/** How far a column with numbers reaches to either side of its sensor's mark, the gutter's and the edge's slack taken off. */
+const COLUMN_LEFT = 46;
+const COLUMN_RIGHT = 46;
+
 interface Cell {
   readonly element: HTMLElement;
   readonly glyph: HTMLElement;
@@ -64,7 +68,11 @@ export class SensorsPanel {
       gap >= ROOM_FOR_NUMBERS ? "full" : gap >= ROOM_FOR_BARS ? "bars" : "ticks";
     this.#columns.forEach((column, i) => {
       const sensor = sensors[i];
-      column.style.left = `${x(sensor?.station ?? 0)}px`;
+      const at = x(sensor?.station ?? 0);
+      column.style.left = `${at}px`;
+      // Near the ends a column keeps clear of the row's title and of the panel.
+      const clear = Math.max(0, ruler.nose - at + COLUMN_LEFT) - Math.max(0, at + COLUMN_RIGHT - ruler.tail);
+      column.style.setProperty("--shift", `${clear}px`);
       column.title = sensor?.name ?? "";
       setText(column.querySelector(".name") as Element, sensor?.name ?? "");
     });

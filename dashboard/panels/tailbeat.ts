@@ -32,12 +32,9 @@ export class TailbeatPanel {
     const amplitude = tailbeat?.tailAmplitudeM ?? null;
     const beats = tailbeat?.steadyBeats ?? 0;
     setText(this.#frequency, frequency === null ? NONE : frequency.toFixed(2));
-    const doubt = tailDoubt(view);
-    setText(
-      this.#steady,
-      frequency === null ? "no beat" : doubt !== null ? "doubtful" : beats >= 3 ? "steady" : "changing",
-    );
-    setText(this.#beats, doubt ?? (frequency === null || beats < 3 ? "" : `for ${beats} beats`));
+    const [word, why] = steadiness(view, beats);
+    setText(this.#steady, word);
+    setText(this.#beats, why);
     const lengthM = welcome?.lengthM ?? 0;
     const flow = welcome?.flowMPerS ?? null;
     const figures = [
@@ -65,6 +62,19 @@ export class TailbeatPanel {
       setText(this.#cells[i] as Element, text);
     });
   }
+}
+
+/** Beats in a row that agree before the swimming is called steady. */
+const STEADY_BEATS = 3;
+
+/** In a word, what the numbers are worth, and in a few more, why. */
+function steadiness(view: ViewState, beats: number): readonly [string, string] {
+  const beating = (view.status?.tailbeat.frequencyHz ?? null) !== null;
+  if (!view.live) return [beating ? "last seen" : "", ""];
+  if (!beating) return ["no beat", ""];
+  const doubt = tailDoubt(view);
+  if (doubt !== null) return ["doubtful", doubt];
+  return beats >= STEADY_BEATS ? ["steady", `for ${beats} beats`] : ["changing", ""];
 }
 
 /** Kinds of trouble that bend the tail itself. */

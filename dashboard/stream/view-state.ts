@@ -2,7 +2,6 @@
  * What the page knows: the newest frame, the recent past, and the newest of each text message. Written by the socket's
  * handlers only; read by lanes and panels when they draw.
  */
-import type { Flag } from "../../bridge/wire/flag.ts";
 import { createDisplayFrame, type DisplayFrame, decodeFrame } from "../../bridge/wire/frame.ts";
 import type {
   BridgeMessage,
@@ -75,14 +74,9 @@ export class ViewState {
     this.revision++;
   }
 
-  /** The worst open flag of a sensor, or null. */
-  worstFlag(sensor: number): Flag | null {
-    let worst: Flag | null = null;
-    for (const flag of this.flags.open) {
-      if (flag.sensor !== sensor) continue;
-      if (worst === null || RANK[flag.severity] > RANK[worst.severity]) worst = flag;
-    }
-    return worst;
+  /** Whether what is shown is now: sweeps are flowing. */
+  get live(): boolean {
+    return this.connection === "connected" && this.status?.link === "flowing";
   }
 
   #startRun(): void {
@@ -92,5 +86,3 @@ export class ViewState {
     this.strip = null;
   }
 }
-
-const RANK = { notice: 0, caution: 1, alarm: 2 } as const;
