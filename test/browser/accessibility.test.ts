@@ -8,7 +8,8 @@ import { expect, onTestFinished, test } from "vitest";
 import type { LinkView } from "../../bridge/wire/messages.ts";
 import { FakeBridge } from "../support/fake-bridge.ts";
 import { longNamesScene, type Scene, sixAxisScene, troubledScene } from "../support/scene.ts";
-import { type Light, useBrowser } from "./page.ts";
+import { type Light, untilDrawn } from "./page.ts";
+import { useBrowser } from "./use-browser.ts";
 
 const open = useBrowser();
 const LIGHTS: readonly Light[] = ["dark", "day"];
@@ -18,7 +19,7 @@ async function openScene(scene: Scene, light: Light): Promise<Page> {
   const bridge = await FakeBridge.start(scene);
   onTestFinished(() => bridge.stop());
   const page = await open(bridge.address, { light });
-  await page.waitForFunction(() => window.bendwatchView.drawn > 5);
+  await untilDrawn(page, 5);
   return page;
 }
 

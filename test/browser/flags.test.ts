@@ -2,7 +2,8 @@
 import { expect, onTestFinished, test } from "vitest";
 import { FakeBridge } from "../support/fake-bridge.ts";
 import { flagOn, type Scene, sixAxisScene, troubledScene } from "../support/scene.ts";
-import { textOf, useBrowser } from "./page.ts";
+import { textOf } from "./page.ts";
+import { useBrowser } from "./use-browser.ts";
 
 const open = useBrowser();
 

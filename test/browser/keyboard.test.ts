@@ -3,7 +3,8 @@ import type { Page } from "playwright-core";
 import { expect, onTestFinished, test } from "vitest";
 import { MAX_MARK_LENGTH } from "../../bridge/wire/messages.ts";
 import { FakeBridge } from "../support/fake-bridge.ts";
-import { textOf, useBrowser } from "./page.ts";
+import { textOf } from "./page.ts";
+import { useBrowser } from "./use-browser.ts";
 
 const open = useBrowser();
 

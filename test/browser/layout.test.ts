@@ -3,7 +3,8 @@ import type { Page } from "playwright-core";
 import { expect, onTestFinished, test } from "vitest";
 import { FakeBridge } from "../support/fake-bridge.ts";
 import { longNamesScene, type Scene, troubledScene } from "../support/scene.ts";
-import { useBrowser } from "./page.ts";
+import { untilDrawn } from "./page.ts";
+import { useBrowser } from "./use-browser.ts";
 
 const open = useBrowser();
 
@@ -29,7 +30,7 @@ async function openScene(scene: Partial<Scene>, size: readonly [number, number])
   const bridge = await FakeBridge.start(scene);
   onTestFinished(() => bridge.stop());
   const page = await open(bridge.address, { size });
-  await page.waitForFunction(() => window.bendwatchView.drawn > 5);
+  await untilDrawn(page, 5);
   return page;
 }
 
@@ -132,8 +133,7 @@ test.each([6, 16, 64])(
       await page.waitForFunction(
         () => document.querySelector("canvas")!.clientWidth === document.getElementById("lanes")!.clientWidth,
       );
-      const drawn = await page.evaluate(() => window.bendwatchView.drawn);
-      await page.waitForFunction((before) => window.bendwatchView.drawn > before + 2, drawn);
+      await untilDrawn(page, 3);
       const text = await visibleText(page, "body");
       expect(overlaps(text)).toEqual([]);
       expect(outside(text, [width, height])).toEqual([]);

@@ -1,7 +1,5 @@
-/** One browser a test file, one fresh page a call; whatever a page complains about fails its test. */
+/** Opens the dashboard in a browser, and reads what it shows. */
 import type { Browser, BrowserContextOptions, Page } from "playwright-core";
-import { afterAll, afterEach, beforeAll, expect } from "vitest";
-import { launchChromium } from "../support/chromium.ts";
 import { decodePng, type Picture } from "../support/png.ts";
 
 /** The page's own record of its drawing. */
@@ -33,38 +31,6 @@ export interface OpenOptions {
   readonly live?: boolean;
 }
 
-/** What Chromium itself logs, whatever the page does: nobody at the other end, or a test reads WebGL's pixels. */
-const NOT_THE_PAGE =
-  /WebSocket connection to .* failed|net::ERR_CONNECTION_REFUSED|GPU stall due to ReadPixels/;
-
-/**
- * @returns opens a page; after each test pages are closed, and errors in the console, exceptions, failed requests and
- *   violations of the security policy fail it
- */
-export function useBrowser(): (address: string, options?: OpenOptions) => Promise<Page> {
-  let browser: Browser;
-  const complaints: string[] = [];
-  beforeAll(async () => {
-    browser = await launchChromium();
-  });
-  afterAll(() => browser.close());
-  afterEach(async () => {
-    for (const context of browser.contexts()) await context.close();
-    expect(complaints.splice(0)).toEqual([]);
-  });
-  return async (address, options = {}) => {
-    const page = await newPage(browser, options);
-    page.on("console", (message) => {
-      const text = message.text();
-      if (["error", "warning"].includes(message.type()) && !NOT_THE_PAGE.test(text)) complaints.push(text);
-    });
-    page.on("pageerror", (error) => complaints.push(error.message));
-    await page.exposeFunction("tellViolation", (text: string) => complaints.push(text));
-    await openAddress(page, address, options);
-    return page;
-  };
-}
-
 /** A page in a light and size, in a context of its own. */
 export function newPage(
   browser: Browser,
@@ -79,12 +45,6 @@ export function newPage(
 
 export async function openAddress(page: Page, address: string, options: OpenOptions): Promise<void> {
   const { renderer, live = true } = options;
-  await page.addInitScript(() => {
-    const tell = (window as unknown as { tellViolation?: (text: string) => void }).tellViolation;
-    document.addEventListener("securitypolicyviolation", ({ violatedDirective, blockedURI }) => {
-      tell?.(`security policy: ${violatedDirective} ${blockedURI}`);
-    });
-  });
   const url = new URL(address);
   if (renderer !== undefined) url.searchParams.set("renderer", renderer);
   await page.goto(url.href);
@@ -104,6 +64,12 @@ export async function untilLink(page: Page, state: string): Promise<void> {
     (wanted) => document.getElementById("link-state")?.dataset.state === wanted,
     state,
   );
+}
+
+/** Resolves when the page has drawn so many times from now on. */
+export async function untilDrawn(page: Page, times: number): Promise<void> {
+  const until = times + (await page.evaluate(() => window.bendwatchView.drawn));
+  await page.waitForFunction((count) => window.bendwatchView.drawn >= count, until);
 }
 
 /** The text of an element as a reader gets it, white space joined. */

@@ -140,7 +140,7 @@ export class FakeBridge {
       sweepsPerS: link === "flowing" ? rateHz : 0,
       lostShare,
       behindMs: 1.4,
-      driftPpm: null,
+      driftPpm: 18,
       counters: { good: Math.round(this.#hubTimeS * rateHz), badChecksum: 3, discardedBytes: 41 },
       tailbeat: tailbeatOf(wave, lengthM),
     };
