@@ -12,6 +12,8 @@ import { mix, type Palette } from "./palette.ts";
 const SPAN_S = 3;
 const ROWS_PER_S = 80;
 const ROWS = SPAN_S * ROWS_PER_S;
+/** A frame stands for at most so many rows; where none came for longer, the ground shows. */
+const ROWS_A_FRAME = 16;
 /** Steps of the colour scale either side of zero. */
 const STEPS = 127;
 /** The colour scale follows the greatest excursion with this time constant, s, so that it does not flicker. */
@@ -94,6 +96,7 @@ export class WaveLane implements Lane {
   /** Draws the whole past anew, from the history: after a change of light, run, or a jump in time. */
   #repaint(view: ViewState): void {
     this.#pen.clearRect(0, 0, this.#canvas.width, ROWS);
+    this.#texture?.source.update();
     const { history } = view;
     this.#newestRow = -1;
     if (!view.hasFrame || this.#texture === null) return;
@@ -101,11 +104,7 @@ export class WaveLane implements Lane {
     for (let index = history.oldest; index < history.count; index++) this.#followScale(view, index, 1);
     const newest = history.count - 1;
     this.#newestRow = Math.floor(history.timeS(newest) * ROWS_PER_S);
-    for (let y = 0, index = newest; y < ROWS && index >= history.oldest; y++) {
-      while (index > history.oldest && history.timeS(index) * ROWS_PER_S > this.#newestRow - y) index--;
-      this.#paintRow(view, index, y);
-    }
-    this.#texture.source.update();
+    this.#paintRows(view, ROWS);
   }
 
   #scroll(view: ViewState, rows: number): void {
@@ -114,8 +113,20 @@ export class WaveLane implements Lane {
     this.#pen.globalCompositeOperation = "copy";
     this.#pen.drawImage(this.#canvas, 0, rows);
     this.#pen.globalCompositeOperation = "source-over";
-    for (let y = 0; y < rows; y++) this.#paintRow(view, newest, y);
     this.#newestRow += rows;
+    this.#paintRows(view, rows);
+  }
+
+  /** Paints so many rows from the top, each with the frame of its moment; the ground shows where none was received. */
+  #paintRows(view: ViewState, rows: number): void {
+    const { history } = view;
+    let index = history.count - 1;
+    for (let y = 0; y < rows; y++) {
+      const row = this.#newestRow - y;
+      while (index > history.oldest && history.timeS(index) * ROWS_PER_S >= row + 1) index--;
+      const rowsSince = row - Math.floor(history.timeS(index) * ROWS_PER_S);
+      if (rowsSince >= 0 && rowsSince < ROWS_A_FRAME) this.#paintRow(view, index, y);
+    }
     this.#texture!.source.update();
   }
 

@@ -56,7 +56,7 @@ function drawRecording({ welcome, status, connection }: ViewState): void {
   let text = "";
   if (connection === "connected" && recording !== undefined) {
     if (state === "on") text = `Recording ${clock(recording.elapsedS)}`;
-    else if (state === "failed") text = "Recording has failed";
+    else if (state === "failed") text = `Recording has failed: ${recording.detail}`;
     else if (welcome?.source.kind === "trial") text = `Replaying ${clock(status?.hubTimeS ?? 0)}`;
     else if (welcome?.source.kind === "rehearsal")
       text = `Rehearsal ${clock(status?.hubTimeS ?? 0)}, not recorded`;

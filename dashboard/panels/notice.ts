@@ -2,7 +2,7 @@
 import type { Severity } from "../../bridge/wire/flag.ts";
 import type { ViewState } from "../stream/view-state.ts";
 import { type LinkWord, linkWord } from "./header.ts";
-import { setText } from "./words.ts";
+import { duration, setText } from "./words.ts";
 
 interface Notice {
   readonly severity: Severity;
@@ -12,7 +12,7 @@ interface Notice {
 
 export function drawNotice(view: ViewState): void {
   const element = document.getElementById("notice") as HTMLElement;
-  const notice = noticeFor(view, linkWord(view));
+  const notice = noticeFor(view, linkWord(view), performance.now());
   element.hidden = notice === null;
   if (notice === null) return;
   element.dataset.severity = notice.severity;
@@ -20,9 +20,11 @@ export function drawNotice(view: ViewState): void {
   setText(element.querySelector("span") as Element, notice.text);
 }
 
-export function noticeFor({ status, welcome, hasFrame }: ViewState, word: LinkWord): Notice | null {
+/** @param nowMs page time, for how old the shape is */
+export function noticeFor(view: ViewState, word: LinkWord, nowMs: number): Notice | null {
+  const { status, welcome, hasFrame } = view;
   const detail = status?.linkDetail ?? "";
-  const since = hasFrame ? " The shape is the last one received." : "";
+  const age = hasFrame ? `The shape is ${duration((nowMs - view.frameAtMs) / 1000)} old.` : "";
   switch (word) {
     case "connecting":
       return {
@@ -40,23 +42,27 @@ export function noticeFor({ status, welcome, hasFrame }: ViewState, word: LinkWo
       return {
         severity: "alarm",
         title: "The bridge is gone",
-        text: `Start it again; this page finds it by itself.${since}`,
+        text: sentences("Start it again; this page finds it by itself.", age),
       };
     case "opening":
       return { severity: "notice", title: "Waiting for the port", text: detail };
     case "closed":
-      return { severity: "alarm", title: "Unplugged", text: `${detail}${since}` };
+      return { severity: "alarm", title: "Unplugged", text: sentences(detail, age) };
     case "silent":
       if (!hasFrame) return { severity: "notice", title: "Waiting for the first sweep", text: detail };
-      return { severity: "alarm", title: "The link is silent", text: `${detail}${since}` };
+      return { severity: "alarm", title: "The link is silent", text: sentences(detail, age) };
     case "ended":
       return {
         severity: "notice",
         title: welcome?.source.kind === "trial" ? "The trial has ended" : "The run has ended",
-        text: `${detail}.${since}`.replace("..", "."),
+        text: sentences(detail, age),
       };
     case "flowing":
       if (hasFrame) return null;
       return { severity: "notice", title: "Waiting for the first sweep", text: detail };
   }
+}
+
+function sentences(...parts: readonly string[]): string {
+  return parts.filter((part) => part !== "").join(" ");
 }

@@ -83,6 +83,11 @@ export class FakeBridge {
     for (const message of [this.#status(), this.#flags(), this.#marks()]) this.#send(message);
   }
 
+  /** Hub time goes on, but nothing arrives. */
+  skip(seconds: number): void {
+    this.#hubTimeS += seconds;
+  }
+
   /** As when a looped trial starts over: a new run, from hub time 0. */
   startOver(): void {
     this.#run++;

@@ -198,10 +198,16 @@ const LONG_NAMES = [
   "Fluke notch",
 ];
 
-/** Names as long as people write them, on six sensors, and a rig and a source as long. */
+/** Names as long as people write them, on six sensors, a rig and a source as long, and a failure that takes telling. */
 export function longNamesScene(): Scene {
   return {
     ...troubledScene(),
+    recording: {
+      state: "failed",
+      detail: "no space left on the disk of the trials; 12 packets were not kept",
+      elapsedS: 252,
+      bytes: 4_180_000,
+    },
     rigName: "Jointed training dummy with the second tail, long basin, northern carriage",
     source: {
       kind: "trial",
