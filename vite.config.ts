@@ -8,6 +8,7 @@ export default defineConfig({
   test: {
     root: ".",
     include: ["test/**/*.test.ts"],
+    setupFiles: ["test/support/setup.ts"],
     exclude: ["**/node_modules/**"],
     testTimeout: 60_000,
     hookTimeout: 60_000,

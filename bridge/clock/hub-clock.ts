@@ -133,9 +133,12 @@ export class HubClock {
     const tickUs = sweep.tickUs;
     const ahead = this.#hasSequence ? (sweep.sequence - this.#sequence) & SEQUENCE_MASK : -1;
     const stepUs = (tickUs - this.#tickUs) >>> 0;
-    if (stepUs === 0 && ahead <= 0) return this.#drop(Admission.DUPLICATE);
+    // Where the arrivals agree, a tick has run on, past its end perhaps, rather than stood still or gone back.
+    const confirmedUs = confirmedByHost(stepUs, TICK_SPAN_US, hostUs);
+    if (stepUs === 0 && ahead <= 0 && confirmedUs <= 0) return this.#drop(Admission.DUPLICATE);
     const sequenceBehind = ahead < 0 || ahead >= SEQUENCE_SPAN / 2;
-    if (sequenceBehind && (this.#tickUs - tickUs) >>> 0 <= STRAY_US) return this.#drop(Admission.LATE);
+    const tickBehind = (this.#tickUs - tickUs) >>> 0 <= STRAY_US;
+    if (sequenceBehind && tickBehind && confirmedUs < 0) return this.#drop(Admission.LATE);
 
     const believedUs = this.#believed(stepUs, ahead, hostUs);
     if (believedUs >= 0) return this.#acceptTick(sweep, believedUs, ahead);
@@ -150,20 +153,23 @@ export class HubClock {
 
   #admitBySequence(sweep: Sweep, hostUs: number): Admission {
     const ahead = (sweep.sequence - this.#sequence) & SEQUENCE_MASK;
+    const stepUs = ahead * this.#intervalUs;
+    const confirmedUs = confirmedByHost(stepUs, SEQUENCE_SPAN * this.#intervalUs, hostUs);
+    if (confirmedUs > 0)
+      return this.#accept(sweep, Admission.NEXT, confirmedUs, Math.round(confirmedUs / this.#intervalUs));
     if (ahead === 0) return this.#drop(Admission.DUPLICATE);
     if ((SEQUENCE_SPAN - ahead) * this.#intervalUs <= STRAY_US) return this.#drop(Admission.LATE);
-    let stepUs = ahead * this.#intervalUs;
-    if (stepUs > STRAY_US) stepUs = confirmedByHost(stepUs, SEQUENCE_SPAN * this.#intervalUs, hostUs);
-    if (stepUs < 0) return this.#acceptRestart(sweep, hostUs);
-    return this.#accept(sweep, Admission.NEXT, stepUs, Math.round(stepUs / this.#intervalUs));
+    if (stepUs > STRAY_US) return this.#acceptRestart(sweep, hostUs);
+    return this.#accept(sweep, Admission.NEXT, stepUs, ahead);
   }
 
   /** The time that truly passed where a tick step is believed, whole rounds of the tick added; else -1. */
   #believed(stepUs: number, ahead: number, hostUs: number): number {
+    const confirmedUs = confirmedByHost(stepUs, TICK_SPAN_US, hostUs);
+    if (confirmedUs >= 0) return confirmedUs;
     if (stepUs <= STRAY_US) return stepUs;
     const countedUs = ahead * this.#intervalUs;
-    if (ahead > 0 && Math.abs(stepUs - countedUs) <= STRAY_US + RATE_TOLERANCE * countedUs) return stepUs;
-    return confirmedByHost(stepUs, TICK_SPAN_US, hostUs);
+    return ahead > 0 && Math.abs(stepUs - countedUs) <= STRAY_US + RATE_TOLERANCE * countedUs ? stepUs : -1;
   }
 
   #acceptTick(sweep: Sweep, stepUs: number, ahead: number): Admission {

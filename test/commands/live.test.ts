@@ -15,6 +15,8 @@ import { openPty, type Pty } from "../support/pty.ts";
 function playHub(pty: Pty, rig: Rig, encode: (bytes: Uint8Array) => Uint8Array) {
   const written: Uint8Array[] = [];
   let plugged = true;
+  /** One after the other: a full terminal takes a chunk in parts. */
+  let writing: Promise<void> = Promise.resolve();
   const source = new RehearsalSource({ rig, swimmer: { restS: 0.5, startS: 0.5 } });
   onTestFinished(() => source.stop());
   void source.run({
@@ -22,7 +24,7 @@ function playHub(pty: Pty, rig: Rig, encode: (bytes: Uint8Array) => Uint8Array) 
       const sent = encode(chunk.slice());
       if (!plugged || sent.length === 0) return;
       written.push(sent);
-      void pty.write(sent).catch(() => {});
+      writing = writing.then(() => pty.write(sent)).catch(() => {});
     },
     linkState() {},
     mark() {},
