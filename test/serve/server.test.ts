@@ -1,12 +1,12 @@
-import { mkdtempSync, writeFileSync } from "node:fs";
+import { writeFileSync } from "node:fs";
 import { get } from "node:http";
 import { connect } from "node:net";
-import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { afterEach, expect, test } from "vitest";
 import { WebSocket } from "ws";
 import { StreamServer } from "../../bridge/serve/server.ts";
 import { type DashboardMessage, SUBPROTOCOL } from "../../bridge/wire/messages.ts";
+import { temporaryFolder } from "../support/folders.ts";
 
 const running: StreamServer[] = [];
 afterEach(async () => {
@@ -14,7 +14,7 @@ afterEach(async () => {
 });
 
 async function start() {
-  const dashboardFolder = mkdtempSync(join(tmpdir(), "bendwatch-page-"));
+  const dashboardFolder = temporaryFolder();
   writeFileSync(join(dashboardFolder, "index.html"), "<title>page</title>");
   const received: DashboardMessage[] = [];
   const server = new StreamServer({

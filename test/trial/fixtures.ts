@@ -1,24 +1,18 @@
 /** What several trial tests share: a rig, folders that vanish, a recorder with failing disk, records read back. */
-import { mkdtempSync, rmSync } from "node:fs";
 import { open } from "node:fs/promises";
-import { tmpdir } from "node:os";
 import { join } from "node:path";
-import { onTestFinished } from "vitest";
 import type { LinkState } from "../../bridge/link/source.ts";
 import { loadRig } from "../../bridge/rig/load.ts";
 import type { OpenAppend } from "../../bridge/trial/append-file.ts";
 import { type ReadEnd, TrialReader } from "../../bridge/trial/reader.ts";
 import { TrialRecorder } from "../../bridge/trial/recorder.ts";
 import type { TrialRecord } from "../../bridge/trial/records.ts";
+import { temporaryFolder } from "../support/folders.ts";
+
+export { temporaryFolder };
 
 /** An instant of an invented trial, ms since the epoch. */
 export const START_MS = Date.UTC(2026, 5, 1, 9, 30);
-
-export function temporaryFolder(): string {
-  const folder = mkdtempSync(join(tmpdir(), "bendwatch-trial-"));
-  onTestFinished(() => rmSync(folder, { recursive: true, force: true }));
-  return folder;
-}
 
 export function createRecorder(
   folder: string,

@@ -1,17 +1,15 @@
 /** Small tables, maps and rigs for the import tests. */
-import { mkdtempSync, rmSync, writeFileSync } from "node:fs";
-import { tmpdir } from "node:os";
+import { writeFileSync } from "node:fs";
 import { join } from "node:path";
-import { afterAll } from "vitest";
 import { type ColumnMap, columnMapSchema } from "../../../bridge/rig/column-map.ts";
 import { checkConfig, loadRig, type Rig } from "../../../bridge/rig/load.ts";
 import type { Sweep } from "../../../bridge/sweep.ts";
 import type { TableFile } from "../../../bridge/trial/import/places.ts";
 import type { ImportSummary } from "../../../bridge/trial/import/summary.ts";
 import { importTables } from "../../../bridge/trial/import/tables.ts";
+import { temporaryFolder } from "../../support/folders.ts";
 
-const folder = mkdtempSync(join(tmpdir(), "bendwatch-import-"));
-afterAll(() => rmSync(folder, { recursive: true, force: true }));
+const folder = temporaryFolder();
 let files = 0;
 
 /** Writes a file and returns its path. */
