@@ -4,7 +4,8 @@
  *     bytes -> link -> clock -> calibration -> health -> fusion -> body -> wave -> ring buffer
  *
  * Everything is computed from the hub's own ticks, so the same bytes give the same results at any speed and cut into any
- * chunks. Arrival times serve two things only: noticing a silent link, and bridging a restart of the hub.
+ * chunks. Arrival times, as recorded, serve three things only: noticing a silent link, bridging a restart of the hub, and
+ * telling whether a gap is longer than the hub's counters can say.
  */
 import { Midline } from "./body/midline.ts";
 import { TravelAxis } from "./body/travel-axis.ts";
