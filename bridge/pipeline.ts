@@ -150,7 +150,7 @@ export class Pipeline {
 
   /** The run is over: open flags end with it. */
   finish(): void {
-    for (const flag of [...this.flags.open]) this.flags.clear(flag.kind, flag.sensor, this.timeS);
+    this.flags.endAll(this.timeS);
   }
 
   get counters(): Readonly<LinkCounters> {

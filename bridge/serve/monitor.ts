@@ -156,6 +156,14 @@ export class Monitor implements ByteSink {
     this.#strip.add(sweep.timeS, travel.lateral(midline.positions, POINT_COUNT - 1));
   }
 
+  /** Trouble of this computer's disk, not of the trial's bytes: a replay does not have it. */
+  #watchRecorder(): void {
+    const { flags, timeS } = this.#pipeline;
+    const state = this.#options.recorder?.state;
+    if (state?.state === "failed") flags.raise("recording trouble", -1, "alarm", timeS, state.detail);
+    else flags.clear("recording trouble", -1, timeS);
+  }
+
   #checkSilence(): void {
     if (this.#link.value.state !== "ended") this.#pipeline.hostTime(Date.now());
   }
@@ -176,7 +184,10 @@ export class Monitor implements ByteSink {
   #messages(): Observable<BridgeMessage> {
     const soon = throttleTime<void>(FLAGS_INTERVAL_MS, undefined, { leading: true, trailing: true });
     return new Observable<BridgeMessage>((out) => {
-      const all = merge(interval(STATUS_INTERVAL_MS), this.#link).subscribe(() => out.next(this.#status()));
+      const all = merge(interval(STATUS_INTERVAL_MS), this.#link).subscribe(() => {
+        this.#watchRecorder();
+        out.next(this.#status());
+      });
       all.add(this.#flagChanges.pipe(soon).subscribe(() => out.next(this.#flagsMessage())));
       all.add(this.#marks.subscribe(() => out.next(this.#marksMessage())));
       all.add(interval(STRIP_INTERVAL_MS).subscribe(() => out.next(this.#strip.message())));
