@@ -1,45 +1,87 @@
 /**
- * The page: a connection fills the view state; one animation-frame callback draws the newest of it, lanes at display rate,
- * text a few times a second.
+ * The dashboard: a connection fills the view state; one animation-frame callback draws the newest of it, lanes at display
+ * rate, text a few times a second.
  */
-
 import { DrawLog } from "./draw-log.ts";
+import { BodyWave } from "./lanes/body-wave.ts";
+import { FromAbove } from "./lanes/from-above.ts";
+import { FromSide } from "./lanes/from-side.ts";
+import { chooseRenderer, createRenderer } from "./lanes/renderer.ts";
+import { RulerLane } from "./lanes/ruler.ts";
 import { Stage } from "./lanes/stage.ts";
-import { Controls } from "./panels/controls.ts";
+import { Strip } from "./lanes/strip.ts";
+import { initialLight, switchLight } from "./look/light.ts";
+import { readPalette } from "./look/palette.ts";
 import { FlagsPanel } from "./panels/flags.ts";
-import { drawHeader } from "./panels/header.ts";
-import { drawNotice } from "./panels/notice.ts";
-import { SensorsPanel } from "./panels/sensors.ts";
+import { Header } from "./panels/header.ts";
+import { Keys } from "./panels/keys.ts";
+import { MarkField } from "./panels/mark-field.ts";
+import { Notice } from "./panels/notice.ts";
+import { SensorColumns } from "./panels/sensors.ts";
 import { TailbeatPanel } from "./panels/tailbeat.ts";
+import { setText } from "./panels/text.ts";
 import { Connection } from "./stream/connection.ts";
-import { ViewState } from "./stream/view-state.ts";
+import { createViewState, isLive } from "./stream/view-state.ts";
 
 /** Numbers change this often: often enough to follow, seldom enough to read. */
 const TEXT_MS = 250;
+/** Where the ruler begins and ends within the page, CSS pixels. As in the style sheet. */
+const RULER_LEFT = 176;
+const RULER_RIGHT = 28;
 
-const view = new ViewState();
-const stage = await Stage.create(new URLSearchParams(location.search).get("renderer"));
-const log = new DrawLog(stage.rendererName, view);
-const tailbeat = new TailbeatPanel();
+const element = (id: string) => document.getElementById(id)!;
+
+initialLight();
+const page = new URL(location.href);
+const view = createViewState();
+
+const rendererName = chooseRenderer(page.searchParams.get("renderer"));
+const [lanesRenderer, stripRenderer] = await Promise.all([
+  createRenderer(rendererName),
+  createRenderer(rendererName),
+]);
+const log = new DrawLog(rendererName, view);
+
+const above = new FromAbove(element("lane-above"));
+const side = new FromSide(above);
+const wave = new BodyWave(element("lane-wave"));
+const lanes = new Stage(element("lanes"), lanesRenderer, [
+  { element: element("lane-above"), lane: above },
+  { element: element("lane-side"), lane: side },
+  { element: element("lane-ruler"), lane: new RulerLane(element("lane-ruler")) },
+  { element: element("lane-wave"), lane: wave },
+]);
+const stripHost = element("lane-strip");
+const strip = new Stage(stripHost, stripRenderer, [{ element: stripHost, lane: new Strip(stripHost) }]);
+
+const header = new Header();
+const sensors = new SensorColumns(element("sensors"));
+const tailbeat = new TailbeatPanel(element("tailbeat"));
 const flags = new FlagsPanel();
-const sensors = new SensorsPanel();
+const notice = new Notice();
 
-let placedFor: object | null | undefined;
-let drawnRevision = -1;
+let drawnText = -1;
+let drawnRun: string | undefined;
+let laidOut = false;
 let textAtMs = Number.NEGATIVE_INFINITY;
 let waiting = false;
 
-const connection = new Connection(view, requestDraw);
-new Controls({
-  sendMark: (text) => connection.send({ type: "add mark", text }),
-  onLight: place,
-});
-
-new ResizeObserver(place).observe(document.querySelector("#lanes") as Element);
-document.addEventListener("visibilitychange", requestDraw);
+const connection = new Connection(view, page, requestDraw);
+connection.open();
+const markField = new MarkField((message) => connection.send(message));
+new Keys(
+  [
+    { key: "M", does: "Mark this moment", run: () => markField.open() },
+    { key: "L", does: "Dark room or daylight", run: toggleLight },
+  ],
+  () => markField.close(),
+);
+element("light-button").addEventListener("click", toggleLight);
+new ResizeObserver(requestLayout).observe(element("lanes"));
+document.addEventListener("visibilitychange", requestLayout);
 // Durations go on counting when nothing arrives.
 setInterval(requestDraw, TEXT_MS);
-place();
+requestDraw();
 
 /** However much arrives, at most one drawing a display frame; none while nobody can see it. */
 function requestDraw(): void {
@@ -48,31 +90,60 @@ function requestDraw(): void {
   requestAnimationFrame(draw);
 }
 
+function requestLayout(): void {
+  laidOut = false;
+  requestDraw();
+}
+
+function toggleLight(): void {
+  switchLight();
+  requestLayout();
+}
+
 function draw(nowMs: number): void {
   waiting = false;
-  const began = performance.now();
-  if (view.welcome !== placedFor) place();
-  const changed = view.revision !== drawnRevision;
-  if (nowMs - textAtMs >= TEXT_MS || changed) {
-    textAtMs = nowMs;
-    drawnRevision = view.revision;
-    drawHeader(view);
-    drawNotice(view);
-    tailbeat.draw(view);
-    flags.draw(view);
-    sensors.draw(view);
-  }
-  stage.draw(view, nowMs);
-  log.add(nowMs, performance.now() - began);
+  const beganMs = performance.now();
+  if (view.welcome !== null && view.welcome.runId !== drawnRun) startRun();
+  if (sensors.build(view)) laidOut = false;
+  if (!laidOut) layOut();
+  if (view.textRevision !== drawnText || nowMs - textAtMs >= TEXT_MS) updateText(nowMs);
+  lanes.dimmed = !isLive(view);
+  lanes.draw(view);
+  strip.draw(view);
+  log.add(nowMs, performance.now() - beganMs);
+}
+
+function startRun(): void {
+  drawnRun = view.welcome?.runId;
+  for (const lane of [above, side, wave]) lane.clear();
+  flags.forget();
 }
 
 /** The page's size, light or rig changed. */
-function place(): void {
-  placedFor = view.welcome;
-  // Columns first: their number decides how high the section is.
-  sensors.place(view, stage.ruler);
-  stage.place(view);
-  sensors.place(view, stage.ruler);
-  sensors.draw(view);
-  requestDraw();
+function layOut(): void {
+  laidOut = true;
+  drawnText = -1;
+  const palette = readPalette();
+  const rulerIn = (width: number) => ({
+    left: RULER_LEFT,
+    width: Math.max(100, width - RULER_LEFT - RULER_RIGHT),
+  });
+  const ruler = rulerIn(element("lanes").clientWidth);
+  // Columns first: their number decides how high the lane is.
+  sensors.resize(ruler, view);
+  lanes.resize(ruler, palette);
+  strip.resize(rulerIn(stripHost.clientWidth), palette);
+}
+
+function updateText(nowMs: number): void {
+  textAtMs = nowMs;
+  drawnText = view.textRevision;
+  header.update(view);
+  tailbeat.update(view);
+  flags.update(view);
+  notice.update(view, nowMs);
+  sensors.update(view);
+  markField.update(view);
+  setText(element("heading-note"), view.welcome?.heading === "free" ? "Heading drifts: gyroscopes only" : "");
+  document.body.dataset.live = String(isLive(view));
 }

@@ -1,44 +1,97 @@
 /**
- * Where the midline was in the last tailbeat: twelve positions, evenly spaced in the beat, fading with age. They stand
- * still between two twelfths of a beat, so they are redrawn a dozen times a beat and not sixty times a second.
+ * Where the body was during the last tailbeat: faint lines at even times, and the envelope around all of them. The lines
+ * stand at multiples of their spacing in hub time, so each stays where it is while it fades; the drawing is renewed when
+ * a line is added, not with every frame.
  */
-import { Container, Graphics } from "pixi.js";
+import { Graphics } from "pixi.js";
+import type { Palette } from "../look/palette.ts";
 import type { ViewState } from "../stream/view-state.ts";
-import { type Box, stationX } from "./lane.ts";
-import type { Palette } from "./palette.ts";
+import { type Ruler, stationX } from "./lane.ts";
 
-const POSITIONS = 12;
-/** Spacing when the body does not beat, s. */
-const RESTING_STEP_S = 0.15;
+const LINES = 12;
+/** Dashes of the envelope between two points of the midline. */
+const DASHES = 2;
+/** Looked back over while there is no tailbeat, s. */
+const SPAN_AT_REST_S = 1;
+const LONGEST_SPAN_S = 4;
 
 export class PastPositions {
-  readonly shapes = new Container();
-  readonly #lines = Array.from({ length: POSITIONS }, () => this.shapes.addChild(new Graphics()));
-  #next = 0;
-  #lastS = Number.NEGATIVE_INFINITY;
+  readonly graphics = new Graphics();
+  #drawnStep = Number.NaN;
+  #low = new Float64Array(0);
+  #high = new Float64Array(0);
 
+  /** Makes the next draw a full one. */
   forget(): void {
-    for (const line of this.#lines) line.clear();
-    this.#lastS = Number.NEGATIVE_INFINITY;
+    this.#drawnStep = Number.NaN;
+    this.graphics.clear();
   }
 
-  draw({ frame, status }: ViewState, box: Box, middle: number, scale: number, palette: Palette): void {
-    const frequency = status?.tailbeat.frequencyHz ?? null;
-    const stepS = frequency === null ? RESTING_STEP_S : 1 / frequency / POSITIONS;
-    if (frame.hubTimeS - this.#lastS < stepS) return;
-    this.#lastS = frame.hubTimeS;
-    const line = this.#lines[this.#next]!.clear();
-    const last = frame.pointCount - 1;
-    line.moveTo(stationX(box, 0), middle - frame.midline[1]! * scale);
-    for (let point = 1; point <= last; point++) {
-      line.lineTo(stationX(box, point / last), middle - frame.midline[3 * point + 1]! * scale);
-    }
-    line.stroke({ width: 1, color: palette.soft });
-    this.#next = (this.#next + 1) % POSITIONS;
-    // The oldest is faintest.
-    for (let age = 0; age < POSITIONS; age++) {
-      const index = (this.#next - 1 - age + 2 * POSITIONS) % POSITIONS;
-      this.#lines[index]!.alpha = 0.5 * (1 - age / POSITIONS);
+  draw(view: ViewState, ruler: Ruler, middle: number, pixelsPerM: number, palette: Palette): void {
+    const { past } = view;
+    const frequency = view.status?.tailbeat.frequencyHz ?? null;
+    const spanS = frequency === null ? SPAN_AT_REST_S : Math.min(LONGEST_SPAN_S, 1 / frequency);
+    const spacingS = spanS / LINES;
+    const step = Math.floor(past.newestS / spacingS);
+    if (step === this.#drawnStep) return;
+    this.#drawnStep = step;
+    const first = past.firstSince(past.newestS - spanS);
+    this.#measure(view, first, middle, pixelsPerM);
+    this.graphics.clear();
+    this.#drawEnvelope(ruler, palette);
+    for (let entry = first + 1; entry < past.total; entry++) {
+      const here = Math.floor(past.timeS(entry) / spacingS);
+      if (here === Math.floor(past.timeS(entry - 1) / spacingS)) continue;
+      const age = (past.newestS - past.timeS(entry)) / spanS;
+      for (let i = 0; i < past.pointCount; i++) {
+        const x = stationX(ruler, i / (past.pointCount - 1));
+        const y = middle - past.sideways(entry, i) * pixelsPerM;
+        if (i === 0) this.graphics.moveTo(x, y);
+        else this.graphics.lineTo(x, y);
+      }
+      this.graphics.stroke({ width: 1, color: palette.soft, alpha: 0.5 - 0.42 * age });
     }
   }
+
+  /** Lowest and highest place on the canvas per point since an entry. */
+  #measure(view: ViewState, first: number, middle: number, pixelsPerM: number): void {
+    const { past } = view;
+    if (this.#low.length !== past.pointCount) {
+      this.#low = new Float64Array(past.pointCount);
+      this.#high = new Float64Array(past.pointCount);
+    }
+    for (let i = 0; i < past.pointCount; i++) {
+      let low = Number.POSITIVE_INFINITY;
+      let high = Number.NEGATIVE_INFINITY;
+      for (let entry = first; entry < past.total; entry++) {
+        const value = past.sideways(entry, i);
+        if (value < low) low = value;
+        if (value > high) high = value;
+      }
+      this.#low[i] = middle - low * pixelsPerM;
+      this.#high[i] = middle - high * pixelsPerM;
+    }
+  }
+
+  #drawEnvelope(ruler: Ruler, palette: Palette): void {
+    const last = this.#low.length - 1;
+    const outline: number[] = [];
+    for (let i = 0; i <= last; i++) outline.push(stationX(ruler, i / last), this.#high[i]);
+    for (let i = last; i >= 0; i--) outline.push(stationX(ruler, i / last), this.#low[i]);
+    this.graphics.poly(outline, true).fill({ color: palette.soft, alpha: 0.06 });
+    for (const edge of [this.#low, this.#high]) {
+      for (let dash = 0; dash < last * DASHES; dash++) {
+        const [from, to] = [dash / DASHES, (dash + 0.5) / DASHES];
+        this.graphics
+          .moveTo(stationX(ruler, from / last), between(edge, from))
+          .lineTo(stationX(ruler, to / last), between(edge, to));
+      }
+    }
+    this.graphics.stroke({ width: 1, color: palette.soft, alpha: 0.75 });
+  }
+}
+
+function between(edge: Float64Array, at: number): number {
+  const i = Math.floor(at);
+  return edge[i] + (at - i) * (edge[i + 1] - edge[i]);
 }

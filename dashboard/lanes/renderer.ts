@@ -1,36 +1,40 @@
 /**
- * Chooses how Pixi draws. WebGL on a real GPU; without one, Pixi's canvas renderer, which on such machines is several
- * times faster than WebGL computed in software.
+ * Chooses how the lanes are drawn. WebGL on a GPU; the plain canvas where WebGL is missing or computed by the processor:
+ * there it draws several times fewer frames than the canvas does.
  */
-// Code made at run time would break the page's security policy; this part of Pixi does without.
 import "pixi.js/unsafe-eval";
+import "pixi.js/graphics";
 import { autoDetectRenderer, type Renderer } from "pixi.js";
 
 export type RendererName = "canvas" | "webgl";
 
-/** Names by which software rasterisers report themselves (Mesa llvmpipe and softpipe, SwiftShader, Microsoft's basic one). */
+/** Names under which browsers report WebGL without a GPU. */
 const SOFTWARE = /swiftshader|llvmpipe|softpipe|software|basic render/i;
 
-export async function createRenderer(
-  wanted: string | null,
-): Promise<{ renderer: Renderer; name: RendererName }> {
-  const name: RendererName =
-    wanted === "canvas" || wanted === "webgl" ? wanted : hasGpu() ? "webgl" : "canvas";
-  const renderer = await autoDetectRenderer({
-    preference: name,
+/** @param asked by the page's address ("canvas" or "webgl"), else null */
+export function chooseRenderer(asked: string | null): RendererName {
+  if (asked === "canvas" || asked === "webgl") return asked;
+  const context = document.createElement("canvas").getContext("webgl2");
+  if (context === null) return "canvas";
+  const info = context.getExtension("WEBGL_debug_renderer_info");
+  const name = String(context.getParameter(info?.UNMASKED_RENDERER_WEBGL ?? context.RENDERER));
+  context.getExtension("WEBGL_lose_context")?.loseContext();
+  return SOFTWARE.test(name) ? "canvas" : "webgl";
+}
+
+/** Device pixels a CSS pixel; more than two cannot be seen and cost time. */
+export function screenResolution(): number {
+  return Math.min(2, devicePixelRatio);
+}
+
+export async function createRenderer(name: RendererName): Promise<Renderer> {
+  return autoDetectRenderer({
+    preference: [name],
+    manageImports: false,
     backgroundAlpha: 0,
     antialias: true,
     autoDensity: true,
-    resolution: Math.min(devicePixelRatio, name === "webgl" ? 2 : 1.5),
+    resolution: screenResolution(),
+    hello: false,
   });
-  return { renderer, name };
-}
-
-function hasGpu(): boolean {
-  const gl = document.createElement("canvas").getContext("webgl2");
-  if (gl === null) return false;
-  const info = gl.getExtension("WEBGL_debug_renderer_info");
-  const described = String(gl.getParameter(info ? info.UNMASKED_RENDERER_WEBGL : gl.RENDERER));
-  gl.getExtension("WEBGL_lose_context")?.loseContext();
-  return !SOFTWARE.test(described);
 }

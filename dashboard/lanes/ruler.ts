@@ -1,71 +1,75 @@
-/** The ruler from nose to tail, with a mark in the body's colour and a name for each sensor. */
+/** The ruler from nose to tail with a triangle and a name where each sensor sits. Drawn once; changes with the rig only. */
 import { Container, Graphics } from "pixi.js";
+import { bodyColour, type Palette } from "../look/palette.ts";
+import { setText } from "../panels/text.ts";
 import type { ViewState } from "../stream/view-state.ts";
-import { type Box, type Lane, stationX, Ticks } from "./lane.ts";
-import { bodyColour, type Palette } from "./palette.ts";
+import { Labels } from "./labels.ts";
+import { type Box, type Lane, type Ruler, stationX } from "./lane.ts";
 
-/** The line lies so far below the lane's top. */
-const LINE_Y = 28;
-const NAME_Y = 48;
-/** Names keep this far apart, CSS pixels. */
-const NAME_GAP = 8;
+/** Places within the lane, pixels from its top. */
+const LABEL_Y = 14;
+const LINE_Y = 32;
+const TRIANGLE_Y = 37;
 
 export class RulerLane implements Lane {
-  readonly shapes = new Container();
-  readonly #line = new Graphics();
-  readonly #ticks = new Ticks("lane-ruler");
-  readonly #names = document.querySelector<HTMLElement>("#names")!;
-  readonly #length = document.querySelector<HTMLElement>("#body-length")!;
+  readonly container = new Container();
+  readonly #graphics = new Graphics();
+  readonly #labels: Labels;
+  readonly #lengthText: HTMLElement;
+  #box: Box = { left: 0, top: 0, width: 0, height: 0 };
+  #ruler: Ruler = { left: 0, width: 0 };
+  #palette: Palette | undefined;
+  #drawnFor: unknown;
 
-  constructor() {
-    this.shapes.addChild(this.#line);
+  constructor(section: HTMLElement) {
+    this.#labels = new Labels(section, "axis");
+    this.#lengthText = section.querySelector("#ruler-length")!;
+    this.container.addChild(this.#graphics);
   }
 
-  place(box: Box, palette: Palette, { welcome }: ViewState): void {
-    const y = Math.round(box.top + LINE_Y) + 0.5;
-    const line = this.#line.clear().moveTo(box.nose, y).lineTo(box.tail, y);
-    const ticks = [];
-    for (let percent = 0; percent <= 100; percent += 2) {
-      const x = Math.round(stationX(box, percent / 100)) + 0.5;
-      line.moveTo(x, y).lineTo(x, y - (percent % 20 === 0 ? 8 : percent % 10 === 0 ? 6 : 3));
-      if (percent % 20 !== 0) continue;
-      const text = percent === 0 ? "nose" : percent === 100 ? "tail" : `${percent} %`;
-      ticks.push({ text, x, y: 3, align: "middle" as const });
-    }
-    line.stroke({ width: 1, color: palette.soft });
-    this.#ticks.show(ticks);
-    this.#length.textContent = welcome === null ? "" : `${Math.round(welcome.lengthM * 1000)} mm`;
-    const size = (welcome?.sensors.length ?? 0) > 24 ? 3.5 : 6;
-    for (const { station } of welcome?.sensors ?? []) {
-      const x = stationX(box, station);
-      line
-        .poly([x, y + 5, x + size, y + 5 + size * 1.8, x - size, y + 5 + size * 1.8])
-        .fill(bodyColour(palette, station));
-    }
-    this.#showNames(box, welcome?.sensors ?? []);
+  resize(box: Box, ruler: Ruler, palette: Palette): void {
+    this.#box = box;
+    this.#ruler = ruler;
+    this.#palette = palette;
+    this.#drawnFor = undefined;
   }
 
-  draw(): void {}
-
-  /** Names nose to tail; one that would touch the one before is left out (its column still tells it). */
-  #showNames(box: Box, sensors: readonly { name: string; station: number }[]): void {
-    this.#names.replaceChildren();
-    let free = Number.NEGATIVE_INFINITY;
-    for (const { name, station } of sensors) {
-      const span = document.createElement("span");
-      span.textContent = name;
-      span.style.top = `${NAME_Y}px`;
-      this.#names.append(span);
-      const half = span.offsetWidth / 2;
-      // Long names near the ends stay on the page.
-      const right = this.#names.parentElement!.clientWidth - 4;
-      const x = Math.min(Math.max(stationX(box, station), half + 4), right - half);
-      if (x - half < free) {
-        span.remove();
-        continue;
-      }
-      span.style.left = `${x}px`;
-      free = x + half + NAME_GAP;
+  draw(view: ViewState): boolean {
+    if (this.#palette === undefined || this.#drawnFor === view.welcome) return false;
+    this.#drawnFor = view.welcome;
+    this.#graphics.clear();
+    this.#drawScale(this.#palette);
+    const sensors = view.welcome?.sensors ?? [];
+    const half = sensors.length > 24 ? 4 : 6;
+    const y = this.#box.top + TRIANGLE_Y;
+    for (const { station } of sensors) {
+      const x = stationX(this.#ruler, station);
+      this.#graphics
+        .poly([x, y, x + half, y + 1.8 * half, x - half, y + 1.8 * half])
+        .fill(bodyColour(this.#palette.body, station));
     }
+    setText(this.#lengthText, view.welcome === null ? "" : lengthText(view.welcome.lengthM));
+    return true;
   }
+
+  #drawScale(palette: Palette): void {
+    const y = Math.round(this.#box.top + LINE_Y) + 0.5;
+    const { left, width } = this.#ruler;
+    this.#graphics.moveTo(left, y).lineTo(left + width, y);
+    this.#labels.begin();
+    for (let k = 0; k <= 50; k++) {
+      const x = left + (k / 50) * width;
+      const length = k % 10 === 0 ? 9 : k % 5 === 0 ? 6 : 3;
+      this.#graphics.moveTo(x, y).lineTo(x, y - length);
+      if (k % 10 !== 0) continue;
+      const text = k === 0 ? "nose" : k === 50 ? "tail" : `${2 * k} %`;
+      this.#labels.put(text, x, LABEL_Y, "middle");
+    }
+    this.#labels.end();
+    this.#graphics.stroke({ width: 1, color: palette.soft });
+  }
+}
+
+function lengthText(m: number): string {
+  return m < 2 ? `${Math.round(m * 1000)} mm` : `${m.toFixed(2)} m`;
 }

@@ -1,62 +1,58 @@
-/** The canvas with all lanes on it: places them under one ruler, and draws once a display frame. */
+/** One canvas under one element of the page, and the lanes that are drawn on it, each at the place of its own element. */
 import { Container, type Renderer } from "pixi.js";
+import type { Palette } from "../look/palette.ts";
 import type { ViewState } from "../stream/view-state.ts";
-import { AboveLane } from "./above.ts";
-import type { Box, Lane } from "./lane.ts";
-import { type Palette, readPalette } from "./palette.ts";
-import { createRenderer, type RendererName } from "./renderer.ts";
-import { RulerLane } from "./ruler.ts";
-import { SideLane } from "./side.ts";
-import { StripLane } from "./strip.ts";
-import { WaveLane } from "./wave.ts";
+import type { Lane, Ruler } from "./lane.ts";
+import { screenResolution } from "./renderer.ts";
+
+export interface PlacedLane {
+  readonly element: HTMLElement;
+  readonly lane: Lane;
+}
 
 export class Stage {
-  readonly rendererName: RendererName;
+  readonly #host: HTMLElement;
   readonly #renderer: Renderer;
+  readonly #lanes: readonly PlacedLane[];
   readonly #root = new Container();
-  readonly #host = document.querySelector<HTMLElement>("#lanes")!;
-  readonly #lanes: readonly { readonly section: HTMLElement; readonly lane: Lane }[];
-  #palette: Palette = readPalette();
-  /** Where nose and tail lie, for the columns beneath the ruler. */
-  ruler = { nose: 0, tail: 0 };
+  #stale = true;
 
-  static async create(wanted: string | null): Promise<Stage> {
-    const { renderer, name } = await createRenderer(wanted);
-    return new Stage(renderer, name);
-  }
-
-  private constructor(renderer: Renderer, name: RendererName) {
+  constructor(host: HTMLElement, renderer: Renderer, lanes: readonly PlacedLane[]) {
+    this.#host = host;
     this.#renderer = renderer;
-    this.rendererName = name;
-    this.#host.prepend(renderer.canvas);
-    this.#lanes = [
-      { section: "lane-above", lane: new AboveLane() },
-      { section: "lane-side", lane: new SideLane() },
-      { section: "lane-ruler", lane: new RulerLane() },
-      { section: "lane-wave", lane: new WaveLane() },
-      { section: "lane-strip", lane: new StripLane() },
-    ].map(({ section, lane }) => ({ section: document.getElementById(section)!, lane }));
-    for (const { lane } of this.#lanes) this.#root.addChild(lane.shapes);
+    this.#lanes = lanes;
+    renderer.canvas.setAttribute("aria-hidden", "true");
+    host.prepend(renderer.canvas);
+    renderer.canvas.addEventListener("webglcontextrestored", () => {
+      this.#stale = true;
+    });
+    for (const { lane } of lanes) this.#root.addChild(lane.container);
   }
 
-  /** Takes over the page's size, light and rig: everything that stands still is drawn anew. */
-  place(view: ViewState): void {
-    this.#palette = readPalette();
+  /** Fades all that is drawn: what it shows is no longer so. */
+  set dimmed(dimmed: boolean) {
+    // On the element: pieces that overlap would shine through one another if each was faded.
+    this.#renderer.canvas.classList.toggle("dimmed", dimmed);
+  }
+
+  resize(ruler: Ruler, palette: Palette): void {
     const { clientWidth, clientHeight } = this.#host;
-    this.#renderer.resize(clientWidth, clientHeight);
-    const style = getComputedStyle(this.#host);
-    const length = (name: string) => Number.parseFloat(style.getPropertyValue(name));
-    this.ruler = { nose: length("--gutter"), tail: clientWidth - length("--edge") };
-    for (const { section, lane } of this.#lanes) {
-      const box: Box = { top: section.offsetTop, height: section.clientHeight, ...this.ruler };
-      lane.place(box, this.#palette, view);
+    this.#renderer.resize(Math.max(1, clientWidth), Math.max(1, clientHeight), screenResolution());
+    for (const { element, lane } of this.#lanes) {
+      const { offsetLeft, offsetTop, offsetWidth, offsetHeight } = element;
+      const box =
+        element === this.#host
+          ? { left: 0, top: 0, width: clientWidth, height: clientHeight }
+          : { left: offsetLeft, top: offsetTop, width: offsetWidth, height: offsetHeight };
+      lane.resize(box, ruler, palette);
     }
+    this.#stale = true;
   }
 
-  draw(view: ViewState, nowMs: number): void {
-    const live = view.live || !view.hasFrame ? "yes" : "no";
-    if (this.#host.dataset.live !== live) this.#host.dataset.live = live;
-    for (const { lane } of this.#lanes) lane.draw(view, nowMs);
+  draw(view: ViewState): void {
+    for (const { lane } of this.#lanes) if (lane.draw(view)) this.#stale = true;
+    if (!this.#stale) return;
+    this.#stale = false;
     this.#renderer.render(this.#root);
   }
 }

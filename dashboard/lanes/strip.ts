@@ -1,87 +1,124 @@
-/** The last ten minutes at a glance: how far the tail went to either side, and every flag at its moment. */
+/** The last ten minutes: how far the tail went to either side, second by second, and the flags where they began. */
 import { Container, Graphics } from "pixi.js";
-import type { Severity } from "../../bridge/wire/flag.ts";
+import type { StripMessage } from "../../bridge/wire/messages.ts";
+import type { Palette } from "../look/palette.ts";
+import { setText } from "../panels/text.ts";
+import { severityRank } from "../stream/sensors.ts";
 import type { ViewState } from "../stream/view-state.ts";
-import { type Box, type Lane, Ticks } from "./lane.ts";
-import type { Palette } from "./palette.ts";
+import { drawGlyph } from "./glyphs.ts";
+import { halfRange } from "./grid-steps.ts";
+import { Labels } from "./labels.ts";
+import type { Box, Lane, Ruler } from "./lane.ts";
 
 const SPAN_S = 600;
-const REDRAW_MS = 500;
-const GLYPH_Y = 12;
-const BASE_Y = 42;
-const HALF_HEIGHT = 18;
-const LABELS_Y = 64;
+/** Places within the lane, pixels: glyphs above, times beneath. */
+const GLYPH_Y = 14;
+const TOP = 22;
+const BOTTOM = 24;
 
-export class StripLane implements Lane {
-  readonly shapes = new Container();
-  readonly #band = new Graphics();
-  readonly #ticks = new Ticks("lane-strip");
-  #box: Box = { top: 0, height: 0, nose: 0, tail: 0 };
-  #palette: Palette | null = null;
-  #drawnAtMs = Number.NEGATIVE_INFINITY;
+export class Strip implements Lane {
+  readonly container = new Container();
+  readonly #graphics = new Graphics();
+  readonly #labels: Labels;
+  readonly #scaleText: HTMLElement;
+  #box: Box = { left: 0, top: 0, width: 0, height: 0 };
+  #ruler: Ruler = { left: 0, width: 0 };
+  #palette: Palette | undefined;
+  #drawnStrip: unknown;
+  #drawnFlags: unknown;
 
-  constructor() {
-    this.shapes.addChild(this.#band);
+  constructor(section: HTMLElement) {
+    this.#labels = new Labels(section, "axis");
+    this.#scaleText = section.querySelector("#strip-scale")!;
+    this.container.addChild(this.#graphics);
   }
 
-  place(box: Box, palette: Palette, view: ViewState): void {
+  resize(box: Box, ruler: Ruler, palette: Palette): void {
     this.#box = box;
+    this.#ruler = ruler;
     this.#palette = palette;
-    const ticks = [];
-    for (let minutes = 0; minutes <= 10; minutes += 2) {
-      const text = minutes === 0 ? "now" : `${minutes} min ago`;
-      ticks.push({ text, x: this.#x(minutes * 60), y: LABELS_Y, align: "middle" as const });
+    this.#drawnStrip = undefined;
+    this.#labels.begin();
+    const everyMinutes = ruler.width < 500 ? 5 : 2;
+    for (let minutes = 0; minutes <= 10; minutes += everyMinutes) {
+      const x = ruler.left + (1 - minutes / 10) * ruler.width;
+      const anchor = minutes === 0 ? "right" : minutes === 10 ? "left" : "middle";
+      this.#labels.put(minutes === 0 ? "now" : `${minutes} min ago`, x, box.height - 11, anchor);
     }
-    this.#ticks.show(ticks);
-    this.#drawnAtMs = Number.NEGATIVE_INFINITY;
-    this.draw(view, 0);
+    this.#labels.end();
   }
 
-  draw(view: ViewState, nowMs: number): void {
-    if (nowMs - this.#drawnAtMs < REDRAW_MS || this.#palette === null) return;
-    this.#drawnAtMs = nowMs;
-    const { top, nose, tail } = this.#box;
-    const band = this.#band.clear();
-    const y = Math.round(top + BASE_Y) + 0.5;
-    band.moveTo(nose, y).lineTo(tail, y).stroke({ width: 1, color: this.#palette.faint });
-    this.#drawBand(view, band, y);
-    const nowS = view.status?.hubTimeS ?? 0;
-    for (const { startS, severity } of [...view.flags.ended, ...view.flags.open]) {
-      if (nowS - startS <= SPAN_S && nowS >= startS) this.#drawFlag(this.#x(nowS - startS), severity);
+  /** @returns whether anything changed */
+  draw(view: ViewState): boolean {
+    const palette = this.#palette;
+    if (palette === undefined || (view.strip === this.#drawnStrip && view.flags === this.#drawnFlags)) {
+      return false;
+    }
+    this.#drawnStrip = view.strip;
+    this.#drawnFlags = view.flags;
+    this.#graphics.clear();
+    const { left, width } = this.#ruler;
+    const middle = Math.round(this.#box.top + (TOP + this.#box.height - BOTTOM) / 2) + 0.5;
+    this.#graphics
+      .moveTo(left, middle)
+      .lineTo(left + width, middle)
+      .stroke({ width: 1, color: palette.hairline });
+    if (view.strip === null) return true;
+    const endS = view.strip.startS + view.strip.lowM.length * view.strip.columnS;
+    this.#drawExcursion(view.strip, endS, middle, palette);
+    this.#drawFlags(view, endS, palette);
+    return true;
+  }
+
+  #x(timeS: number, endS: number): number {
+    return this.#ruler.left + (1 - (endS - timeS) / SPAN_S) * this.#ruler.width;
+  }
+
+  #drawExcursion(strip: StripMessage, endS: number, middle: number, palette: Palette): void {
+    const { startS, columnS, lowM, highM } = strip;
+    let peak = 0.001;
+    for (let i = 0; i < lowM.length; i++) peak = Math.max(peak, -(lowM[i] ?? 0), highM[i] ?? 0);
+    const half = halfRange(peak);
+    setText(this.#scaleText, `tail, ± ${Number((half * 1000).toPrecision(3))} mm`);
+    const pixelsPerM = (this.#box.height - TOP - BOTTOM) / 2 / half;
+    let outline: number[] = [];
+    const back: number[] = [];
+    for (let i = 0; i <= lowM.length; i++) {
+      const low = lowM[i] ?? null;
+      const high = highM[i] ?? null;
+      if (low === null || high === null) {
+        for (let k = back.length - 2; k >= 0; k -= 2) outline.push(back[k], back[k + 1]);
+        if (outline.length > 0) this.#graphics.poly(outline, true).fill({ color: palette.soft, alpha: 0.55 });
+        outline = [];
+        back.length = 0;
+        continue;
+      }
+      const x = this.#x(startS + i * columnS, endS);
+      const next = this.#x(startS + (i + 1) * columnS, endS);
+      // At least a hairline high: a body at rest is not the same as nothing received.
+      const top = Math.min(middle - 0.5, middle - high * pixelsPerM);
+      const bottom = Math.max(middle + 0.5, middle - low * pixelsPerM);
+      outline.push(x, top, next, top);
+      back.push(x, bottom, next, bottom);
     }
   }
 
-  #x(agoS: number): number {
-    const { nose, tail } = this.#box;
-    return tail - (agoS / SPAN_S) * (tail - nose);
-  }
-
-  #drawBand({ strip, status }: ViewState, band: Graphics, y: number): void {
-    if (strip === null || strip.lowM.length === 0) return;
-    const nowS = status?.hubTimeS ?? strip.startS + strip.lowM.length * strip.columnS;
-    let greatest = 1e-3;
-    for (const value of [...strip.lowM, ...strip.highM]) greatest = Math.max(greatest, Math.abs(value ?? 0));
-    strip.lowM.forEach((low, i) => {
-      const high = strip.highM[i];
-      if (low === null || high === null || high === undefined) return;
-      const from = this.#x(Math.max(0, nowS - (strip.startS + i * strip.columnS)));
-      const to = this.#x(Math.max(0, nowS - (strip.startS + (i + 1) * strip.columnS)));
-      const up = (high / greatest) * HALF_HEIGHT;
-      const down = (low / greatest) * HALF_HEIGHT;
-      if (to > this.#box.nose) band.rect(from, y - up, Math.max(1, to - from), Math.max(1, up - down));
-    });
-    band.fill({ color: this.#palette!.soft, alpha: 0.55 });
-  }
-
-  #drawFlag(x: number, severity: Severity): void {
-    const y = this.#box.top + GLYPH_Y;
-    const color = this.#palette![severity];
-    this.#band
-      .moveTo(x, y + 5)
-      .lineTo(x, this.#box.top + BASE_Y + HALF_HEIGHT)
-      .stroke({ width: 1.5, color });
-    if (severity === "alarm") this.#band.rect(x - 4.5, y - 4.5, 9, 9).fill(color);
-    else if (severity === "caution") this.#band.poly([x, y - 6, x + 6, y, x, y + 6, x - 6, y]).fill(color);
-    else this.#band.circle(x, y, 4).stroke({ width: 2, color });
+  #drawFlags(view: ViewState, endS: number, palette: Palette): void {
+    // Worst last, so that an alarm is never covered.
+    const flags = [...(view.flags?.ended ?? []), ...(view.flags?.open ?? [])].sort(
+      (a, b) => severityRank(a.severity) - severityRank(b.severity),
+    );
+    for (const flag of flags) {
+      if (endS - flag.startS > SPAN_S) continue;
+      const { left, width } = this.#ruler;
+      const x = Math.min(left + width - 1, Math.max(left, Math.round(this.#x(flag.startS, endS)) + 0.5));
+      const colour = palette[flag.severity];
+      const top = this.#box.top;
+      this.#graphics
+        .moveTo(x, top + TOP)
+        .lineTo(x, top + this.#box.height - BOTTOM)
+        .stroke({ width: 1.5, color: colour });
+      drawGlyph(this.#graphics, flag.severity, Math.min(x, left + width - 6), top + GLYPH_Y, colour);
+    }
   }
 }

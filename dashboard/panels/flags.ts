@@ -1,104 +1,115 @@
-/** Flags, newest first, with what to do; what ended lately; marks. */
-import type { Flag } from "../../bridge/wire/flag.ts";
-import type { ViewState } from "../stream/view-state.ts";
-import { duration, setText } from "./words.ts";
+/** What is wrong now, newest first, with advice; beneath it what has ended, and the marks. */
+import type { Flag, Mark } from "../../bridge/wire/flag.ts";
+import { setGlyph } from "../lanes/glyphs.ts";
+import { isLive, type ViewState } from "../stream/view-state.ts";
+import { duration, flagTitle, setText, unbroken } from "./text.ts";
 
 const ENDED_SHOWN = 8;
 const MARKS_SHOWN = 8;
 
 export class FlagsPanel {
-  readonly #open = document.getElementById("open") as HTMLElement;
-  readonly #items = new Map<number, HTMLElement>();
+  readonly #count = document.querySelector<HTMLElement>("#flag-count")!;
+  readonly #calm = document.querySelector<HTMLElement>("#all-well")!;
+  readonly #open = document.querySelector<HTMLElement>("#open")!;
+  readonly #past = document.querySelector<HTMLElement>("#past")!;
+  readonly #ended = document.querySelector<HTMLElement>("#ended")!;
+  readonly #marks = document.querySelector<HTMLElement>("#marks")!;
+  readonly #speech = document.querySelector<HTMLElement>("#alarm")!;
+  /** Elements of the open flags: a flag keeps its own while it lasts, so that a reader's place is not lost. */
+  readonly #rows = new Map<number, HTMLElement>();
   /** Alarms already spoken. */
-  readonly #announced = new Set<number>();
-  #run = -1;
+  readonly #spoken = new Set<number>();
 
-  draw(view: ViewState): void {
-    const { flags, status, run } = view;
-    if (run !== this.#run) {
-      this.#run = run;
-      this.#announced.clear();
-    }
-    const nowS = status?.hubTimeS ?? 0;
-    setText(
-      document.getElementById("flag-count") as Element,
-      flags.open.length > 0 ? `${flags.open.length} open` : "",
-    );
-    this.#drawOpen(view, nowS);
-    setText(document.getElementById("all-well") as Element, allWell(view));
-    drawList("ended", flags.ended.slice(0, ENDED_SHOWN), (flag) => [
-      `${flagTitle(view, flag)}: ${flag.detail}`,
-      `${duration(nowS - (flag.endS ?? nowS))} ago`,
+  update(view: ViewState): void {
+    const open = view.flags?.open ?? [];
+    const nowS = Math.max(view.frame.hubTimeS, view.status?.hubTimeS ?? 0);
+    setText(this.#count, open.length === 0 ? "" : `${open.length} open`);
+    setText(this.#calm, open.length > 0 ? "" : calmSentence(view));
+    this.#showOpen(open, view, nowS);
+    this.#speak(open, view);
+    const ended = (view.flags?.ended ?? []).slice(0, ENDED_SHOWN);
+    const marks = (view.marks?.marks ?? []).slice(0, MARKS_SHOWN);
+    this.#past.hidden = ended.length + marks.length === 0;
+    showPast(this.#ended, ended, (flag) => [
+      flagTitle(flag, view.welcome),
+      `${duration(nowS - (flag.endS ?? nowS))} ago, ended`,
     ]);
-    drawList("marks", view.marks.marks.slice(0, MARKS_SHOWN), (mark) => [
-      `Mark: ${mark.text}`,
-      `${duration(nowS - mark.timeS)} ago`,
-    ]);
-    this.#announce(view);
+    showPast(this.#marks, marks, (mark) => [markTitle(mark), `${duration(nowS - mark.timeS)} ago`]);
   }
 
-  #drawOpen(view: ViewState, nowS: number): void {
-    const { open } = view.flags;
-    for (const [id, item] of this.#items) {
+  /** A new run counts its flags from one again. */
+  forget(): void {
+    this.#spoken.clear();
+  }
+
+  #showOpen(open: readonly Flag[], view: ViewState, nowS: number): void {
+    for (const [id, row] of this.#rows) {
       if (open.some((flag) => flag.id === id)) continue;
-      item.remove();
-      this.#items.delete(id);
+      row.remove();
+      this.#rows.delete(id);
     }
     open.forEach((flag, place) => {
-      let item = this.#items.get(flag.id);
-      if (item === undefined) {
-        item = document.createElement("li");
-        item.innerHTML = `<i class="glyph" aria-hidden="true"></i><div><strong></strong><small></small><p></p></div>`;
-        this.#items.set(flag.id, item);
-      }
-      if (this.#open.children[place] !== item)
-        this.#open.insertBefore(item, this.#open.children[place] ?? null);
-      item.dataset.kind = flag.kind;
-      item.dataset.severity = flag.severity;
-      (item.querySelector(".glyph") as HTMLElement).dataset.severity = flag.severity;
-      setText(item.querySelector("strong") as Element, flagTitle(view, flag));
-      setText(
-        item.querySelector("small") as Element,
-        `${flag.severity}, for ${duration(nowS - flag.startS)}, ${flag.detail}`,
-      );
-      setText(item.querySelector("p") as Element, flag.advice);
+      const row = this.#rows.get(flag.id) ?? createRow();
+      this.#rows.set(flag.id, row);
+      const there = this.#open.children[place] ?? null;
+      if (there !== row) this.#open.insertBefore(row, there);
+      row.dataset.kind = flag.kind;
+      row.dataset.severity = flag.severity;
+      setGlyph(row.querySelector(".glyph")!, flag.severity);
+      setText(row.querySelector(".title")!, flagTitle(flag, view.welcome));
+      const long = duration(nowS - flag.startS);
+      setText(row.querySelector(".detail")!, unbroken(`${flag.severity} for ${long}, ${flag.detail}`));
+      setText(row.querySelector(".advice")!, unbroken(flag.advice));
     });
   }
 
   /** Each alarm is said once to a screen reader. */
-  #announce(view: ViewState): void {
-    for (const flag of view.flags.open) {
-      if (flag.severity !== "alarm" || this.#announced.has(flag.id)) continue;
-      this.#announced.add(flag.id);
-      setText(document.getElementById("alarm") as Element, `Alarm: ${flagTitle(view, flag)}. ${flag.advice}`);
+  #speak(open: readonly Flag[], view: ViewState): void {
+    for (const flag of open) {
+      if (flag.severity !== "alarm" || this.#spoken.has(flag.id)) continue;
+      this.#spoken.add(flag.id);
+      setText(this.#speech, `Alarm: ${flagTitle(flag, view.welcome)}. ${flag.advice}`);
     }
   }
 }
 
-/** "S4 magnetic interference"; of the whole rig, the kind alone. */
-export function flagTitle({ welcome }: ViewState, flag: Flag): string {
-  if (flag.sensor < 0) return flag.kind.charAt(0).toUpperCase() + flag.kind.slice(1);
-  return `${welcome?.sensors[flag.sensor]?.name ?? `Sensor ${flag.sensor + 1}`} ${flag.kind}`;
+function calmSentence(view: ViewState): string {
+  if (view.welcome === null || view.flags === null || view.runFrameCount === 0)
+    return "Nothing is known yet.";
+  if (!isLive(view)) return "Nothing was open when the data stopped.";
+  const sensors = view.welcome.sensors.length;
+  return sensors === 1
+    ? "Nothing speaks against the sensor."
+    : `Nothing speaks against any of the ${sensors} sensors.`;
 }
 
-function allWell({ flags, live, welcome }: ViewState): string {
-  const drifting = welcome?.heading === "free" ? "Heading drifts: gyroscopes only." : "";
-  if (flags.open.length > 0) return drifting;
-  return `${live ? "Nothing speaks against any sensor." : ""} ${drifting}`.trim();
+function markTitle({ text, from }: Mark): string {
+  return from === "hub button" ? text : `Mark: ${text}`;
 }
 
-function drawList<T>(id: string, values: readonly T[], text: (value: T) => readonly [string, string]): void {
-  const list = document.getElementById(id) as HTMLElement;
-  while (list.children.length > values.length) list.lastElementChild?.remove();
+/** Brings a list up to date: what, and how long ago. */
+function showPast<T>(
+  list: HTMLElement,
+  values: readonly T[],
+  text: (value: T) => readonly [string, string],
+): void {
+  while (list.children.length > values.length) list.lastElementChild!.remove();
   values.forEach((value, i) => {
-    let item = list.children[i];
-    if (item === undefined) {
-      item = document.createElement("li");
-      item.append(document.createElement("span"), document.createElement("span"));
-      list.append(item);
-    }
+    const row = list.children[i] ?? list.appendChild(createPastRow());
     const [what, when] = text(value);
-    setText(item.children[0] as Element, what);
-    setText(item.children[1] as Element, when);
+    setText(row.children[0]!, what);
+    setText(row.children[1]!, when);
   });
+}
+
+function createRow(): HTMLElement {
+  const row = document.createElement("li");
+  row.innerHTML = `<span class="glyph"></span><p class="title"></p><p class="detail soft"></p><p class="advice"></p>`;
+  return row;
+}
+
+function createPastRow(): HTMLElement {
+  const row = document.createElement("li");
+  row.innerHTML = `<span class="what"></span><span class="soft when"></span>`;
+  return row;
 }

@@ -1,68 +1,73 @@
-/** The designed states: what is shown over the lanes when there is no live picture, and what to do about it. */
-import type { Severity } from "../../bridge/wire/flag.ts";
-import type { ViewState } from "../stream/view-state.ts";
-import { type LinkWord, linkWord } from "./header.ts";
-import { duration, setText } from "./words.ts";
+/** What stands over the lanes when they are not live: what has happened, how old the shape is, and what to do. */
+import { type LinkWord, linkWord, type ViewState } from "../stream/view-state.ts";
+import { duration, setText } from "./text.ts";
 
-interface Notice {
-  readonly severity: Severity;
+export interface NoticeText {
   readonly title: string;
-  readonly text: string;
+  readonly detail: string;
+  readonly advice: string;
 }
 
-export function drawNotice(view: ViewState): void {
-  const element = document.getElementById("notice") as HTMLElement;
-  const notice = noticeFor(view, linkWord(view), performance.now());
-  element.hidden = notice === null;
-  if (notice === null) return;
-  element.dataset.severity = notice.severity;
-  setText(element.querySelector("strong") as Element, notice.title);
-  setText(element.querySelector("span") as Element, notice.text);
-}
+export class Notice {
+  readonly #host = document.querySelector<HTMLElement>("#notice")!;
+  readonly #title = document.querySelector<HTMLElement>("#notice-title")!;
+  readonly #detail = document.querySelector<HTMLElement>("#notice-detail")!;
+  readonly #advice = document.querySelector<HTMLElement>("#notice-advice")!;
+  readonly #speech = document.querySelector<HTMLElement>("#link-speech")!;
 
-/** @param nowMs page time, for how old the shape is */
-export function noticeFor(view: ViewState, word: LinkWord, nowMs: number): Notice | null {
-  const { status, welcome, hasFrame } = view;
-  const detail = status?.linkDetail ?? "";
-  const age = hasFrame ? `The shape is ${duration((nowMs - view.frameAtMs) / 1000)} old.` : "";
-  switch (word) {
-    case "connecting":
-      return {
-        severity: "notice",
-        title: "Connecting to the bridge",
-        text: "If this stays, start it: npm start.",
-      };
-    case "refused":
-      return {
-        severity: "alarm",
-        title: "The bridge refuses this page",
-        text: "It may be of another version, or want a token. Open the address that it printed, or reload.",
-      };
-    case "gone":
-      return {
-        severity: "alarm",
-        title: "The bridge is gone",
-        text: sentences("Start it again; this page finds it by itself.", age),
-      };
-    case "opening":
-      return { severity: "notice", title: "Waiting for the port", text: detail };
-    case "closed":
-      return { severity: "alarm", title: "Unplugged", text: sentences(detail, age) };
-    case "silent":
-      if (!hasFrame) return { severity: "notice", title: "Waiting for the first sweep", text: detail };
-      return { severity: "alarm", title: "The link is silent", text: sentences(detail, age) };
-    case "ended":
-      return {
-        severity: "notice",
-        title: welcome?.source.kind === "trial" ? "The trial has ended" : "The run has ended",
-        text: sentences(detail, age),
-      };
-    case "flowing":
-      if (hasFrame) return null;
-      return { severity: "notice", title: "Waiting for the first sweep", text: detail };
+  update(view: ViewState, nowMs: number): void {
+    const text = noticeText(view, linkWord(view), nowMs);
+    this.#host.hidden = text === null;
+    setText(this.#speech, text?.title ?? "");
+    if (text === null) return;
+    setText(this.#title, text.title);
+    setText(this.#detail, text.detail);
+    setText(this.#advice, text.advice);
   }
 }
 
-function sentences(...parts: readonly string[]): string {
-  return parts.filter((part) => part !== "").join(" ");
+/**
+ * @param nowMs page time, for how old the shape is
+ * @returns null when the lanes are live
+ */
+export function noticeText(view: ViewState, word: LinkWord, nowMs: number): NoticeText | null {
+  const detail = view.status?.linkDetail ?? "";
+  const shown = view.runFrameCount > 0;
+  const age = shown ? `The shape is ${duration((nowMs - view.frameAtMs) / 1000)} old.` : "";
+  switch (word) {
+    case "connecting":
+      return { title: "Connecting to the bridge", detail: "If this stays, start it: npm start.", advice: "" };
+    case "refused":
+      return {
+        title: "The bridge refuses this page",
+        detail: "It answers, but gives no stream.",
+        advice: "Open the whole address that it printed when it started, with its token.",
+      };
+    case "other version":
+      return {
+        title: "This page and the bridge are of different versions",
+        detail: "They would misunderstand each other, so nothing is shown.",
+        advice: "Reload this page.",
+      };
+    case "gone":
+      return {
+        title: "The bridge is gone",
+        detail: age,
+        advice: "Start it again; this page finds it by itself.",
+      };
+    case "opening":
+      return { title: "Waiting for the port", detail, advice: "" };
+    case "closed":
+      return { title: "Unplugged", detail, advice: age };
+    case "silent":
+      return shown
+        ? { title: "The link is silent", detail, advice: age }
+        : { title: "Waiting for the first sweep", detail, advice: "" };
+    case "ended": {
+      const title = view.welcome?.source.kind === "trial" ? "The trial has ended" : "The run has ended";
+      return { title, detail, advice: age };
+    }
+    case "flowing":
+      return shown ? null : { title: "Waiting for the first sweep", detail, advice: "" };
+  }
 }

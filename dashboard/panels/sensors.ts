@@ -1,169 +1,246 @@
-/** A column for each sensor beneath its mark on the ruler: headroom, field, delivery, trouble. */
+/**
+ * Beneath the ruler, one column per sensor: its name, how much of its ranges is still free, how far the magnetic field is
+ * off, and what share of its samples was delivered. Where columns stand close, bars are upright and numbers are shown for
+ * sensors in trouble, and for the one that is pointed at or focused.
+ */
 import type { FlagKind, Severity } from "../../bridge/wire/flag.ts";
-import type { DisplayFrame } from "../../bridge/wire/frame.ts";
-import { accelHeadroom, delivered, fieldOff, gyroHeadroom, TRUST_WORDS, trustOf } from "../stream/sensors.ts";
+import { setGlyph, setSeverity } from "../lanes/glyphs.ts";
+import { type Ruler, stationX } from "../lanes/lane.ts";
+import { placeNames } from "../lanes/name-places.ts";
+import {
+  ACCEL_HEADROOM,
+  DELIVERED,
+  FIELD_OFF,
+  GYRO_HEADROOM,
+  openSeverity,
+  sensorLost,
+  sensorNumber,
+  trustWord,
+} from "../stream/sensors.ts";
 import type { ViewState } from "../stream/view-state.ts";
-import { finePercent, percent, setText } from "./words.ts";
+import { percent, setText } from "./text.ts";
 
 interface Row {
-  readonly title: string;
-  readonly value: (frame: DisplayFrame, sensor: number) => number;
-  /** Flags that speak of this row. */
-  readonly kinds: readonly FlagKind[];
-  /** A bar that is full at this share. */
+  readonly name: string;
+  readonly which: number;
+  /** Told in fractions of a percent where it is close to whole. */
+  readonly fine: boolean;
+  /** Share that fills the bar. */
   readonly full: number;
-  readonly say: (share: number) => string;
+  readonly kinds: readonly FlagKind[];
 }
 
 const ROWS: readonly Row[] = [
-  { title: "Gyro headroom", value: gyroHeadroom, kinds: ["gyro saturation"], full: 1, say: percent },
-  { title: "Accel headroom", value: accelHeadroom, kinds: ["accel saturation"], full: 1, say: percent },
   {
-    title: "Field off by",
-    value: fieldOff,
+    name: "Gyro headroom",
+    which: GYRO_HEADROOM,
+    fine: false,
+    full: 1,
+    kinds: ["gyro saturation"],
+  },
+  { name: "Accel headroom", which: ACCEL_HEADROOM, fine: false, full: 1, kinds: ["accel saturation"] },
+  {
+    name: "Field off by",
+    which: FIELD_OFF,
+    fine: false,
+    full: 0.4,
     kinds: ["magnetic interference", "rig-wide magnetic interference", "mag saturation"],
-    full: 0.5,
-    say: percent,
   },
   {
-    title: "Delivered",
-    value: delivered,
-    kinds: ["lost samples", "sensor read errors", "stuck axis", "link silent", "corrupt packets"],
+    name: "Delivered",
+    which: DELIVERED,
+    fine: true,
     full: 1,
-    say: finePercent,
+    kinds: ["lost samples", "sensor read errors", "stuck axis"],
   },
 ];
 
-/** Between columns, CSS pixels: what numbers beside the bars need, and what bars alone need. */
-const ROOM_FOR_NUMBERS = 108;
-const ROOM_FOR_BARS = 34;
-
-/** How far a column with numbers reaches to either side of its sensor's mark, the gutter's and the edge's slack taken off. */
-const COLUMN_LEFT = 46;
-const COLUMN_RIGHT = 46;
+/** Least distance between sensors at which a bar and its number fit side by side, pixels. */
+const ROOMY = 112;
+/** Least distance at which a number fits beside an upright bar. */
+const NUMBER_ROOM = 52;
+const NAME_GAP = 8;
+/** How far a bar and its number reach to the right of the sensor's place. */
+const NUMBER_END = 66;
 
 interface Cell {
-  readonly element: HTMLElement;
+  readonly host: HTMLElement;
   readonly glyph: HTMLElement;
-  readonly bar: HTMLElement;
+  readonly fill: HTMLElement;
   readonly number: HTMLElement;
 }
 
-export class SensorsPanel {
-  readonly #section = document.getElementById("sensors") as HTMLElement;
-  #cells: Cell[][] = [];
-  #columns: HTMLElement[] = [];
+interface Column {
+  readonly host: HTMLElement;
+  readonly name: HTMLElement;
+  /** Of the name; -1 where there is no room for it. */
+  row: number;
+  readonly cells: readonly Cell[];
+}
 
-  /** Builds the columns for a rig, or puts them where the ruler now has their sensors. */
-  place({ welcome }: ViewState, ruler: { nose: number; tail: number }): void {
-    const sensors = welcome?.sensors ?? [];
-    if (this.#columns.length !== sensors.length || this.#section.childElementCount === 0)
-      this.#build(sensors.length);
-    const x = (station: number) => ruler.nose + station * (ruler.tail - ruler.nose);
-    let gap = Number.POSITIVE_INFINITY;
-    for (let i = 1; i < sensors.length; i++) {
-      gap = Math.min(gap, x(sensors[i]?.station ?? 0) - x(sensors[i - 1]?.station ?? 0));
-    }
-    this.#section.dataset.density =
-      gap >= ROOM_FOR_NUMBERS ? "full" : gap >= ROOM_FOR_BARS ? "bars" : "ticks";
+export class SensorColumns {
+  readonly #host: HTMLElement;
+  #columns: Column[] = [];
+  #builtFor: unknown;
+  #ruler: Ruler = { left: 0, width: 0 };
+  #nameWidths: number[] = [];
+  #thinned = false;
+
+  constructor(host: HTMLElement) {
+    this.#host = host;
+  }
+
+  /** Makes the columns anew when the rig is another. @returns whether it was, and the layout with it */
+  build(view: ViewState): boolean {
+    const { welcome } = view;
+    if (welcome === this.#builtFor) return false;
+    this.#builtFor = welcome;
+    this.#host.replaceChildren(...ROWS.map(rowName));
+    this.#columns = (welcome?.sensors ?? []).map((sensor, i) => {
+      const column = createColumn(sensor.name, i);
+      this.#host.append(column.host);
+      return column;
+    });
+    return true;
+  }
+
+  resize(ruler: Ruler, view: ViewState): void {
+    this.#ruler = ruler;
+    const sensors = view.welcome?.sensors ?? [];
+    if (this.#columns.length !== sensors.length) return;
+    const centres = sensors.map((sensor) => stationX(ruler, sensor.station));
+    const pitch = leastDistance(centres, ruler);
+    const layout = pitch >= ROOMY ? "roomy" : pitch >= NUMBER_ROOM ? "close" : "tight";
+    this.#host.dataset.layout = layout;
+    const names = this.#columns.map((column) => column.name);
+    for (const name of names) name.classList.remove("unshown");
+    this.#nameWidths = names.map((name) => name.offsetWidth);
+    const { rows, thinned } = placeNames(centres, this.#nameWidths, NAME_GAP);
+    this.#thinned = thinned;
+    this.#host.style.setProperty("--name-rows", String(thinned ? 2 : Math.max(0, ...rows) + 1));
     this.#columns.forEach((column, i) => {
-      const sensor = sensors[i];
-      const at = x(sensor?.station ?? 0);
-      column.style.left = `${at}px`;
-      // Near the ends a column keeps clear of the row's title and of the panel.
-      const clear = Math.max(0, ruler.nose - at + COLUMN_LEFT) - Math.max(0, at + COLUMN_RIGHT - ruler.tail);
-      column.style.setProperty("--shift", `${clear}px`);
-      column.title = sensor?.name ?? "";
-      setText(column.querySelector(".name") as Element, sensor?.name ?? "");
+      column.row = rows[i]!;
+      column.host.style.left = `${centres[i]}px`;
+      column.host.style.setProperty("--reach", `${Math.min(60, pitch / 2)}px`);
+      // Near the tail numbers keep clear of the panel.
+      const over = layout === "roomy" ? centres[i]! + NUMBER_END - this.#host.clientWidth : 0;
+      column.host.style.setProperty("--shift", `${-Math.max(0, over)}px`);
+      this.#placeName(column, column.row);
     });
   }
 
-  draw(view: ViewState): void {
-    if (!view.hasFrame) return;
-    for (let sensor = 0; sensor < this.#columns.length; sensor++) {
-      const trust = TRUST_WORDS[trustOf(view.frame, sensor)] ?? "";
-      (this.#columns[sensor] as HTMLElement).dataset.trust = trust;
-      ROWS.forEach((row, i) => {
-        this.#drawCell(view, sensor, row, this.#cells[sensor]?.[i] as Cell);
+  #placeName(column: Column, row: number): void {
+    column.name.style.setProperty("--name-row", String(Math.max(0, row)));
+    column.name.classList.toggle("unshown", row < 0);
+  }
+
+  /** Where names are thinned out, those of sensors in trouble stand in the second row. */
+  #nameTrouble(view: ViewState): void {
+    if (!this.#thinned) return;
+    let end = Number.NEGATIVE_INFINITY;
+    this.#columns.forEach((column, i) => {
+      const x = stationX(this.#ruler, view.welcome!.sensors[i]!.station);
+      const half = this.#nameWidths[i]! / 2;
+      const wanted = column.row < 0 && openSeverity(view, i) !== null && x - half >= end;
+      if (wanted) end = x + half + NAME_GAP;
+      this.#placeName(column, wanted ? 1 : column.row);
+    });
+  }
+
+  /** Brings the numbers up to date; a few times a second. */
+  update(view: ViewState): void {
+    const sensors = view.welcome?.sensors ?? [];
+    if (this.#columns.length !== sensors.length) return;
+    this.#nameTrouble(view);
+    const known = view.runFrameCount > 0;
+    const digits = this.#host.dataset.layout === "roomy" ? 2 : 1;
+    const takenUntil = ROWS.map(() => Number.NEGATIVE_INFINITY);
+    const spoken = sensors.map(
+      ({ name }, i) => `${name}, ${known ? `orientation ${trustWord(view, i)}` : ""}:`,
+    );
+    ROWS.forEach((row, r) => {
+      this.#columns.forEach((column, i) => {
+        const value = known ? sensorNumber(view, i, row.which) : Number.NaN;
+        const severity = rowSeverity(view, i, row);
+        const cell = column.cells[r]!;
+        const text = valueText(value, row, known, sensors[i]!.hasMag, digits);
+        setText(cell.number, text);
+        const share = Number.isNaN(value) ? 0 : Math.min(1, Math.max(0.03, value / row.full));
+        cell.fill.style.setProperty("--share", share.toFixed(3));
+        setSeverity(cell.host, severity);
+        cell.host.classList.toggle("flagged", severity !== null);
+        cell.host.classList.toggle("without", Number.isNaN(value));
+        setGlyph(cell.glyph, severity);
+        // In tight layouts a number is shown where the one before it leaves room.
+        const x = stationX(this.#ruler, sensors[i]!.station);
+        const shown = severity !== null && x >= takenUntil[r]!;
+        if (shown) takenUntil[r] = x + NUMBER_ROOM;
+        cell.host.classList.toggle("shown", shown);
+        spoken[i] += ` ${row.name} ${text};`;
       });
-      this.#describe(view, sensor, trust);
-    }
-  }
-
-  #build(count: number): void {
-    this.#section.replaceChildren();
-    for (const { title } of ROWS) {
-      const row = document.createElement("div");
-      row.className = "row";
-      row.innerHTML = "<h2></h2>";
-      setText(row.firstElementChild as Element, title);
-      this.#section.append(row);
-    }
-    this.#columns = [];
-    this.#cells = [];
-    for (let sensor = 0; sensor < count; sensor++) {
-      const column = document.createElement("div");
-      column.className = "column";
-      column.dataset.sensor = String(sensor);
-      column.tabIndex = 0;
-      column.setAttribute("role", "group");
-      column.innerHTML = `<span class="name unseen"></span>`;
-      this.#cells.push(ROWS.map(() => addCell(column)));
-      this.#columns.push(column);
-      this.#section.append(column);
-    }
-  }
-
-  #drawCell(view: ViewState, sensor: number, row: Row, cell: Cell): void {
-    const value = row.value(view.frame, sensor);
-    const severity = severityOf(view, sensor, row.kinds);
-    if (severity === null) delete cell.element.dataset.severity;
-    else cell.element.dataset.severity = severity;
-    if (severity === null) delete cell.glyph.dataset.severity;
-    else cell.glyph.dataset.severity = severity;
-    const missing = Number.isNaN(value);
-    cell.bar.style.transform = `scaleX(${missing ? 0 : Math.min(1, Math.max(0.02, value / row.full)).toFixed(2)})`;
-    const say = this.#section.dataset.density === "full" ? row.say : percent;
-    setText(cell.number, missing ? "–" : say(value));
-  }
-
-  #describe({ frame, welcome }: ViewState, sensor: number, trust: string): void {
-    const parts = ROWS.map((row) => {
-      const value = row.value(frame, sensor);
-      return `${row.title} ${Number.isNaN(value) ? "not measured" : row.say(value)}`;
     });
-    const label = `${welcome?.sensors[sensor]?.name ?? ""}, orientation ${trust}. ${parts.join(", ")}`;
-    const column = this.#columns[sensor] as HTMLElement;
-    if (column.ariaLabel !== label) column.ariaLabel = label;
+    this.#columns.forEach((column, i) => {
+      column.host.classList.toggle("lost", known && sensorLost(view, i));
+      column.host.setAttribute("aria-label", spoken[i]!);
+    });
   }
 }
 
-function addCell(column: HTMLElement): Cell {
-  const element = document.createElement("div");
-  element.className = "cell";
-  element.innerHTML = `<i class="glyph"></i><span class="bar"><i></i></span><output></output>`;
-  column.append(element);
-  const [glyph, bar, number] = element.children as unknown as [HTMLElement, HTMLElement, HTMLElement];
-  return { element, glyph, bar: bar.firstElementChild as HTMLElement, number };
+/** Headroom may be low on gyro or accel: the row of the lesser one takes that flag. */
+function rowSeverity(view: ViewState, sensor: number, row: Row): Severity | null {
+  const gyroIsLess = !(
+    sensorNumber(view, sensor, ACCEL_HEADROOM) < sensorNumber(view, sensor, GYRO_HEADROOM)
+  );
+  const takesHeadroom = row.which === (gyroIsLess ? GYRO_HEADROOM : ACCEL_HEADROOM);
+  return openSeverity(view, sensor, takesHeadroom ? [...row.kinds, "low headroom"] : row.kinds);
 }
 
-/** Headroom may be low on gyro or accel: the flag's detail says which, the row of the lesser one takes it. */
-function severityOf(view: ViewState, sensor: number, kinds: readonly FlagKind[]): Severity | null {
-  let found: Severity | null = null;
-  for (const flag of view.flags.open) {
-    const here = flag.sensor === sensor;
-    if (!here) continue;
-    if (kinds.includes(flag.kind)) found = worse(found, flag.severity);
-    if (flag.kind === "low headroom") {
-      const gyroIsLess = gyroHeadroom(view.frame, sensor) <= accelHeadroom(view.frame, sensor);
-      if (kinds.includes(gyroIsLess ? "gyro saturation" : "accel saturation"))
-        found = worse(found, flag.severity);
-    }
-  }
-  return found;
+function valueText(value: number, row: Row, known: boolean, hasMag: boolean, digits: number): string {
+  if (!Number.isNaN(value)) return percent(value, row.fine ? deliveredDigits(value, digits) : 0);
+  return known && row.which === FIELD_OFF && !hasMag ? "no mag" : "–";
 }
 
-function worse(a: Severity | null, b: Severity): Severity {
-  const rank = { notice: 0, caution: 1, alarm: 2 };
-  return a !== null && rank[a] >= rank[b] ? a : b;
+/** Beneath 99 % nobody asks for hundredths; where room is short, a whole is a whole. */
+function deliveredDigits(share: number, digits: number): number {
+  return share < 0.99 || (share === 1 && digits < 2) ? 0 : digits;
+}
+
+function leastDistance(centres: readonly number[], ruler: Ruler): number {
+  let least = ruler.width;
+  for (let i = 1; i < centres.length; i++) least = Math.min(least, centres[i]! - centres[i - 1]!);
+  return least;
+}
+
+function rowName(row: Row, index: number): HTMLElement {
+  const name = document.createElement("h2");
+  name.className = "row-name";
+  name.style.setProperty("--row", String(index));
+  name.textContent = row.name;
+  return name;
+}
+
+function createColumn(name: string, sensor: number): Column {
+  const host = document.createElement("div");
+  host.className = "column";
+  host.role = "group";
+  host.tabIndex = 0;
+  host.dataset.sensor = String(sensor);
+  const label = document.createElement("span");
+  label.className = "name";
+  label.textContent = name;
+  host.append(label);
+  const cells = ROWS.map((_, index) => {
+    const cell = document.createElement("span");
+    cell.className = "cell";
+    cell.style.setProperty("--row", String(index));
+    cell.innerHTML = `<span class="glyph"></span><span class="bar"><span class="fill"></span></span><span class="value"></span>`;
+    host.append(cell);
+    return {
+      host: cell,
+      glyph: cell.querySelector<HTMLElement>(".glyph")!,
+      fill: cell.querySelector<HTMLElement>(".fill")!,
+      number: cell.querySelector<HTMLElement>(".value")!,
+    };
+  });
+  return { host, name: label, row: 0, cells };
 }

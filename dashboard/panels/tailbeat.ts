@@ -1,80 +1,100 @@
-/** Tailbeat numbers. */
+/** The tailbeat in numbers: frequency large, how long it has been steady, amplitude, and Strouhal number in a flow. */
 import type { FlagKind } from "../../bridge/wire/flag.ts";
-import type { ViewState } from "../stream/view-state.ts";
-import { flagTitle } from "./flags.ts";
-import { setText } from "./words.ts";
+import type { TailbeatView } from "../../bridge/wire/messages.ts";
+import { isLive, type ViewState } from "../stream/view-state.ts";
+import { count, flagTitle, millimetres, percent, setText } from "./text.ts";
 
-const NONE = "–";
+interface Row {
+  readonly name: string;
+  readonly value: string;
+  readonly beside: string;
+  /** What is meant exactly; shown on pointing at the name. */
+  readonly meaning: string;
+}
 
 export class TailbeatPanel {
-  readonly #frequency: Element;
-  readonly #steady: Element;
-  readonly #beats: Element;
-  readonly #figures: Element;
-  /** Label, value and relation of each figure, for rewriting in place. */
-  readonly #cells: Element[] = [];
+  readonly #frequency: HTMLElement;
+  readonly #unit: HTMLElement;
+  readonly #steady: HTMLElement;
+  readonly #steadyFor: HTMLElement;
+  readonly #rows: HTMLElement;
 
-  constructor() {
-    const section = document.getElementById("tailbeat") as HTMLElement;
-    section.innerHTML = `<h2>Tailbeat</h2>
-      <div class="headline"><span><b></b> <small>Hz</small></span><div><strong></strong><span></span></div></div>
-      <dl class="figures"></dl>`;
-    this.#frequency = section.querySelector("b") as Element;
-    this.#steady = section.querySelector("strong") as Element;
-    this.#beats = section.querySelector(".headline div span") as Element;
-    this.#figures = section.querySelector("dl") as Element;
+  constructor(host: HTMLElement) {
+    host.innerHTML = `<h2>Tailbeat</h2>
+      <div class="beat"><p><span class="large"></span><span class="unit soft">Hz</span></p>
+      <p class="steady"><strong></strong><span class="soft"></span></p></div>
+      <dl class="numbers"></dl>
+      <p class="against soft">Amplitude against the nose</p>`;
+    this.#frequency = host.querySelector(".large")!;
+    this.#unit = host.querySelector(".unit")!;
+    this.#steady = host.querySelector(".steady strong")!;
+    this.#steadyFor = host.querySelector(".steady span")!;
+    this.#rows = host.querySelector("dl")!;
   }
 
-  draw(view: ViewState): void {
-    const { status, welcome } = view;
-    const tailbeat = status?.tailbeat;
-    const frequency = tailbeat?.frequencyHz ?? null;
-    const amplitude = tailbeat?.tailAmplitudeM ?? null;
-    const beats = tailbeat?.steadyBeats ?? 0;
-    setText(this.#frequency, frequency === null ? NONE : frequency.toFixed(2));
-    const [word, why] = steadiness(view, beats);
+  update(view: ViewState): void {
+    const beat = view.runFrameCount > 0 ? view.status?.tailbeat : undefined;
+    const frequency = beat?.frequencyHz ?? null;
+    setText(this.#frequency, frequency === null ? "–" : frequency.toFixed(2));
+    this.#unit.hidden = frequency === null;
+    const [word, why] = beat === undefined ? ["", ""] : steadiness(view, beat);
     setText(this.#steady, word);
-    setText(this.#beats, why);
-    const lengthM = welcome?.lengthM ?? 0;
-    const flow = welcome?.flowMPerS ?? null;
-    const figures = [
-      [
-        "Tail amplitude",
-        amplitude === null ? NONE : `${Math.round(amplitude * 1000)} mm`,
-        amplitude === null || lengthM === 0 ? "" : `${((100 * amplitude) / lengthM).toFixed(1)} % L`,
-      ],
-    ];
-    if (flow !== null && flow > 0) {
-      const strouhal =
-        frequency === null || amplitude === null ? NONE : ((frequency * amplitude) / flow).toFixed(2);
-      figures.push(["Strouhal number", strouhal, `at ${flow.toFixed(2)} m/s`]);
-    }
-    this.#show(figures.flat());
+    setText(this.#steadyFor, why);
+    this.#show(rowsFor(view, frequency, beat?.tailAmplitudeM ?? null));
   }
 
-  #show(texts: readonly string[]): void {
-    while (this.#cells.length < texts.length) {
-      const tag = this.#cells.length % 3 === 0 ? "dt" : "dd";
-      this.#cells.push(this.#figures.appendChild(document.createElement(tag)));
+  /** Three elements a row: what, how much, and beside it. */
+  #show(rows: readonly Row[]): void {
+    const cells = this.#rows.children;
+    while (cells.length > 3 * rows.length) this.#rows.lastElementChild!.remove();
+    while (cells.length < 3 * rows.length) {
+      this.#rows.append(document.createElement(cells.length % 3 === 0 ? "dt" : "dd"));
     }
-    while (this.#cells.length > texts.length) this.#cells.pop()?.remove();
-    texts.forEach((text, i) => {
-      setText(this.#cells[i] as Element, text);
+    rows.forEach(({ name, value, beside, meaning }, i) => {
+      setText(cells[3 * i]!, name);
+      (cells[3 * i] as HTMLElement).title = meaning;
+      setText(cells[3 * i + 1]!, value);
+      setText(cells[3 * i + 2]!, beside);
     });
   }
+}
+
+function rowsFor(view: ViewState, frequencyHz: number | null, amplitudeM: number | null): Row[] {
+  const lengthM = view.welcome?.lengthM ?? Number.NaN;
+  const flow = view.welcome?.flowMPerS ?? null;
+  const rows = [
+    {
+      name: "Tail amplitude",
+      value: amplitudeM === null ? "–" : millimetres(amplitudeM),
+      beside: amplitudeM === null ? "" : `${percent(amplitudeM / lengthM, 1)} L`,
+      meaning: "peak to peak, against the nose; share of the body length L",
+    },
+  ];
+  if (flow === null || flow <= 0) return rows;
+  const known = frequencyHz !== null && amplitudeM !== null;
+  rows.push({
+    name: "Strouhal number",
+    value: known ? ((frequencyHz * amplitudeM) / flow).toFixed(2) : "–",
+    beside: `at ${flow.toFixed(2)} m/s`,
+    meaning: "frequency times tail amplitude over flow speed",
+  });
+  return rows;
 }
 
 /** Beats in a row that agree before the swimming is called steady. */
 const STEADY_BEATS = 3;
 
 /** In a word, what the numbers are worth, and in a few more, why. */
-function steadiness(view: ViewState, beats: number): readonly [string, string] {
-  const beating = (view.status?.tailbeat.frequencyHz ?? null) !== null;
-  if (!view.live) return [beating ? "last seen" : "", ""];
+function steadiness(view: ViewState, beat: TailbeatView): readonly [string, string] {
+  const beating = beat.frequencyHz !== null;
+  if (!isLive(view)) return [beating ? "last seen" : "", ""];
   if (!beating) return ["no beat", ""];
   const doubt = tailDoubt(view);
   if (doubt !== null) return ["doubtful", doubt];
-  return beats >= STEADY_BEATS ? ["steady", `for ${beats} beats`] : ["changing", ""];
+  const { steadyBeats } = beat;
+  return steadyBeats >= STEADY_BEATS
+    ? ["steady", `for ${count(steadyBeats, "beat", "beats")}`]
+    : ["changing", ""];
 }
 
 /** Kinds of trouble that bend the tail itself. */
@@ -86,8 +106,8 @@ const BENDING: readonly FlagKind[] = [
 ];
 
 /** Why the tail's numbers are not to be trusted: trouble at either of the two sensors nearest the tail tip; or null. */
-function tailDoubt(view: ViewState): string | null {
-  const count = view.welcome?.sensors.length ?? 0;
-  const flag = view.flags.open.find(({ kind, sensor }) => sensor >= count - 2 && BENDING.includes(kind));
-  return flag === undefined ? null : flagTitle(view, flag);
+function tailDoubt({ flags, welcome }: ViewState): string | null {
+  const sensors = welcome?.sensors.length ?? 0;
+  const flag = flags?.open.find(({ kind, sensor }) => sensor >= sensors - 2 && BENDING.includes(kind));
+  return flag === undefined ? null : flagTitle(flag, welcome);
 }

@@ -1,14 +1,42 @@
-/** A sensor's numbers and states within a frame (layout in bridge/wire/frame.ts; codes as in the bridge's sweeps). */
-import type { DisplayFrame } from "../../bridge/wire/frame.ts";
+/** Questions about single sensors that several lanes and panels ask. */
+import type { FlagKind, Severity } from "../../bridge/wire/flag.ts";
+import { TRUST_WORDS } from "../../bridge/wire/trust.ts";
+import type { ViewState } from "./view-state.ts";
 
-export const TRUST_WORDS = ["good", "settling", "bridged", "clipped", "heading unaided", "lost"] as const;
-export const TRUST_LOST = 5;
+/** Numbers per sensor in a frame. */
+export const GYRO_HEADROOM = 0;
+export const ACCEL_HEADROOM = 1;
+export const FIELD_OFF = 2;
+export const DELIVERED = 3;
+const NUMBERS = 4;
 
-export const trustOf = (frame: DisplayFrame, sensor: number): number => frame.sensorStates[2 * sensor]!;
-export const gyroHeadroom = (frame: DisplayFrame, sensor: number): number => frame.sensorNumbers[4 * sensor]!;
-export const accelHeadroom = (frame: DisplayFrame, sensor: number): number =>
-  frame.sensorNumbers[4 * sensor + 1]!;
-/** Share by which the magnetic field is off; NaN without magnetometer or reference. */
-export const fieldOff = (frame: DisplayFrame, sensor: number): number => frame.sensorNumbers[4 * sensor + 2]!;
-export const delivered = (frame: DisplayFrame, sensor: number): number =>
-  frame.sensorNumbers[4 * sensor + 3]!;
+const SEVERITIES: readonly Severity[] = ["notice", "caution", "alarm"];
+
+export function sensorNumber(view: ViewState, sensor: number, which: number): number {
+  return view.frame.sensorNumbers[sensor * NUMBERS + which] ?? Number.NaN;
+}
+
+/** The sensor has been away so long that its orientation means nothing. */
+export function sensorLost(view: ViewState, sensor: number): boolean {
+  return trustWord(view, sensor) === "lost";
+}
+
+/** How far a sensor's orientation can be believed, in a word. */
+export function trustWord(view: ViewState, sensor: number): string {
+  return TRUST_WORDS[view.frame.sensorStates[sensor * 2]!] ?? "";
+}
+
+/** 0 for a notice up to 2 for an alarm. */
+export function severityRank(severity: Severity): number {
+  return SEVERITIES.indexOf(severity);
+}
+
+/** Worst severity among the open flags on a sensor, or null; of some kinds only if `kinds` are given. */
+export function openSeverity(view: ViewState, sensor: number, kinds?: readonly FlagKind[]): Severity | null {
+  let worst: Severity | null = null;
+  for (const flag of view.flags?.open ?? []) {
+    if (flag.sensor !== sensor || kinds?.includes(flag.kind) === false) continue;
+    if (worst === null || severityRank(flag.severity) > severityRank(worst)) worst = flag.severity;
+  }
+  return worst;
+}

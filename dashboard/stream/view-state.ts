@@ -1,88 +1,128 @@
 /**
- * What the page knows: the newest frame, the recent past, and the newest of each text message. Written by the socket's
- * handlers only; read by lanes and panels when they draw.
+ * What the screen shows, written by the socket's handlers and read by whatever draws. Frames go into typed arrays that
+ * are reused; text messages replace the one before. `textRevision` and `frameCount` tell a reader what is new.
  */
 import { createDisplayFrame, type DisplayFrame, decodeFrame } from "../../bridge/wire/frame.ts";
 import type {
   BridgeMessage,
   FlagsMessage,
+  LinkView,
   MarksMessage,
+  RefusalMessage,
   StatusMessage,
   StripMessage,
   WelcomeMessage,
 } from "../../bridge/wire/messages.ts";
-import { History } from "./history.ts";
+import { PastMidlines } from "./past.ts";
 
-/** connecting: never yet connected. gone: was connected, trying again. refused: the bridge speaks another version. */
-export type Connection = "connecting" | "connected" | "gone" | "refused";
+/** How the page stands with the bridge itself. gone: does not answer; refused: answers, but gives no stream. */
+export type BridgeView = "connecting" | "connected" | "gone" | "other version" | "refused";
 
-export class ViewState {
-  connection: Connection = "connecting";
-  welcome: WelcomeMessage | null = null;
-  status: StatusMessage | null = null;
-  flags: FlagsMessage = { type: "flags", open: [], ended: [] };
-  marks: MarksMessage = { type: "marks", marks: [] };
-  strip: StripMessage | null = null;
-  /** Reused for every frame; hasFrame says whether it holds one of this run. */
-  readonly frame: DisplayFrame = createDisplayFrame(0, 0);
-  hasFrame = false;
-  history = new History(0);
+export interface ViewState {
+  bridge: BridgeView;
+  welcome: WelcomeMessage | null;
+  status: StatusMessage | null;
+  flags: FlagsMessage | null;
+  marks: MarksMessage | null;
+  strip: StripMessage | null;
+  /** The bridge's last refusal of a mark that this page sent. Every refusal is an object of its own. */
+  refusal: RefusalMessage | null;
+  readonly frame: DisplayFrame;
+  past: PastMidlines;
+  /** Frames received since the page was opened. */
+  frameCount: number;
+  /** Frames of this run; 0 means nothing to draw yet. */
+  runFrameCount: number;
   /** Page time of the newest frame, ms. */
-  frameAtMs = 0;
-  /** Grows with every text message and change of connection: panels redraw when it did. */
-  revision = 0;
-  /** Grows with every new run: lanes clear their past. */
-  run = 0;
+  frameAtMs: number;
+  textRevision: number;
+}
 
-  /** @returns false when the bytes are no frame of this version */
-  takeFrame(bytes: ArrayBuffer, nowMs: number): boolean {
-    if (!decodeFrame(new DataView(bytes), this.frame)) return false;
-    if (this.history.pointCount !== this.frame.pointCount) this.history = new History(this.frame.pointCount);
-    this.history.add(this.frame.hubTimeS, this.frame.midline);
-    this.hasFrame = true;
-    this.frameAtMs = nowMs;
-    return true;
-  }
+export function createViewState(): ViewState {
+  return {
+    bridge: "connecting",
+    welcome: null,
+    status: null,
+    flags: null,
+    marks: null,
+    strip: null,
+    refusal: null,
+    frame: createDisplayFrame(0, 0),
+    past: new PastMidlines(0),
+    frameCount: 0,
+    runFrameCount: 0,
+    frameAtMs: 0,
+    textRevision: 0,
+  };
+}
 
-  takeMessage(message: BridgeMessage): void {
-    this.revision++;
-    switch (message.type) {
-      case "welcome":
-        if (message.runId !== this.welcome?.runId) this.#startRun();
-        this.welcome = message;
-        return;
-      case "status":
-        this.status = message;
-        return;
-      case "flags":
-        this.flags = message;
-        return;
-      case "marks":
-        this.marks = message;
-        return;
-      case "strip":
-        this.strip = message;
-        return;
-      case "refusal":
-        console.warn(`The bridge refused a message: ${message.reason}`);
-    }
-  }
+/**
+ * Takes a binary message.
+ * @param nowMs page time
+ * @returns false when it is not a frame this page understands
+ */
+export function takeFrame(view: ViewState, bytes: DataView, nowMs: number): boolean {
+  const { frame } = view;
+  if (!decodeFrame(bytes, frame)) return false;
+  if (view.past.pointCount !== frame.pointCount) view.past = new PastMidlines(frame.pointCount);
+  // A clock that runs backwards belongs to another run, whose welcome is on its way.
+  if (view.past.newestS > frame.hubTimeS) view.past.clear();
+  view.past.push(frame.hubTimeS, frame.midline);
+  view.frameCount++;
+  view.runFrameCount++;
+  view.frameAtMs = nowMs;
+  return true;
+}
 
-  setConnection(connection: Connection): void {
-    if (connection === this.connection) return;
-    this.connection = connection;
-    this.revision++;
+export function takeMessage(view: ViewState, message: BridgeMessage): void {
+  view.textRevision++;
+  switch (message.type) {
+    case "welcome":
+      if (view.welcome?.runId !== message.runId) clearRun(view);
+      view.welcome = message;
+      break;
+    case "status":
+      view.status = message;
+      break;
+    case "flags":
+      view.flags = message;
+      break;
+    case "marks":
+      view.marks = message;
+      break;
+    case "strip":
+      view.strip = message;
+      break;
+    case "refusal":
+      view.refusal = message;
+      break;
   }
+}
 
-  /** Whether what is shown is now: sweeps are flowing. */
-  get live(): boolean {
-    return this.connection === "connected" && this.status?.link === "flowing";
-  }
+export function setBridge(view: ViewState, bridge: BridgeView): void {
+  if (view.bridge === bridge) return;
+  view.bridge = bridge;
+  view.textRevision++;
+}
 
-  #startRun(): void {
-    this.run++;
-    this.hasFrame = false;
-    this.history = new History(this.frame.pointCount);
-    this.strip = null;
-  }
+/** What is true of the link as a whole, from the bridge's side and ours. */
+export type LinkWord = Exclude<BridgeView, "connected"> | LinkView;
+
+export function linkWord({ bridge, status }: ViewState): LinkWord {
+  if (bridge !== "connected") return bridge;
+  return status?.link ?? "connecting";
+}
+
+/** Whether what is shown is now: sweeps are flowing. */
+export function isLive(view: ViewState): boolean {
+  return linkWord(view) === "flowing";
+}
+
+function clearRun(view: ViewState): void {
+  view.status = null;
+  view.flags = null;
+  view.marks = null;
+  view.strip = null;
+  view.past.clear();
+  view.runFrameCount = 0;
 }

@@ -1,8 +1,9 @@
 /** Flags on the page: glyph, word, what was measured, what to do; they go when they end. */
+import type { Page } from "playwright-core";
 import { expect, onTestFinished, test } from "vitest";
 import { FakeBridge } from "../support/fake-bridge.ts";
 import { flagOn, type Scene, sixAxisScene, troubledScene } from "../support/scene.ts";
-import { textOf } from "./page.ts";
+import { pictureOf, textOf, untilDrawn } from "./page.ts";
 import { useBrowser } from "./use-browser.ts";
 
 const open = useBrowser();
@@ -47,12 +48,9 @@ test("the three severities differ in shape, not in colour alone", async () => {
   const flags = severities.map((severity, i) => ({ ...magnetAt(bridge, i), id: i + 1, severity }));
   bridge.show({ open: flags });
   await page.locator("#flags li").nth(2).waitFor();
-  const shapes = await page.locator("#flags li [class~=glyph]").evaluateAll((glyphs) =>
-    glyphs.map((glyph) => {
-      const { clipPath, borderRadius, borderStyle } = getComputedStyle(glyph);
-      return `${clipPath} ${borderRadius} ${borderStyle}`;
-    }),
-  );
+  const shapes = await page
+    .locator("#flags li [class~=glyph] svg")
+    .evaluateAll((glyphs) => glyphs.map((glyph) => glyph.innerHTML));
   expect(new Set(shapes).size).toBe(3);
 });
 
@@ -60,7 +58,7 @@ test("the flagged sensor's own column shows it too", async () => {
   const bridge = await startBridge();
   const page = await open(bridge.address);
   bridge.show({ open: [magnetAt(bridge, 3)] });
-  await page.locator("[data-sensor='3'] [data-severity='caution']").first().waitFor();
+  await page.locator("[data-sensor='3'] [data-severity='caution'] svg").first().waitFor();
   expect(await page.locator("#sensors [data-sensor]:not([data-sensor='3']) [data-severity]").count()).toBe(0);
 });
 
@@ -145,6 +143,36 @@ test("a rig whose heading runs free says so, and a sensor without magnetometer s
   const page = await open(bridge.address);
   await page.waitForFunction(() => /drift/i.test(document.body.textContent ?? ""));
   const column = await page.locator("[data-sensor='0']").textContent();
-  expect(column).toContain("–");
+  expect(column).toContain("no mag");
   expect(column).not.toContain("NaN");
 });
+
+/** How red the lanes' canvas is at a place, in steps of a colour channel. */
+async function redness(page: Page, x: number, y: number): Promise<number> {
+  const { data, width, channels } = await pictureOf(page);
+  const at = (Math.round(y) * width + Math.round(x)) * channels;
+  return data[at]! - data[at + 2]!;
+}
+
+test.each([
+  // S6 stands at 97 % of the ruler, the outline 9 pixels to either side; the whole rig's right of the tail.
+  [5, "at its sensor", (ruler: number) => 176 + 0.97 * ruler - 9],
+  [-1, "at the lane's edge, for the whole rig", (ruler: number) => 176 + ruler + 5],
+] as const)(
+  "what an alarm on sensor %i covers is outlined in the body wave, %s, from its onset on",
+  async (sensor, _, place) => {
+    const bridge = await startBridge({ wave: { frequencyHz: 0, waves: -0.25, tailShare: 0.15 } });
+    const page = await open(bridge.address);
+    const request = { id: 1, kind: "gyro saturation", severity: "alarm", detail: "clipped on z" } as const;
+    const startS = bridge.hubTimeS - 1;
+    bridge.show({ open: [flagOn(sensor, bridge.scene.sensors, { ...request, startS })] });
+    await page.locator("#flags li").waitFor();
+    await untilDrawn(page, 2);
+    const lanes = (await page.locator("#lanes").boundingBox())!;
+    const wave = (await page.locator("#lane-wave").boundingBox())!;
+    const x = place(lanes.width - 176 - 28);
+    const y = (ageS: number) => wave.y - lanes.y + 10 + (ageS / 3) * (wave.height - 20);
+    expect(await redness(page, x, y(0.5))).toBeGreaterThan(100);
+    expect(await redness(page, x, y(2.8))).toBeLessThan(50);
+  },
+);

@@ -142,3 +142,18 @@ test("keys with Ctrl or Alt are left to the browser", async () => {
   expect(await light(page)).toBe("dark");
   expect(await page.locator("#mark-text").isVisible()).toBe(false);
 });
+
+test("a mark that the bridge refuses comes back into its field with the reason, and can be sent again", async () => {
+  const { bridge, page } = await start();
+  bridge.refusing = "too many messages";
+  await page.keyboard.press("m");
+  await page.keyboard.type("flow raised");
+  await page.keyboard.press("Enter");
+  await page.getByText("Not kept: too many messages").waitFor();
+  expect(await page.locator("#mark-text").inputValue()).toBe("flow raised");
+  expect(await focused(page)).toBe("mark-text");
+  bridge.refusing = null;
+  await page.keyboard.press("Enter");
+  await page.locator("#marks li", { hasText: "flow raised" }).waitFor();
+  expect(await page.locator("#mark-text").isVisible()).toBe(false);
+});

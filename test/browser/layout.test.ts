@@ -141,9 +141,9 @@ test.each([6, 16, 64])(
   },
 );
 
-test.each([6, 16])("every one of %i sensors is named on the ruler at 1440 x 900", async (count) => {
+test.each([6, 16])("every one of %i sensors is named beneath the ruler at 1440 x 900", async (count) => {
   const page = await openScene(troubledScene(count), [1440, 900]);
-  const text = (await visibleText(page, "#lane-ruler")).map((box) => box.text);
+  const text = (await visibleText(page, "#sensors")).map((box) => box.text);
   for (let i = 1; i <= count; i++) expect(text).toContain(`S${i}`);
 });
 

@@ -108,12 +108,20 @@ test("before the stream answers, the page says that it is connecting and what to
   expect(await textOf(page, "#flags")).not.toMatch(/nothing speaks against/i);
 });
 
-test("a bridge of another version is told from one that is gone", async () => {
+test("a bridge that refuses the stream is told from one that is gone, and says what to do", async () => {
   const bridge = await startPageWithoutStream("refuses");
   onTestFinished(() => bridge.stop());
   const page = await open(bridge.address, { live: false });
   await untilLink(page, "refused");
-  expect(await textOf(page, "#notice")).toMatch(/version/i);
+  expect(await textOf(page, "#notice")).toMatch(/refuses.*token/i);
+});
+
+test("frames of another version are not drawn, and are told in words", async () => {
+  const bridge = await startBridge();
+  const page = await open(bridge.address);
+  bridge.sendBytes(new Uint8Array([0x57, 0x42, 2, 0, 0, 0]));
+  await untilLink(page, "other version");
+  expect(await textOf(page, "#notice")).toMatch(/different versions.*reload/i);
 });
 
 test("a token in the address is passed on to the stream", async () => {

@@ -4,7 +4,7 @@ import { expect, onTestFinished, test } from "vitest";
 import { FakeBridge } from "../support/fake-bridge.ts";
 import type { Picture } from "../support/png.ts";
 import { type Scene, writeMidline } from "../support/scene.ts";
-import { pictureOf, untilDrawn } from "./page.ts";
+import { pictureOf, untilDrawn, untilLink } from "./page.ts";
 import { useBrowser } from "./use-browser.ts";
 
 const open = useBrowser();
@@ -91,7 +91,7 @@ test("the ribbon is drawn where the midline is: a body bent left lies above its 
   const lanes = await page.locator("#lanes").boundingBox();
   const picture = await pictureOf(page);
   const middle = lane!.y - lanes!.y + lane!.height / 2;
-  const ruler = { nose: 138, tail: lanes!.width - 30 };
+  const ruler = { nose: 176, tail: lanes!.width - 28 };
   const at = (station: number) =>
     ribbonRow(
       picture,
@@ -115,8 +115,8 @@ async function waveDrawn(page: Page, fromS: number, toS: number): Promise<number
   const lanes = (await page.locator("#lanes").boundingBox())!;
   const picture = await pictureOf(page);
   const stride = picture.width * picture.channels;
-  // Three seconds fill the lane but for its lower margin of 12 pixels.
-  const row = (s: number) => Math.round(wave.y - lanes.y + (s / 3) * (wave.height - 12));
+  // Three seconds fill the lane but for its margins of 10 pixels.
+  const row = (s: number) => Math.round(wave.y - lanes.y + 10 + (s / 3) * (wave.height - 20));
   return drawnShare({ ...picture, data: picture.data.subarray(row(fromS) * stride, row(toS) * stride) });
 }
 
@@ -151,4 +151,54 @@ test("where nothing was received the body wave shows nothing, not the shape befo
   const agoS = bridge.hubTimeS - gapEndsS;
   expect(await waveDrawn(page, 0, agoS)).toBeGreaterThan(0.2);
   expect(await waveDrawn(page, agoS + 0.1, Math.min(agoS + 1.7, 3))).toBe(0);
+});
+
+test("a page that was hidden draws nothing, and the newest on its return", async () => {
+  const bridge = await startBridge();
+  const page = await open(bridge.address);
+  await untilDrawn(page, 3);
+  const hide = (hidden: boolean) =>
+    page.evaluate((value) => {
+      Object.defineProperty(document, "hidden", { configurable: true, get: () => value });
+      document.dispatchEvent(new Event("visibilitychange"));
+      // What was asked for before has been drawn two display frames later.
+      return new Promise<number>((resolve) => {
+        requestAnimationFrame(() => requestAnimationFrame(() => resolve(window.bendwatchView.drawn)));
+      });
+    }, hidden);
+  const drawn = await hide(true);
+  const sentS = bridge.hubTimeS;
+  await expect.poll(() => bridge.hubTimeS).toBeGreaterThan(sentS + 0.5);
+  expect(await page.evaluate(() => window.bendwatchView.drawn)).toBe(drawn);
+  await hide(false);
+  await page.waitForFunction((after) => window.bendwatchView.hubTimeS > after, sentS + 0.5);
+});
+
+test("the body wave runs down: newest on top, one colour where the body is to the left, another to the right", async () => {
+  const bridge = await startBridge();
+  const page = await open(bridge.address);
+  await page.waitForFunction((start) => window.bendwatchView.hubTimeS > start + 3.2, bridge.scene.startS);
+  bridge.show({ link: "silent" });
+  await untilLink(page, "silent");
+  await untilDrawn(page, 3);
+  const { wave: swimming, lengthM } = bridge.scene;
+  const tail = (ageS: number) => {
+    const midline = new Float32Array(9);
+    writeMidline(swimming, lengthM, bridge.hubTimeS - ageS, midline);
+    return midline[7]!;
+  };
+  // Ages at which the tail was farthest to either side within the newest beat.
+  const ages = Array.from({ length: 60 }, (_, i) => 0.05 + i * 0.01);
+  const farthest = (sign: number) => ages.reduce((a, b) => (sign * tail(b) > sign * tail(a) ? b : a));
+  const lane = (await page.locator("#lane-wave").boundingBox())!;
+  const lanes = (await page.locator("#lanes").boundingBox())!;
+  const { data, width, channels } = await pictureOf(page);
+  const warmth = (ageS: number) => {
+    const y = Math.round(lane.y - lanes.y + 10 + (ageS / 3) * (lane.height - 20));
+    const at = (y * width + Math.round(lanes.width - 28 - 4)) * channels;
+    return data[at]! - data[at + 2]!;
+  };
+  // The picture is dimmed to a third: of some 107 steps between red and blue some 35 are left.
+  expect(warmth(farthest(1))).toBeGreaterThan(20);
+  expect(warmth(farthest(-1))).toBeLessThan(-15);
 });

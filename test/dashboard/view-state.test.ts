@@ -1,72 +1,115 @@
 import { expect, test } from "vitest";
+import { TRUST } from "../../bridge/sweep.ts";
 import { createDisplayFrame, encodeFrame, frameBytes } from "../../bridge/wire/frame.ts";
-import type { BridgeMessage, WelcomeMessage } from "../../bridge/wire/messages.ts";
-import { ViewState } from "../../dashboard/stream/view-state.ts";
-import { healthyScene } from "../support/scene.ts";
+import type { WelcomeMessage } from "../../bridge/wire/messages.ts";
+import { TRUST_WORDS } from "../../bridge/wire/trust.ts";
+import {
+  createViewState,
+  isLive,
+  linkWord,
+  setBridge,
+  takeFrame,
+  takeMessage,
+} from "../../dashboard/stream/view-state.ts";
+import { statusOf } from "../support/scene.ts";
 
-function frameAt(hubTimeS: number, points = 4, sensors = 2): ArrayBuffer {
-  const frame = createDisplayFrame(points, sensors);
+const welcome = (runId: string): WelcomeMessage => ({
+  type: "welcome",
+  softwareVersion: "0.1.0",
+  rigName: "Bench",
+  bodyKind: "foil",
+  lengthM: 0.5,
+  widthM: null,
+  rateHz: 100,
+  sensors: [],
+  pointCount: 3,
+  source: { kind: "serial", label: "" },
+  heading: "free",
+  flowMPerS: null,
+  runId,
+});
+
+function frameAt(hubTimeS: number, pointCount = 3): DataView {
+  const frame = createDisplayFrame(pointCount, 1);
   frame.hubTimeS = hubTimeS;
-  frame.midline.fill(hubTimeS);
-  const bytes = new ArrayBuffer(frameBytes(points, sensors));
-  encodeFrame(frame, new DataView(bytes));
+  frame.midline[4] = hubTimeS;
+  const bytes = new DataView(new ArrayBuffer(frameBytes(pointCount, 1)));
+  encodeFrame(frame, bytes);
   return bytes;
 }
 
-function welcome(runId: string): WelcomeMessage {
-  const { rigName, bodyKind, lengthM, widthM, rateHz, sensors, source, heading } = healthyScene(2);
-  const rig = { rigName, bodyKind, lengthM, widthM, rateHz, sensors, source, heading };
-  return { type: "welcome", softwareVersion: "0", ...rig, pointCount: 4, flowMPerS: null, runId };
-}
-
-const strip: BridgeMessage = { type: "strip", startS: 0, columnS: 1, lowM: [0], highM: [1] };
-
-test("frames fill the past, in their order", () => {
-  const view = new ViewState();
-  view.takeMessage(welcome("a"));
-  for (const timeS of [1, 2, 3]) expect(view.takeFrame(frameAt(timeS), 0)).toBe(true);
-  expect(view.hasFrame).toBe(true);
-  expect(view.frame.hubTimeS).toBe(3);
-  expect([0, 1, 2].map((i) => view.history.lateral(i, 0))).toEqual([1, 2, 3]);
+test("frames of one run pile up; a new run starts with an empty past, the same run keeps it", () => {
+  const view = createViewState();
+  takeMessage(view, welcome("a"));
+  for (const t of [1, 2, 3]) expect(takeFrame(view, frameAt(t), 0)).toBe(true);
+  expect(view.past.total).toBe(3);
+  expect(view.past.sideways(2, 1)).toBe(3);
+  takeMessage(view, welcome("a"));
+  expect(view.past.total).toBe(3);
+  takeMessage(view, welcome("b"));
+  expect([view.past.total, view.runFrameCount, view.frameCount]).toEqual([0, 0, 3]);
 });
 
-test("bytes that are no frame of this version change nothing", () => {
-  const view = new ViewState();
-  view.takeFrame(frameAt(1), 0);
-  const other = frameAt(2);
-  new DataView(other).setUint8(2, 99);
-  for (const bytes of [other, new ArrayBuffer(0), frameAt(2).slice(0, 60)]) {
-    expect(view.takeFrame(bytes, 0)).toBe(false);
+test("a clock that jumps back clears the past", () => {
+  const view = createViewState();
+  takeFrame(view, frameAt(100), 0);
+  takeFrame(view, frameAt(1), 0);
+  expect(view.past.total).toBe(1);
+  expect(view.past.newestS).toBe(1);
+});
+
+test("frames are decoded into the same arrays as long as the counts stay", () => {
+  const view = createViewState();
+  takeFrame(view, frameAt(1), 0);
+  const { midline } = view.frame;
+  takeFrame(view, frameAt(2), 0);
+  expect(view.frame.midline).toBe(midline);
+  takeFrame(view, frameAt(3, 5), 0);
+  expect(view.past.pointCount).toBe(5);
+});
+
+test("bytes that are no frame are refused and change nothing", () => {
+  const view = createViewState();
+  expect(takeFrame(view, new DataView(new ArrayBuffer(10)), 0)).toBe(false);
+  expect([view.frameCount, view.past.total]).toEqual([0, 0]);
+});
+
+test("every message and every change of the bridge asks for the text to be drawn; a repeated state does not", () => {
+  const view = createViewState();
+  takeMessage(view, welcome("a"));
+  takeMessage(view, { type: "marks", marks: [] });
+  setBridge(view, "connected");
+  expect(view.textRevision).toBe(3);
+  setBridge(view, "connected");
+  expect(view.textRevision).toBe(3);
+});
+
+test("each refusal can be told from the one before, though the reason is the same", () => {
+  const view = createViewState();
+  takeMessage(view, { type: "refusal", reason: "too many" });
+  const first = view.refusal;
+  takeMessage(view, { type: "refusal", reason: "too many" });
+  expect(view.refusal).toEqual(first);
+  expect(view.refusal).not.toBe(first);
+});
+
+test("our own connection is told before what the bridge last said of its link", () => {
+  const view = createViewState();
+  setBridge(view, "connected");
+  expect(linkWord(view)).toBe("connecting");
+  takeMessage(view, statusOf("flowing"));
+  expect([linkWord(view), isLive(view)]).toEqual(["flowing", true]);
+  takeMessage(view, statusOf("silent"));
+  expect([linkWord(view), isLive(view)]).toEqual(["silent", false]);
+  takeMessage(view, statusOf("flowing"));
+  for (const bridge of ["connecting", "gone", "refused", "other version"] as const) {
+    setBridge(view, bridge);
+    expect([linkWord(view), isLive(view)]).toEqual([bridge, false]);
   }
-  expect(view.frame.hubTimeS).toBe(1);
-  expect(view.history.count).toBe(1);
 });
 
-test("a new run forgets the past; the same run, met again after a lost connection, keeps it", () => {
-  const view = new ViewState();
-  view.takeMessage(welcome("a"));
-  view.takeFrame(frameAt(1), 0);
-  view.takeMessage(strip);
-  const { run } = view;
-  view.takeMessage(welcome("a"));
-  expect([view.run, view.hasFrame, view.history.count]).toEqual([run, true, 1]);
-  view.takeMessage(welcome("b"));
-  expect([view.run, view.hasFrame, view.history.count, view.strip]).toEqual([run + 1, false, 0, null]);
-});
-
-test("another number of points starts the past anew: rows of two lengths never mix", () => {
-  const view = new ViewState();
-  view.takeFrame(frameAt(1, 4), 0);
-  view.takeFrame(frameAt(2, 7), 0);
-  expect([view.history.pointCount, view.history.count]).toEqual([7, 1]);
-});
-
-test("every message and every change of connection asks for the panels to be drawn; a repeated state does not", () => {
-  const view = new ViewState();
-  view.takeMessage(welcome("a"));
-  view.takeMessage(strip);
-  view.setConnection("connected");
-  expect(view.revision).toBe(3);
-  view.setConnection("connected");
-  expect(view.revision).toBe(3);
+test("trust words stand in the order of the trust bytes", () => {
+  const words = Object.keys(TRUST).map((key) => key.toLowerCase().replaceAll("_", " "));
+  expect(TRUST_WORDS).toEqual(words);
+  expect(Object.values(TRUST)).toEqual(words.map((_, i) => i));
 });

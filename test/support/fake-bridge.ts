@@ -21,6 +21,8 @@ const FRAMES_PER_S = 60;
 export class FakeBridge {
   /** What dashboards sent. */
   readonly received: DashboardMessage[] = [];
+  /** Why every mark is refused; null while they are taken. */
+  refusing: string | null = null;
   address = "";
   #scene: Scene;
   #server: StreamServer | null = null;
@@ -88,6 +90,11 @@ export class FakeBridge {
     this.#hubTimeS += seconds;
   }
 
+  /** As a bridge whose frames are of another layout. */
+  sendBytes(bytes: Uint8Array): void {
+    this.#server?.sendFrame(bytes);
+  }
+
   /** As when a looped trial starts over: a new run, from hub time 0. */
   startOver(): void {
     this.#run++;
@@ -102,6 +109,10 @@ export class FakeBridge {
 
   #take(message: DashboardMessage): void {
     this.received.push(message);
+    if (this.refusing !== null) {
+      this.#send({ type: "refusal", reason: this.refusing });
+      return;
+    }
     const mark = { timeS: this.#hubTimeS, text: message.text, from: "operator" } as const;
     this.show({ marks: [mark, ...this.#scene.marks] });
   }

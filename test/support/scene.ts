@@ -2,7 +2,13 @@
 import { adviceFor } from "../../bridge/health/advice.ts";
 import { CONDITION, TRUST } from "../../bridge/sweep.ts";
 import type { Flag, FlagKind, Mark, Severity } from "../../bridge/wire/flag.ts";
-import type { SensorView, StatusMessage, TailbeatView, WelcomeMessage } from "../../bridge/wire/messages.ts";
+import type {
+  LinkView,
+  SensorView,
+  StatusMessage,
+  TailbeatView,
+  WelcomeMessage,
+} from "../../bridge/wire/messages.ts";
 
 /** A wave that travels from nose to tail: amplitude grows with the square of the station. */
 export interface Wave {
@@ -106,6 +112,24 @@ export function tailbeatOf({ frequencyHz, tailShare }: Wave, lengthM: number): T
   };
 }
 
+/** A status of the healthy scene whose link is in some state. */
+export function statusOf(link: LinkView, linkDetail = ""): StatusMessage {
+  const { recording, wave, lengthM } = healthyScene();
+  return {
+    type: "status",
+    hubTimeS: 12,
+    link,
+    linkDetail,
+    recording,
+    sweepsPerS: 0,
+    lostShare: 0,
+    behindMs: null,
+    driftPpm: null,
+    counters: { good: 0, badChecksum: 0, discardedBytes: 0 },
+    tailbeat: tailbeatOf(wave, lengthM),
+  };
+}
+
 export interface FlagRequest {
   readonly kind: FlagKind;
   readonly severity: Severity;
@@ -163,7 +187,7 @@ export function troubledScene(count = 6): Scene {
     ],
     marks: [
       { timeS: startS - 60, text: "flow raised to 0.35 m/s", from: "operator" },
-      { timeS: startS - 300, text: "hub button", from: "hub button" },
+      { timeS: startS - 300, text: "Button 1", from: "hub button" },
     ],
     reading: (i, timeS) => {
       const healthy = healthyReading(i, timeS);

@@ -1,5 +1,6 @@
-/** The colours of the light that is on, from the style sheet's tokens, as numbers for drawing. */
+/** The colours in use, read from the style sheet: the canvas and the page share one list of tokens. */
 
+/** RGB as 0xRRGGBB. */
 export interface Palette {
   readonly ground: number;
   readonly ink: number;
@@ -9,10 +10,11 @@ export interface Palette {
   readonly notice: number;
   readonly caution: number;
   readonly alarm: number;
-  /** Along the body, nose to tail. */
+  /** Nose to tail, evenly spaced. */
   readonly body: readonly number[];
 }
 
+/** Reads the tokens as they hold now for the whole page. */
 export function readPalette(): Palette {
   const style = getComputedStyle(document.documentElement);
   const token = (name: string) => Number.parseInt(style.getPropertyValue(`--${name}`).trim().slice(1), 16);
@@ -25,23 +27,23 @@ export function readPalette(): Palette {
     notice: token("notice"),
     caution: token("caution"),
     alarm: token("alarm"),
-    body: [0, 1, 2, 3, 4].map((i) => token(`body-${i}`)),
+    body: [1, 2, 3, 4, 5].map((i) => token(`body-${i}`)),
   };
 }
 
-/** Between two colours, channel by channel. */
+/** `share` of the way from one colour to the other, 0..1. */
 export function mix(from: number, to: number, share: number): number {
-  const channel = (shift: number) => {
+  const part = (shift: number) => {
     const a = (from >> shift) & 255;
     const b = (to >> shift) & 255;
     return Math.round(a + (b - a) * share) << shift;
   };
-  return channel(16) | channel(8) | channel(0);
+  return part(16) | part(8) | part(0);
 }
 
-/** The colour at a station, 0 nose to 1 tail tip. */
-export function bodyColour({ body }: Palette, station: number): number {
+/** Colour of the body at a station, 0 nose to 1 tail. */
+export function bodyColour(body: readonly number[], station: number): number {
   const at = Math.min(Math.max(station, 0), 1) * (body.length - 1);
-  const below = Math.min(Math.floor(at), body.length - 2);
-  return mix(body[below]!, body[below + 1]!, at - below);
+  const i = Math.min(Math.floor(at), body.length - 2);
+  return mix(body[i], body[i + 1], at - i);
 }

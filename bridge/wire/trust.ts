@@ -1,0 +1,4 @@
+/** How far a sensor's orientation can be believed, in words; the trust byte of a frame counts into this list. */
+export const TRUST_WORDS = ["good", "settling", "bridged", "clipped", "heading unaided", "lost"] as const;
+
+export type TrustWord = (typeof TRUST_WORDS)[number];
