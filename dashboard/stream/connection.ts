@@ -28,7 +28,6 @@ export class Connection {
     this.#view = view;
     this.#onChange = onChange;
     const url = new URL("stream", page);
-    url.search = "";
     url.protocol = page.protocol === "https:" ? "wss:" : "ws:";
     const token = page.searchParams.get("token");
     if (token !== null) url.searchParams.set("token", token);

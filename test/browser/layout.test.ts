@@ -121,6 +121,27 @@ test.each(SIZES)(
   },
 );
 
+test.each(SIZES)(
+  "a refused mark and its reason have room beside long names and a long failure, at %i x %i",
+  async (...size) => {
+    const bridge = await FakeBridge.start(longNamesScene());
+    onTestFinished(() => bridge.stop());
+    bridge.refusing = "more marks than the bridge takes in a second, and one of them too long";
+    const page = await open(bridge.address, { size });
+    await page.keyboard.press("m");
+    await page.keyboard.type("flow raised");
+    await page.keyboard.press("Enter");
+    await page.getByText(bridge.refusing).waitFor();
+    await untilDrawn(page, 3);
+    const text = await visibleText(page, "body");
+    expect(overlaps(text)).toEqual([]);
+    expect(outside(text, size)).toEqual([]);
+    // A line of the field and room for the words: never so much that the lanes would lack it.
+    expect((await page.locator("header").boundingBox())!.height).toBeLessThan(150);
+    expect((await page.locator("#mark-text").boundingBox())!.width).toBeGreaterThan(100);
+  },
+);
+
 test.each([6, 16, 64])(
   "the page grows and shrinks with its window, and stays in order, %i sensors",
   async (count) => {
