@@ -2,7 +2,7 @@
 import { BendwatchError, type ErrorDetail } from "../errors.ts";
 import type { PacketLayout } from "../rig/packet-layout.ts";
 import { CRC_MODELS, crc, sum8, sum16, xor8 } from "./checksum.ts";
-import { type LayoutContext, PacketCompiler } from "./declared-packet.ts";
+import { type LayoutContext, PacketCompiler, type Report } from "./declared-packet.ts";
 import {
   type ChecksumRule,
   COLUMN_BYTES,
