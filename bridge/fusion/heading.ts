@@ -58,12 +58,25 @@ export function correctHeading(r: Float64Array, gains: Float64Array, parameters:
   } else {
     angle = Math.atan2(east, north);
   }
-  // A turn by this half angle, as its tangent (the next term of a small one's series is below 1e-15); back to unit length.
-  const half = 0.5 * gain * angle;
+  turnHeading(r, gain * angle);
+}
+
+/** Turns the heading by an angle, rad, positive left. */
+export function turnHeading(r: Float64Array, angle: number): void {
+  const c = r[Slot.HEADING]!;
+  const s = r[Slot.HEADING + 1]!;
+  // A turn by the half angle, as its tangent (the next term of a small one's series is below 1e-15); back to unit length.
+  const half = 0.5 * angle;
   const tangent = Math.abs(half) < 1e-3 ? half * (1 + (half * half) / 3) : Math.tan(half);
   const scale = 1 / Math.sqrt((1 + tangent * tangent) * (c * c + s * s));
   r[Slot.HEADING] = (c - s * tangent) * scale;
   r[Slot.HEADING + 1] = (s + c * tangent) * scale;
+}
+
+/** The present heading stands as the mean of all field readings so far: the next ones correct it at the steady gain. */
+export function keepHeading(r: Float64Array): void {
+  if (r[Slot.STARTED] === 0) return;
+  r[Slot.HEADING_SETTLED] = 1;
 }
 
 /** out (4 slots) = heading · level: body axes -> earth. */

@@ -19,6 +19,8 @@ export const FLAG_ADVICE: Readonly<Record<AdviceKey, string>> = {
   "magnetic interference": "Something magnetic is near {place}; move it away or trust {name}'s heading less.",
   "rig-wide magnetic interference":
     "The field is off along the whole body: look for a motor, a magnet or steel brought near the tank, and trust no heading until this ends.",
+  "heading held by the body":
+    "The magnetometers are left out for now: keep the body beating, trust the shape, and read no compass directions until this ends.",
   "building field":
     "The building bends the Earth's field here: the shape is not affected, but do not read compass directions from this run.",
   "lost samples": "Check the plug and cable at {place}, then between hub and computer.",

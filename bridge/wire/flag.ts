@@ -10,6 +10,7 @@ export type FlagKind =
   | "low headroom"
   | "magnetic interference"
   | "rig-wide magnetic interference"
+  | "heading held by the body"
   | "lost samples"
   | "corrupt packets"
   | "link silent"

@@ -81,10 +81,17 @@ export function flagTitle({ welcome }: ViewState, flag: Flag): string {
   return `${welcome?.sensors[flag.sensor]?.name ?? `Sensor ${flag.sensor + 1}`} ${flag.kind}`;
 }
 
-function allWell({ flags, live, welcome }: ViewState): string {
-  const drifting = welcome?.heading === "free" ? "Heading drifts: gyroscopes only." : "";
-  if (flags.open.length > 0) return drifting;
-  return `${live ? "Nothing speaks against any sensor." : ""} ${drifting}`.trim();
+/** What there is to say of headings that no magnetometer holds. */
+const HEADING_WORDS = {
+  magnetic: "",
+  relative: "Heading: held by the body.",
+  free: "Heading drifts: gyroscopes only.",
+} as const;
+
+function allWell({ flags, live, welcome, status }: ViewState): string {
+  const heading = HEADING_WORDS[status?.heading ?? welcome?.heading ?? "magnetic"];
+  if (flags.open.length > 0) return heading;
+  return `${live ? "Nothing speaks against any sensor." : ""} ${heading}`.trim();
 }
 
 function drawList<T>(id: string, values: readonly T[], text: (value: T) => readonly [string, string]): void {

@@ -135,7 +135,7 @@ export class FakeBridge {
   }
 
   #status(): BridgeMessage {
-    const { link, linkDetail, recording, wave, lengthM, rateHz, lostShare } = this.#scene;
+    const { link, linkDetail, recording, wave, lengthM, rateHz, lostShare, heading } = this.#scene;
     return {
       type: "status",
       hubTimeS: this.#hubTimeS,
@@ -148,6 +148,7 @@ export class FakeBridge {
       driftPpm: 18,
       counters: { good: Math.round(this.#hubTimeS * rateHz), badChecksum: 3, discardedBytes: 41 },
       tailbeat: tailbeatOf(wave, lengthM),
+      heading,
     };
   }
 
