@@ -183,6 +183,7 @@ export class Pipeline {
     if (this.#fallback !== null)
       this.fusion.setHeading(this.#fallback.observe(sweep.timeS) ? "relative" : "magnetic");
     this.fusion.step(sweep);
+    this.health.compareOnBoard(sweep.timeS, this.fusion.onBoard.tilt, this.fusion.onBoard.turn);
     this.midline.step(this.fusion.orientations, this.fusion.trust);
     this.travel.step(sweep.stepS, this.midline.positions, this.tailbeat.periodS);
     const tail = this.travel.lateral(this.midline.positions, POINT_COUNT - 1);

@@ -24,9 +24,11 @@ import {
   noseYaw,
   startHeading,
   turnHeading,
+  yawOf,
 } from "./heading.ts";
 import { composeLevel, correctInclination } from "./inclination.ts";
 import { watchField } from "./magnetic-reference.ts";
+import { OnBoard } from "./on-board.ts";
 import { DEFAULT_PARAMETERS, type FusionParameters } from "./parameters.ts";
 import { takeReading } from "./reading.ts";
 import { createRecord, loseOrientation, resetRecord, Slot } from "./record.ts";
@@ -60,6 +62,8 @@ export class ChainFusion {
   readonly trust: Uint8Array;
   /** 1 where a reading was due and the orientation is predicted instead. */
   readonly bridged: Uint8Array;
+  /** Of sensors that fuse on board: where their own orientation is taken, and how far it differs from ours. */
+  readonly onBoard: OnBoard;
 
   readonly #parameters: FusionParameters;
   readonly #coefficients: Coefficients;
@@ -95,6 +99,7 @@ export class ChainFusion {
     this.orientations = new Float64Array(sensorCount * 4);
     this.trust = new Uint8Array(sensorCount);
     this.bridged = new Uint8Array(sensorCount);
+    this.onBoard = new OnBoard(sensorCount);
     this.reset();
   }
 
@@ -109,6 +114,7 @@ export class ChainFusion {
     this.#timeS = -Infinity;
     this.#heading = this.#startHeading;
     this.#relative.reset();
+    this.onBoard.reset();
   }
 
   /** What holds the headings now. */
@@ -142,6 +148,7 @@ export class ChainFusion {
       record[Slot.NOW] = sweep.timeS;
       this.#update(record, sweep, sensor);
       this.#write(record, sensor);
+      this.#takeOnBoard(record, sweep, sensor);
     }
     if (this.#heading === "relative") this.#holdTogether(sweep);
   }
@@ -226,6 +233,16 @@ export class ChainFusion {
     }
     this.bridged[sensor] = bridged ? 1 : 0;
     this.trust[sensor] = trustOf(r, this.#headingTrust(r, sensor), bridged, this.#parameters);
+  }
+
+  /** Without raw readings the sensor's own orientation stands; should they come, ours goes on from its yaw. */
+  #takeOnBoard(r: Float64Array, sweep: Sweep, sensor: number): void {
+    const ours = r[Slot.STARTED] === 1;
+    const ageS = this.onBoard.take(sweep, sensor, ours, this.orientations, this.#parameters.lostAfterS);
+    if (this.onBoard.used[sensor] === 0) return;
+    this.bridged[sensor] = ageS > this.#dueAfterS[sensor]! ? 1 : 0;
+    this.trust[sensor] = this.bridged[sensor] === 1 ? TRUST.BRIDGED : TRUST.GOOD;
+    r[Slot.START_YAW] = yawOf(this.orientations, 4 * sensor);
   }
 
   #headingTrust(r: Float64Array, sensor: number): number {

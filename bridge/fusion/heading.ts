@@ -16,6 +16,15 @@ export function noseYaw(r: Float64Array): number {
   return Math.atan2(north, east) + 2 * Math.atan2(r[Slot.HEADING + 1]!, r[Slot.HEADING]!);
 }
 
+/** Yaw of the nose axis of an orientation (4 slots, body axes to earth), rad, left of east. */
+export function yawOf(q: Float64Array, at: number): number {
+  const w = q[at]!;
+  const x = q[at + 1]!;
+  const y = q[at + 2]!;
+  const z = q[at + 3]!;
+  return Math.atan2(2 * (x * y + w * z), 1 - 2 * (y * y + z * z));
+}
+
 /** Without a field: turns the nose axis to the start's yaw, at first east (0), so that a straight chain starts straight. */
 export function startHeading(r: Float64Array): void {
   const half = 0.5 * (r[Slot.START_YAW]! - noseYaw(r));

@@ -215,7 +215,9 @@ export class PacketCompiler {
   #parts(name: PartName): PartReader[] {
     const { bit, channel, axes } = PARTS[name];
     const bySensor = new Map<number, AxisReader[]>();
+    let isNed = false;
     for (const listed of this.#all(name)) {
+      if (listed.field.what === "quaternion") isNed ||= listed.field.frame === "ned";
       for (const { sensor, shift } of this.#sensors(listed)) {
         const readers = bySensor.get(sensor) ?? [];
         readers.push(...this.#axes(name, listed, shift));
@@ -235,7 +237,7 @@ export class PacketCompiler {
           `each of ${[...axes].join(" ")} once`,
         );
       }
-      return { sensor, bit, channel, axes: readers };
+      return { sensor, bit, channel, axes: readers, isNed };
     });
   }
 

@@ -16,6 +16,7 @@ export type FlagKind =
   | "link silent"
   | "stuck axis"
   | "sensor read errors"
+  | "on-board fusion differs"
   | "recording trouble"
   | "hub restarted";
 
