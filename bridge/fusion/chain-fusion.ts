@@ -92,7 +92,7 @@ export class ChainFusion {
     this.#coefficients = new Coefficients(this.#parameters, rateHz);
     this.#startHeading = heading;
     this.#heading = heading;
-    this.#relative = new RelativeHeading(body, Float64Array.from(intervalsS));
+    this.#relative = new RelativeHeading(body);
     this.#records = intervalsS.map((intervalS) => createRecord(this.#parameters, intervalS));
     this.#offsetsS = Float64Array.from(intervalsS, (_, i) => samplingOffsetsS[i] ?? 0);
     this.#dueAfterS = Float64Array.from(intervalsS, (intervalS) => intervalS - 0.5 / rateHz);
@@ -157,7 +157,11 @@ export class ChainFusion {
   #holdTogether(sweep: Sweep): void {
     this.#relative.step(sweep, this.#records, this.orientations);
     const { turns } = this.#relative;
-    for (let sensor = 0; sensor < turns.length; sensor++) turnHeading(this.#records[sensor]!, turns[sensor]!);
+    for (let sensor = 0; sensor < turns.length; sensor++) {
+      const record = this.#records[sensor]!;
+      record[Slot.TURN + 2] = turns[sensor]!;
+      turnHeading(record);
+    }
   }
 
   #update(r: Float64Array, sweep: Sweep, sensor: number): void {

@@ -17,7 +17,10 @@ export enum Gap {
   LASTING = DD + 1,
   /** A window has measured this gap since it was reset. */
   MEASURED = LASTING + 1,
-  SIZE = MEASURED + 1,
+  /** Of the newest sweep: time since the one before, s; turn to take off. */
+  STEP = MEASURED + 1,
+  TURN = STEP + 1,
+  SIZE = TURN + 1,
 }
 
 /** Of a start: sensors mounted straight on a body that is not (20°); and their bias within data sheets. Ours, no source. */
@@ -48,10 +51,11 @@ export function gapSigma(g: Float64Array): number {
 }
 
 /**
- * Time passes, and the heading is corrected a little.
- * @returns the turn to take off the heading of the sensor behind against the one before, rad
+ * Time passes, Gap.STEP seconds of it, and the heading is corrected a little: Gap.TURN is what to take off the heading of
+ * the sensor behind against the one before.
  */
-export function advanceGap(g: Float64Array, stepS: number, atRest: boolean, clipped: boolean): number {
+export function advanceGap(g: Float64Array, atRest: boolean, clipped: boolean): void {
+  const stepS = g[Gap.STEP]!;
   g[Gap.EE] = Math.min(
     MOST,
     g[Gap.EE]! +
@@ -73,7 +77,7 @@ export function advanceGap(g: Float64Array, stepS: number, atRest: boolean, clip
     Math.min(most, g[Gap.DRIFT]! * stepS + g[Gap.ERROR]! * Math.min(1, stepS / CORRECT_S)),
   );
   g[Gap.ERROR] = drifted - turn;
-  return turn;
+  g[Gap.TURN] = turn;
 }
 
 /**

@@ -67,15 +67,16 @@ export function correctHeading(r: Float64Array, gains: Float64Array, parameters:
   } else {
     angle = Math.atan2(east, north);
   }
-  turnHeading(r, gain * angle);
+  r[Slot.TURN + 2] = gain * angle;
+  turnHeading(r);
 }
 
-/** Turns the heading by an angle, rad, positive left. */
-export function turnHeading(r: Float64Array, angle: number): void {
+/** Turns the heading by the angle that lies in the scratch, its part about the vertical: rad, positive left. */
+export function turnHeading(r: Float64Array): void {
   const c = r[Slot.HEADING]!;
   const s = r[Slot.HEADING + 1]!;
   // A turn by the half angle, as its tangent (the next term of a small one's series is below 1e-15); back to unit length.
-  const half = 0.5 * angle;
+  const half = 0.5 * r[Slot.TURN + 2]!;
   const tangent = Math.abs(half) < 1e-3 ? half * (1 + (half * half) / 3) : Math.tan(half);
   const scale = 1 / Math.sqrt((1 + tangent * tangent) * (c * c + s * s));
   r[Slot.HEADING] = (c - s * tangent) * scale;

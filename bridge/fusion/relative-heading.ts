@@ -38,7 +38,6 @@ export class RelativeHeading {
   readonly sigma: Float64Array;
   /** To add to each sensor's heading after a step, rad. */
   readonly turns: Float64Array;
-  readonly #intervalsS: Float64Array;
   readonly #motions: readonly Float64Array[];
   /** Whether each sensor's reading of this sweep can be used. */
   readonly #usable: Uint8Array;
@@ -50,11 +49,9 @@ export class RelativeHeading {
   readonly #meanBends: Float64Array;
   readonly #measured: GapMeasurement = { error: 0, random: 0, lasting: 0 };
 
-  /** @param intervalsS nominal time between the readings of each sensor, s */
-  constructor({ stations, lengthM, meanBend }: ChainBody, intervalsS: Float64Array) {
+  constructor({ stations, lengthM, meanBend }: ChainBody) {
     const count = stations.length;
     const shares = Float64Array.from({ length: count - 1 }, (_, i) => stations[i + 1]! - stations[i]!);
-    this.#intervalsS = intervalsS;
     this.sigma = new Float64Array(count - 1);
     this.turns = new Float64Array(count);
     this.#motions = stations.map(() => new Float64Array(Motion.SIZE));
@@ -79,17 +76,18 @@ export class RelativeHeading {
    * @param orientations body axes to earth, 4 a sensor
    */
   step(sweep: Sweep, records: readonly Float64Array[], orientations: Float64Array): void {
-    const { timeS, stepS } = sweep;
     for (let i = 0; i < records.length; i++) {
       const usable =
         records[i]![Slot.STARTED] === 1 &&
         (sweep.present[i]! & HAS_INERTIAL) === HAS_INERTIAL &&
         (sweep.conditions[i]! & SPOILT) === 0;
-      const taken =
-        usable && takeMotion(this.#motions[i]!, timeS, this.#intervalsS[i]!, orientations, sweep.values, i);
+      const taken = usable && takeMotion(this.#motions[i]!, records[i]!, orientations, sweep.values, i);
       this.#usable[i] = taken ? 1 : 0;
     }
-    for (let gap = 0; gap < this.#gaps.length; gap++) this.#follow(gap, records, stepS);
+    for (let gap = 0; gap < this.#gaps.length; gap++) {
+      this.#gaps[gap]![Gap.STEP] = sweep.stepS;
+      this.#follow(gap, records);
+    }
     this.#shareTurns();
   }
 
@@ -113,7 +111,7 @@ export class RelativeHeading {
   }
 
   /** Leaves the gap's turn in `turns`. */
-  #follow(gap: number, records: readonly Float64Array[], stepS: number): void {
+  #follow(gap: number, records: readonly Float64Array[]): void {
     const before = records[gap]!;
     const behind = records[gap + 1]!;
     if (before[Slot.STARTED] === 0 || behind[Slot.STARTED] === 0) {
@@ -123,18 +121,19 @@ export class RelativeHeading {
     const g = this.#gaps[gap]!;
     const sums = this.#sums[gap]!;
     if (this.#usable[gap] === 1 && this.#usable[gap + 1] === 1) {
-      sums[Sum.EXPECTED]! += stepS * g[Gap.ERROR]!;
-      this.#add(gap, sums, stepS);
+      this.#add(gap, g, sums);
     }
     const now = before[Slot.NOW]!;
     const atRest = before[Slot.AT_REST] === 1 && behind[Slot.AT_REST] === 1;
     const clipped = now < before[Slot.CLIPPED_UNTIL]! || now < behind[Slot.CLIPPED_UNTIL]!;
-    this.turns[gap] = advanceGap(g, stepS, atRest, clipped);
+    advanceGap(g, atRest, clipped);
+    this.turns[gap] = g[Gap.TURN]!;
     this.sigma[gap] = gapSigma(g);
   }
 
   /** Adds the newest readings to the gap's window, and closes it when it is due. */
-  #add(gap: number, sums: Float64Array, stepS: number): void {
+  #add(gap: number, g: Float64Array, sums: Float64Array): void {
+    const stepS = g[Gap.STEP]!;
     const i = this.#motions[gap]!;
     const j = this.#motions[gap + 1]!;
     const lengthM = this.#lengthsM[gap]!;
@@ -165,6 +164,7 @@ export class RelativeHeading {
     before -= slow[2]! += share * (before - slow[2]!);
     behind -= slow[3]! += share * (behind - slow[3]!);
     sums[Sum.TIME]! += stepS;
+    sums[Sum.EXPECTED]! += stepS * g[Gap.ERROR]!;
     sums[Sum.HH]! += stepS * h * h;
     sums[Sum.HP]! += stepS * h * p;
     sums[Sum.PP]! += stepS * p * p;

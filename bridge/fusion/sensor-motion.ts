@@ -5,12 +5,14 @@
  */
 import { lowPassGains, lowPassSize, stepLowPass } from "../numeric/low-pass.ts";
 import { ACCEL, CHANNELS } from "../sweep.ts";
+import { Slot } from "./record.ts";
 
 /** Where things lie in a sensor's record. Pairs: east, north. */
 export enum Motion {
-  /** Hub time of the newest reading; the step that the gains are for. */
+  /** Hub time of the newest reading, the step that it closed, and the step that the gains are for. */
   TIME = 0,
-  STEP = TIME + 1,
+  SINCE = TIME + 1,
+  STEP = SINCE + 1,
   GAINS = STEP + 1,
   /** Acceleration and tangent as they come, and low-passed. */
   INPUT = GAINS + 6,
@@ -35,14 +37,14 @@ const SAME_STEP = 0.01;
 
 /**
  * Takes a reading.
+ * @param record of the fusion: the sweep's time and the sensor's own interval
  * @param orientations body axes to earth, 4 a sensor
  * @param values as in sweep.ts
  * @returns false where the filters have just started, and their outputs mean nothing yet
  */
 export function takeMotion(
   r: Float64Array,
-  timeS: number,
-  intervalS: number,
+  record: Float64Array,
   orientations: Float64Array,
   values: Float64Array,
   sensor: number,
@@ -62,10 +64,16 @@ export function takeMotion(
   r[Motion.INPUT + 1] = north * fx + (1 - 2 * (x * x + z * z)) * fy + 2 * (y * z - w * x) * fz;
   r[Motion.INPUT + 2] = east;
   r[Motion.INPUT + 3] = north;
+  const timeS = record[Slot.NOW]!;
   const sinceS = timeS - r[Motion.TIME]!;
   r[Motion.TIME] = timeS;
-  if (sinceS > intervalS + BREAK_S || r[Motion.LOW_PASS] === 0) return restart(r, intervalS, east, north);
-  setStep(r, sinceS);
+  r[Motion.SINCE] = sinceS;
+  if (sinceS > record[Slot.INTERVAL]! + BREAK_S || r[Motion.LOW_PASS] === 0) {
+    r[Motion.SINCE] = record[Slot.INTERVAL]!;
+    restart(r);
+    return false;
+  }
+  setStep(r);
   stepLowPass(r, Motion.LOW_PASS, 4, Motion.INPUT, r, Motion.GAINS);
   const share = sinceS / MEAN_TAU_S;
   for (let i = 0; i < 2; i++) {
@@ -78,16 +86,16 @@ export function takeMotion(
   return r[Motion.LOW_PASS]! >= TAU_S;
 }
 
-function restart(r: Float64Array, intervalS: number, east: number, north: number): boolean {
+function restart(r: Float64Array): void {
   r.fill(0, Motion.LOW_PASS, Motion.LOW_PASS + lowPassSize(4));
-  setStep(r, intervalS);
+  setStep(r);
   stepLowPass(r, Motion.LOW_PASS, 4, Motion.INPUT, r, Motion.GAINS);
-  r[Motion.TANGENT_MEAN] = east;
-  r[Motion.TANGENT_MEAN + 1] = north;
-  return false;
+  r[Motion.TANGENT_MEAN] = r[Motion.INPUT + 2]!;
+  r[Motion.TANGENT_MEAN + 1] = r[Motion.INPUT + 3]!;
 }
 
-function setStep(r: Float64Array, stepS: number): void {
+function setStep(r: Float64Array): void {
+  const stepS = r[Motion.SINCE]!;
   if (Math.abs(stepS - r[Motion.STEP]!) <= SAME_STEP * stepS) return;
   r[Motion.STEP] = stepS;
   lowPassGains(r, Motion.GAINS, TAU_S, stepS);
