@@ -15,10 +15,12 @@ import { Admission, HubClock } from "./clock/hub-clock.ts";
 import { SilenceWatch } from "./clock/silence.ts";
 import { ChainFusion } from "./fusion/chain-fusion.ts";
 import { FlagBook } from "./health/flag-book.ts";
+import { HeadingFallback } from "./health/heading-fallback.ts";
 import { Health } from "./health/health.ts";
 import { siteField } from "./health/site-field.ts";
 import { createDecoder } from "./link/decoder.ts";
 import type { LinkCounters, PacketDecoder } from "./link/packets.ts";
+import { RAD_PER_DEG } from "./numeric/units.ts";
 import type { Rig } from "./rig/load.ts";
 import type { Sweep } from "./sweep.ts";
 import { TrialRing } from "./trial/ring.ts";
@@ -73,6 +75,8 @@ export class Pipeline {
   readonly #observer: PipelineObserver;
   readonly #calibration: Calibration;
   readonly #decoder: PacketDecoder;
+  /** null where headings are not magnetic anyway. */
+  readonly #fallback: HeadingFallback | null;
   readonly #silence = new SilenceWatch(SILENCE_MS);
   #badPackets = 0;
 
@@ -108,9 +112,15 @@ export class Pipeline {
       sensorCount,
       rateHz,
       heading: rig.heading,
+      body: {
+        stations: sensors.map((sensor) => sensor.station),
+        lengthM: body.lengthMm / 1000,
+        meanBend: rig.midline.meanBendDeg * RAD_PER_DEG,
+      },
       samplingOffsetsS: sensors.map((sensor) => sensor.samplingOffsetUs / 1e6),
       sensorRatesHz: sensors.map((sensor) => sensor.rateHz),
     });
+    this.#fallback = rig.heading === "magnetic" ? new HeadingFallback(this.flags) : null;
     this.midline = new Midline({
       lengthM: body.lengthMm / 1000,
       stations: sensors.map((sensor) => sensor.station),
@@ -170,7 +180,10 @@ export class Pipeline {
     if (admission === Admission.RESTARTED) this.health.hubRestarted(sweep.timeS);
     this.#calibration.apply(sweep);
     this.health.observe(sweep, this.fusion.orientations);
+    if (this.#fallback !== null)
+      this.fusion.setHeading(this.#fallback.observe(sweep.timeS) ? "relative" : "magnetic");
     this.fusion.step(sweep);
+    this.health.compareOnBoard(sweep.timeS, this.fusion.onBoard.tilt, this.fusion.onBoard.turn);
     this.midline.step(this.fusion.orientations, this.fusion.trust);
     this.travel.step(sweep.stepS, this.midline.positions, this.tailbeat.periodS);
     const tail = this.travel.lateral(this.midline.positions, POINT_COUNT - 1);

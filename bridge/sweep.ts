@@ -84,6 +84,9 @@ export interface Sweep {
   /** Body axes (x to the nose, y left, z up), calibrated. */
   readonly values: Float64Array;
 
+  /** On-board quaternions with the mounting taken off (body axes to earth), unit length, where HAS_ORIENTATION is set. */
+  readonly onBoardBody: Float64Array;
+
   // Written by health/.
   /** Condition bits per sensor, cleared by link/ at the start of each sweep. */
   readonly conditions: Uint8Array;
@@ -104,6 +107,7 @@ export function createSweep(sensorCount: number): Sweep {
     stepS: 0,
     lostBefore: 0,
     values: new Float64Array(sensorCount * CHANNELS),
+    onBoardBody: new Float64Array(sensorCount * 4),
     conditions: new Uint8Array(sensorCount),
   };
 }

@@ -2,6 +2,7 @@
  * The dashboard: a connection fills the view state; one animation-frame callback draws the newest of it, lanes at display
  * rate, text a few times a second.
  */
+import type { HeadingView } from "../bridge/wire/messages.ts";
 import { DrawLog } from "./draw-log.ts";
 import { BodyWave } from "./lanes/body-wave.ts";
 import { FromAbove } from "./lanes/from-above.ts";
@@ -28,6 +29,13 @@ const TEXT_MS = 250;
 /** Where the ruler begins and ends within the page, CSS pixels. As in the style sheet. */
 const RULER_LEFT = 176;
 const RULER_RIGHT = 28;
+
+/** What there is to say of headings that no magnetometer holds. */
+const HEADING_WORDS: Record<HeadingView, string> = {
+  magnetic: "",
+  relative: "Heading: held by the body",
+  free: "Heading drifts: gyroscopes only",
+};
 
 const element = (id: string) => document.getElementById(id)!;
 
@@ -144,6 +152,13 @@ function updateText(nowMs: number): void {
   notice.update(view, nowMs);
   sensors.update(view);
   markField.update(view);
-  setText(element("heading-note"), view.welcome?.heading === "free" ? "Heading drifts: gyroscopes only" : "");
+  showHeading();
   document.body.dataset.live = String(isLive(view));
+}
+
+function showHeading(): void {
+  const heading = view.status?.heading ?? view.welcome?.heading ?? "magnetic";
+  const note = element("heading-note");
+  note.dataset.heading = heading;
+  setText(note, HEADING_WORDS[heading]);
 }

@@ -5,12 +5,25 @@
  * all three are turned by the mounting rotation, which carries the body's axes onto the sensor's own: its columns are
  * the sensor's axes as seen from the body, so it takes a vector's sensor coordinates to its body coordinates.
  *
+ * A quaternion fused on board is turned by the mounting too: body axes to earth.
+ *
  * All of it is one affine map a part, value = M (raw - offset), worked out once; a sweep costs nine products a part.
  */
 
+import { conjugate, multiply, normalise, setIdentity } from "../numeric/quaternion.ts";
 import { RAD_PER_DEG } from "../numeric/units.ts";
 import type { SensorPlace } from "../rig/rig.ts";
-import { ACCEL, CHANNELS, GYRO, HAS_ACCEL, HAS_GYRO, HAS_MAG, MAG, type Sweep } from "../sweep.ts";
+import {
+  ACCEL,
+  CHANNELS,
+  GYRO,
+  HAS_ACCEL,
+  HAS_GYRO,
+  HAS_MAG,
+  HAS_ORIENTATION,
+  MAG,
+  type Sweep,
+} from "../sweep.ts";
 
 type Vector3 = readonly [number, number, number];
 type Matrix3 = readonly [Vector3, Vector3, Vector3];
@@ -24,13 +37,18 @@ const MAPS = 3 * MAP;
 export class Calibration {
   /** sensors x MAPS. */
   readonly #maps: Float64Array;
+  /** Body axes' coordinates to sensor coordinates, 4 a sensor. */
+  readonly #toSensor: Float64Array;
 
   /** @param sensors the rig's sensors, in the order of the sweep */
   constructor(sensors: readonly SensorPlace[]) {
     this.#maps = new Float64Array(sensors.length * MAPS);
+    this.#toSensor = new Float64Array(sensors.length * 4);
     sensors.forEach((sensor, i) => {
       const { gyroBiasDegPerS, accelBiasMPerS2, accelScale, magHardIronUT, magSoftIron } = sensor.calibration;
       const mounting = mountingMatrix(sensor.mounting);
+      mountingQuaternion(this.#toSensor, 4 * i, sensor.mounting);
+      conjugate(this.#toSensor, this.#toSensor, 4 * i, 4 * i);
       const gyroBias = gyroBiasDegPerS.map((bias) => bias * RAD_PER_DEG);
       const at = i * MAPS;
       this.#maps.set([...gyroBias, ...mounting.flat()], at);
@@ -50,8 +68,27 @@ export class Calibration {
       if (here & HAS_GYRO) applyMap(maps, at, raw, values, row + GYRO);
       if (here & HAS_ACCEL) applyMap(maps, at + MAP, raw, values, row + ACCEL);
       if (here & HAS_MAG) applyMap(maps, at + 2 * MAP, raw, values, row + MAG);
+      if (here & HAS_ORIENTATION) this.#mountOnBoard(sweep, 4 * sensor);
     }
   }
+
+  #mountOnBoard({ onBoard, onBoardBody }: Sweep, at: number): void {
+    multiply(onBoardBody, onBoard, this.#toSensor, at, at, at);
+    normalise(onBoardBody, onBoardBody, at, at);
+  }
+}
+
+/** out (4 slots) = the mounting rotation as a quaternion: sensor coordinates to body coordinates. */
+function mountingQuaternion(out: Float64Array, outAt: number, { yawDeg, pitchDeg, rollDeg }: Mounting): void {
+  const turn = new Float64Array(4);
+  setIdentity(out, outAt);
+  [yawDeg, pitchDeg, rollDeg].forEach((angleDeg, i) => {
+    const half = 0.5 * angleDeg * RAD_PER_DEG;
+    turn.fill(0);
+    turn[0] = Math.cos(half);
+    turn[3 - i] = Math.sin(half);
+    multiply(out, out, turn, outAt, outAt);
+  });
 }
 
 /**

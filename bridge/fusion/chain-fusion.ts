@@ -12,25 +12,42 @@
  * is lost: the output stands still, and the next reading starts anew, keeping the bias and the reference field.
  */
 import { setIdentity } from "../numeric/quaternion.ts";
+import type { HeadingSource } from "../rig/rig.ts";
 import { CONDITION, HAS_ACCEL, HAS_GYRO, HAS_INERTIAL, HAS_MAG, type Sweep, TRUST } from "../sweep.ts";
 import { Coefficients } from "./coefficients.ts";
 import { estimateBias } from "./gyro-bias.ts";
-import { composeEarth, correctHeading, levelField, noseYaw, startHeading } from "./heading.ts";
+import {
+  composeEarth,
+  correctHeading,
+  keepHeading,
+  levelField,
+  noseYaw,
+  startHeading,
+  turnHeading,
+  yawOf,
+} from "./heading.ts";
 import { composeLevel, correctInclination } from "./inclination.ts";
 import { watchField } from "./magnetic-reference.ts";
+import { OnBoard } from "./on-board.ts";
 import { DEFAULT_PARAMETERS, type FusionParameters } from "./parameters.ts";
 import { takeReading } from "./reading.ts";
 import { createRecord, loseOrientation, resetRecord, Slot } from "./record.ts";
+import { type ChainBody, RelativeHeading } from "./relative-heading.ts";
 import { watchRest } from "./rest.ts";
 import { extrapolate, integrateRate, takeRate } from "./strapdown.ts";
-import { trustOf } from "./trust.ts";
+import { magneticTrust, trustOf } from "./trust.ts";
 
 export interface ChainFusionOptions {
   readonly sensorCount: number;
   /** Nominal sweeps a second. */
   readonly rateHz: number;
-  /** magnetic: headings are held by the magnetometers. free: by the gyroscopes alone; magnetometers are not looked at. */
-  readonly heading: "magnetic" | "free";
+  /**
+   * What holds the headings at first. magnetic: the magnetometers. relative: each against its neighbours by how the body
+   * moves, all together by the gyroscopes. free: the gyroscopes alone; magnetometers are not looked at.
+   */
+  readonly heading: HeadingSource;
+  /** What the sensors sit on; a straight body of 1 m with sensors evenly along it where left out. */
+  readonly body?: ChainBody;
   /** How long after the sweep's time each sensor is sampled, s; zero if left out. */
   readonly samplingOffsetsS?: readonly number[];
   /** Rate of sensors that give a reading less often than the hub sweeps, by sensor; the hub's where left out. */
@@ -45,10 +62,14 @@ export class ChainFusion {
   readonly trust: Uint8Array;
   /** 1 where a reading was due and the orientation is predicted instead. */
   readonly bridged: Uint8Array;
+  /** Of sensors that fuse on board: where their own orientation is taken, and how far it differs from ours. */
+  readonly onBoard: OnBoard;
 
   readonly #parameters: FusionParameters;
   readonly #coefficients: Coefficients;
-  readonly #magnetic: boolean;
+  readonly #relative: RelativeHeading;
+  readonly #startHeading: HeadingSource;
+  #heading: HeadingSource;
   readonly #records: readonly Float64Array[];
   readonly #offsetsS: Float64Array;
   /** A sensor without a reading for longer than this has missed one, s. */
@@ -64,17 +85,21 @@ export class ChainFusion {
       samplingOffsetsS = [],
       sensorRatesHz = [],
       parameters = {},
+      body = straightBody(sensorCount),
     } = options;
     const intervalsS = Array.from({ length: sensorCount }, (_, i) => 1 / (sensorRatesHz[i] ?? rateHz));
     this.#parameters = { ...DEFAULT_PARAMETERS, ...parameters };
     this.#coefficients = new Coefficients(this.#parameters, rateHz);
-    this.#magnetic = heading === "magnetic";
+    this.#startHeading = heading;
+    this.#heading = heading;
+    this.#relative = new RelativeHeading(body);
     this.#records = intervalsS.map((intervalS) => createRecord(this.#parameters, intervalS));
     this.#offsetsS = Float64Array.from(intervalsS, (_, i) => samplingOffsetsS[i] ?? 0);
     this.#dueAfterS = Float64Array.from(intervalsS, (intervalS) => intervalS - 0.5 / rateHz);
     this.orientations = new Float64Array(sensorCount * 4);
     this.trust = new Uint8Array(sensorCount);
     this.bridged = new Uint8Array(sensorCount);
+    this.onBoard = new OnBoard(sensorCount);
     this.reset();
   }
 
@@ -87,6 +112,28 @@ export class ChainFusion {
     this.trust.fill(TRUST.LOST);
     this.bridged.fill(0);
     this.#timeS = -Infinity;
+    this.#heading = this.#startHeading;
+    this.#relative.reset();
+    this.onBoard.reset();
+  }
+
+  /** What holds the headings now. */
+  get heading(): HeadingSource {
+    return this.#heading;
+  }
+
+  /** Standard deviation of the heading between each sensor and the next, rad; kept up in relative heading only. Borrowed. */
+  get relativeSigma(): Float64Array {
+    return this.#relative.sigma;
+  }
+
+  /** From now on headings are held by another source. Nothing jumps: the present headings are corrected gradually. */
+  setHeading(source: HeadingSource): void {
+    if (source === this.#heading) return;
+    this.#heading = source;
+    this.#relative.reset();
+    if (source !== "magnetic") return;
+    for (const record of this.#records) keepHeading(record);
   }
 
   /**
@@ -101,6 +148,19 @@ export class ChainFusion {
       record[Slot.NOW] = sweep.timeS;
       this.#update(record, sweep, sensor);
       this.#write(record, sensor);
+      this.#takeOnBoard(record, sweep, sensor);
+    }
+    if (this.#heading === "relative") this.#holdTogether(sweep);
+  }
+
+  /** Turns the headings as the body says; seen with the next sweep. */
+  #holdTogether(sweep: Sweep): void {
+    this.#relative.step(sweep, this.#records, this.orientations);
+    const { turns } = this.#relative;
+    for (let sensor = 0; sensor < turns.length; sensor++) {
+      const record = this.#records[sensor]!;
+      record[Slot.TURN + 2] = turns[sensor]!;
+      turnHeading(record);
     }
   }
 
@@ -122,7 +182,7 @@ export class ChainFusion {
       if (parts & HAS_ACCEL) this.#level(r);
       else composeLevel(r);
     }
-    if (this.#magnetic && parts & HAS_MAG) {
+    if (this.#heading !== "free" && parts & HAS_MAG) {
       r[Slot.FIELD_FLAGGED] = conditions & CONDITION.MAG_DISTURBED ? 1 : 0;
       this.#head(r);
     }
@@ -162,7 +222,7 @@ export class ChainFusion {
     const gains = this.#coefficients.forStep(r, Slot.FIELD_STEP);
     levelField(r);
     watchField(r, gains, this.#parameters);
-    correctHeading(r, gains, this.#parameters);
+    if (this.#heading === "magnetic") correctHeading(r, gains, this.#parameters);
   }
 
   /** The output at the sweep's own time. A lost orientation stands still. */
@@ -176,7 +236,22 @@ export class ChainFusion {
       if (aheadS !== 0) extrapolate(r, this.orientations, at, aheadS, this.#parameters.slopeFadeS);
     }
     this.bridged[sensor] = bridged ? 1 : 0;
-    this.trust[sensor] = trustOf(r, this.#magnetic, bridged, this.#parameters);
+    this.trust[sensor] = trustOf(r, this.#headingTrust(r, sensor), bridged, this.#parameters);
+  }
+
+  /** Without raw readings the sensor's own orientation stands; should they come, ours goes on from its yaw. */
+  #takeOnBoard(r: Float64Array, sweep: Sweep, sensor: number): void {
+    const ours = r[Slot.STARTED] === 1;
+    const ageS = this.onBoard.take(sweep, sensor, ours, this.orientations, this.#parameters.lostAfterS);
+    if (this.onBoard.used[sensor] === 0) return;
+    this.bridged[sensor] = ageS > this.#dueAfterS[sensor]! ? 1 : 0;
+    this.trust[sensor] = this.bridged[sensor] === 1 ? TRUST.BRIDGED : TRUST.GOOD;
+    r[Slot.START_YAW] = yawOf(this.orientations, 4 * sensor);
+  }
+
+  #headingTrust(r: Float64Array, sensor: number): number {
+    if (this.#heading === "magnetic") return magneticTrust(r, this.#parameters);
+    return this.#heading === "relative" ? this.#relative.trustOf(sensor) : TRUST.HEADING_UNAIDED;
   }
 }
 
@@ -185,4 +260,9 @@ function turn(r: Float64Array): void {
   r[Slot.RATE_STEP] = r[Slot.NOW]! - r[Slot.RATE_TIME]!;
   r[Slot.RATE_TIME] = r[Slot.NOW]!;
   integrateRate(r);
+}
+
+function straightBody(sensorCount: number): ChainBody {
+  const stations = Array.from({ length: sensorCount }, (_, i) => (i + 0.5) / sensorCount);
+  return { stations, lengthM: 1, meanBend: 0 };
 }

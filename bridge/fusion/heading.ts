@@ -16,6 +16,15 @@ export function noseYaw(r: Float64Array): number {
   return Math.atan2(north, east) + 2 * Math.atan2(r[Slot.HEADING + 1]!, r[Slot.HEADING]!);
 }
 
+/** Yaw of the nose axis of an orientation (4 slots, body axes to earth), rad, left of east. */
+export function yawOf(q: Float64Array, at: number): number {
+  const w = q[at]!;
+  const x = q[at + 1]!;
+  const y = q[at + 2]!;
+  const z = q[at + 3]!;
+  return Math.atan2(2 * (x * y + w * z), 1 - 2 * (y * y + z * z));
+}
+
 /** Without a field: turns the nose axis to the start's yaw, at first east (0), so that a straight chain starts straight. */
 export function startHeading(r: Float64Array): void {
   const half = 0.5 * (r[Slot.START_YAW]! - noseYaw(r));
@@ -58,12 +67,26 @@ export function correctHeading(r: Float64Array, gains: Float64Array, parameters:
   } else {
     angle = Math.atan2(east, north);
   }
-  // A turn by this half angle, as its tangent (the next term of a small one's series is below 1e-15); back to unit length.
-  const half = 0.5 * gain * angle;
+  r[Slot.TURN + 2] = gain * angle;
+  turnHeading(r);
+}
+
+/** Turns the heading by the angle that lies in the scratch, its part about the vertical: rad, positive left. */
+export function turnHeading(r: Float64Array): void {
+  const c = r[Slot.HEADING]!;
+  const s = r[Slot.HEADING + 1]!;
+  // A turn by the half angle, as its tangent (the next term of a small one's series is below 1e-15); back to unit length.
+  const half = 0.5 * r[Slot.TURN + 2]!;
   const tangent = Math.abs(half) < 1e-3 ? half * (1 + (half * half) / 3) : Math.tan(half);
   const scale = 1 / Math.sqrt((1 + tangent * tangent) * (c * c + s * s));
   r[Slot.HEADING] = (c - s * tangent) * scale;
   r[Slot.HEADING + 1] = (s + c * tangent) * scale;
+}
+
+/** The present heading stands as the mean of all field readings so far: the next ones correct it at the steady gain. */
+export function keepHeading(r: Float64Array): void {
+  if (r[Slot.STARTED] === 0) return;
+  r[Slot.HEADING_SETTLED] = 1;
 }
 
 /** out (4 slots) = heading · level: body axes -> earth. */

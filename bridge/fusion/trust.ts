@@ -5,21 +5,27 @@ import { Slot } from "./record.ts";
 
 /**
  * The sensor's TRUST code.
- * @param magnetic the heading is to be held by the magnetometer
+ * @param heading what its heading is worth: GOOD, SETTLING or HEADING_UNAIDED
  * @param bridged the orientation is predicted across a lost reading
  */
 export function trustOf(
   r: Float64Array,
-  magnetic: boolean,
+  heading: number,
   bridged: boolean,
   parameters: FusionParameters,
 ): number {
   if (r[Slot.STARTED] === 0) return TRUST.LOST;
-  if (!magnetic || isHeadingUnaided(r, parameters)) return TRUST.HEADING_UNAIDED;
+  if (heading === TRUST.HEADING_UNAIDED) return TRUST.HEADING_UNAIDED;
   if (r[Slot.NOW]! < r[Slot.CLIPPED_UNTIL]!) return TRUST.CLIPPED;
   if (bridged) return TRUST.BRIDGED;
-  if (r[Slot.FORCE_LOW_PASS]! < parameters.accelTauS || r[Slot.HEADING_SETTLED] === 0) return TRUST.SETTLING;
-  return TRUST.GOOD;
+  if (r[Slot.FORCE_LOW_PASS]! < parameters.accelTauS) return TRUST.SETTLING;
+  return heading;
+}
+
+/** What a heading held by the magnetometer is worth. */
+export function magneticTrust(r: Float64Array, parameters: FusionParameters): number {
+  if (isHeadingUnaided(r, parameters)) return TRUST.HEADING_UNAIDED;
+  return r[Slot.HEADING_SETTLED] === 0 ? TRUST.SETTLING : TRUST.GOOD;
 }
 
 /** Before there is a reference the field cannot be called disturbed: then the heading is settling, not unaided. */

@@ -19,6 +19,8 @@ export const FLAG_ADVICE: Readonly<Record<AdviceKey, string>> = {
   "magnetic interference": "Something magnetic is near {place}; move it away or trust {name}'s heading less.",
   "rig-wide magnetic interference":
     "The field is off along the whole body: look for a motor, a magnet or steel brought near the tank, and trust no heading until this ends.",
+  "heading held by the body":
+    "The magnetometers are left out for now: keep the body beating, trust the shape, and read no compass directions until this ends.",
   "building field":
     "The building bends the Earth's field here: the shape is not affected, but do not read compass directions from this run.",
   "lost samples": "Check the plug and cable at {place}, then between hub and computer.",
@@ -29,6 +31,8 @@ export const FLAG_ADVICE: Readonly<Record<AdviceKey, string>> = {
     "Power {name} off and on; if the axis stays still, replace the sensor and rely on {neighbours} until then.",
   "sensor read errors":
     "The hub cannot read {name}: check its plug at {place} and the cable from {neighbours}.",
+  "on-board fusion differs":
+    "{name}'s own orientation is not ours, which is shown: check its mounting in the rig file, and its frame and axes in the packet layout.",
   "recording trouble": "Free disk space or choose another folder now: what arrives is not being kept.",
   "hub restarted":
     "The hub started anew: check its supply, and compare the time marks before and after when you evaluate.",

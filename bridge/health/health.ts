@@ -11,6 +11,7 @@ import { CorruptPackets } from "./corrupt-packets.ts";
 import { Delivery } from "./delivery.ts";
 import { Headroom } from "./headroom.ts";
 import { MagneticInterference } from "./magnetic.ts";
+import { OnBoardDifference } from "./on-board.ts";
 import { HubRestarts, ReadErrors } from "./read-errors.ts";
 import { Saturation } from "./saturation.ts";
 import type { HealthSetup } from "./setup.ts";
@@ -28,6 +29,8 @@ export class Health {
   readonly #stuck: StuckAxes;
   readonly #magnetic: MagneticInterference;
 
+  readonly #onBoard: OnBoardDifference;
+
   constructor(setup: HealthSetup) {
     this.#silence = new Silence(setup);
     this.#restarts = new HubRestarts(setup);
@@ -38,6 +41,7 @@ export class Health {
     this.#headroom = new Headroom(setup);
     this.#stuck = new StuckAxes(setup);
     this.#magnetic = new MagneticInterference(setup);
+    this.#onBoard = new OnBoardDifference(setup);
   }
 
   /**
@@ -56,6 +60,15 @@ export class Health {
     this.#headroom.observe(sweep);
     this.#stuck.observe(sweep);
     this.#magnetic.observe(sweep, orientations);
+  }
+
+  /**
+   * After fusion of the same sweep: how far orientations fused on board differ from ours.
+   * @param tilt RMS difference of inclination by sensor, rad; NaN for none
+   * @param turn of heading
+   */
+  compareOnBoard(timeS: number, tilt: Float64Array, turn: Float64Array): void {
+    this.#onBoard.observe(timeS, tilt, turn);
   }
 
   /** No sweep has come for a while, or one has again; saying the same again changes nothing. @param timeS hub time, s */

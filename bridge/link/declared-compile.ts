@@ -2,7 +2,7 @@
 import { BendwatchError, type ErrorDetail } from "../errors.ts";
 import type { PacketLayout } from "../rig/packet-layout.ts";
 import { CRC_MODELS, crc, sum8, sum16, xor8 } from "./checksum.ts";
-import { PacketCompiler } from "./declared-packet.ts";
+import { type LayoutContext, PacketCompiler, type Report } from "./declared-packet.ts";
 import {
   type ChecksumRule,
   COLUMN_BYTES,
@@ -13,26 +13,6 @@ import { TYPE_BYTES } from "./numbers.ts";
 
 /** Without a sync word every place in the bytes is tried, and each costs the checksum of a whole frame. */
 const MAX_BYTES_WITHOUT_SYNC = 1024;
-
-/** Reports one thing that does not hold together. */
-export type Report = (where: string, found: string, expected: string) => void;
-
-/** What the compilation of each packet needs to know of the whole. */
-export interface LayoutContext {
-  readonly sensorCount: number;
-  readonly isLine: boolean;
-  /** Byte order where a field gives none. */
-  readonly little: boolean;
-  /** Checksum and what follows it at the end of each frame; 0 for lines, whose columns end before it. */
-  readonly tailBytes: number;
-  /** Longest frame; for lines, as many columns as a line of that length can hold. */
-  readonly maxBytes: number;
-  /** Length of all frames, where they have one. */
-  readonly fixedBytes: number | null;
-  /** Registers a counter that starts over at `size`; the same name and size give the same counter. */
-  readonly counter: (name: string, size: number) => number;
-  readonly report: Report;
-}
 
 /**
  * @param sensorCount of the rig

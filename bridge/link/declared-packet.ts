@@ -1,7 +1,6 @@
 /** Compiles one packet of a declared layout into its readers. */
 import { type BinaryType, type PacketField, type PacketLayoutKind, UNITS } from "../rig/packet-layout.ts";
 import { ACCEL, GYRO, HAS_ACCEL, HAS_GYRO, HAS_MAG, HAS_ORIENTATION, MAG } from "../sweep.ts";
-import type { LayoutContext } from "./declared-compile.ts";
 import {
   type AxisReader,
   COLUMN_BYTES,
@@ -15,6 +14,26 @@ import {
   type StatusReader,
 } from "./declared-readers.ts";
 import { type Place, TYPE_BYTES, wrapOf } from "./numbers.ts";
+
+/** Reports one thing that does not hold together. */
+export type Report = (where: string, found: string, expected: string) => void;
+
+/** What the compilation of each packet needs to know of the whole. */
+export interface LayoutContext {
+  readonly sensorCount: number;
+  readonly isLine: boolean;
+  /** Byte order where a field gives none. */
+  readonly little: boolean;
+  /** Checksum and what follows it at the end of each frame; 0 for lines, whose columns end before it. */
+  readonly tailBytes: number;
+  /** Longest frame; for lines, as many columns as a line of that length can hold. */
+  readonly maxBytes: number;
+  /** Length of all frames, where they have one. */
+  readonly fixedBytes: number | null;
+  /** Registers a counter that starts over at `size`; the same name and size give the same counter. */
+  readonly counter: (name: string, size: number) => number;
+  readonly report: Report;
+}
 
 /** A field of the given kinds. */
 type Field<W extends PacketField["what"]> = Extract<PacketField, { what: W }>;
@@ -196,7 +215,9 @@ export class PacketCompiler {
   #parts(name: PartName): PartReader[] {
     const { bit, channel, axes } = PARTS[name];
     const bySensor = new Map<number, AxisReader[]>();
+    let isNed = false;
     for (const listed of this.#all(name)) {
+      if (listed.field.what === "quaternion") isNed ||= listed.field.frame === "ned";
       for (const { sensor, shift } of this.#sensors(listed)) {
         const readers = bySensor.get(sensor) ?? [];
         readers.push(...this.#axes(name, listed, shift));
@@ -216,7 +237,7 @@ export class PacketCompiler {
           `each of ${[...axes].join(" ")} once`,
         );
       }
-      return { sensor, bit, channel, axes: readers };
+      return { sensor, bit, channel, axes: readers, isNed };
     });
   }
 

@@ -37,6 +37,8 @@ export interface PartReader {
   /** First channel in the sensor's row; 0 for a quaternion, which has a row of its own. */
   readonly channel: number;
   readonly axes: readonly AxisReader[];
+  /** A quaternion to x north, y east, z down; the sweep has x east, y north, z up. */
+  readonly isNed: boolean;
 }
 
 export interface StatusReader extends Place {

@@ -199,6 +199,7 @@ export class DeclaredDecoder implements PacketDecoder {
     const isQuaternion = part.bit === HAS_ORIENTATION;
     // Four zeros are no rotation: fusion on board has not begun.
     if (isQuaternion && Math.hypot(values[0], values[1], values[2], values[3]) === 0) return;
+    if (part.isNed) toEastNorthUp(values);
     const to = isQuaternion ? this.#sweep.onBoard : this.#sweep.raw;
     const at = isQuaternion ? sensor * QUATERNION : sensor * CHANNELS + part.channel;
     for (let slot = 0; slot < part.axes.length; slot++) to[at + slot] = values[slot];
@@ -257,4 +258,13 @@ export class DeclaredDecoder implements PacketDecoder {
     if (!Number.isFinite(number)) return -1;
     return modulo(Math.round(this.#counters[reader.counter].next(number) * reader.factor), size);
   }
+}
+
+/** From north-east-down: half a turn about the line between north and east. */
+function toEastNorthUp(q: Float64Array): void {
+  const [w, x, y, z] = q;
+  q[0] = -Math.SQRT1_2 * (x + y);
+  q[1] = Math.SQRT1_2 * (w + z);
+  q[2] = Math.SQRT1_2 * (w - z);
+  q[3] = Math.SQRT1_2 * (y - x);
 }

@@ -8,9 +8,12 @@
  * exactly, nose included, and the body does not stretch: its tangent makes the angle theta = -asin(dy/ds) with the travel
  * axis, so the distance behind the nose is X(s, t) = integral of cos theta. All time derivatives are analytic; X is
  * integrated along the body by Gauss-Legendre quadrature (four nodes a panel, Abramowitz & Stegun 25.4.30).
+ *
+ * A body may be bent steadily besides: its tangent is then turned by bend (1/2 - s/L), a circular arc under the wave, and
+ * y is integrated along the body like X.
  */
 import { BendwatchError } from "../errors.ts";
-import type { Jet } from "./signal.ts";
+import { clear, type Jet } from "./signal.ts";
 
 /** Amplitude a(s/L) and its derivative, both as a share of body length, and the wavelength likewise. */
 interface Gait {
@@ -78,17 +81,29 @@ export interface PlaneMotion {
 
 /** One place on a waving body. */
 export class WavePlace {
-  /** Quadrature nodes from the nose to here: weight in m, then the slope's factors of sine and minus cosine of phi. */
+  /**
+   * Quadrature nodes from the nose to here: the slope's factors of sine and minus cosine of phi, then the weight in m times
+   * cosine and sine of the steady bend there.
+   */
   readonly #nodes: Float64Array;
+  /** The steady bend's share of the tangent's angle here, rad. */
+  readonly #turned: number;
+  readonly #bent: boolean;
   readonly #lateral: readonly [number, number];
   readonly #slope: readonly [number, number];
   readonly #m: Jet = { value: 0, rate: 0, acceleration: 0 };
 
-  /** @param station 0 nose to 1 tail tip */
-  constructor(gaitName: GaitName, lengthM: number, station: number) {
+  /**
+   * @param station 0 nose to 1 tail tip
+   * @param bend steady bend from tail tip to nose, rad, positive with the nose turned left
+   */
+  constructor(gaitName: GaitName, lengthM: number, station: number, bend = 0) {
     const gait = GAITS[gaitName];
     const k = (2 * Math.PI) / gait.wavelength; // per body length
-    this.#lateral = quadratures(lengthM * gait.amplitude(station), 0, k * station);
+    const wavingTo = bend === 0 ? station : 0;
+    this.#lateral = quadratures(lengthM * gait.amplitude(wavingTo), 0, k * wavingTo);
+    this.#turned = bend * (0.5 - station);
+    this.#bent = bend !== 0;
     this.#slope = slopeAt(gait, k, station);
     const panels = Math.ceil(station * PANELS_PER_LENGTH);
     const half = station / panels / 2;
@@ -96,7 +111,10 @@ export class WavePlace {
     for (let panel = 0; panel < panels; panel++) {
       for (const side of [-1, 1]) {
         NODES.forEach((node, i) => {
-          nodes.push(WEIGHTS[i] * half * lengthM, ...slopeAt(gait, k, half * (2 * panel + 1 + side * node)));
+          const x = half * (2 * panel + 1 + side * node);
+          const weight = WEIGHTS[i] * half * lengthM;
+          const turned = bend * (0.5 - x);
+          nodes.push(...slopeAt(gait, k, x), weight * Math.cos(turned), weight * Math.sin(turned));
         });
       }
     }
@@ -106,28 +124,36 @@ export class WavePlace {
   /** Writes this place's motion under `drive` to `out`. */
   motion(drive: WaveDrive, out: PlaneMotion): void {
     evaluate(drive, this.#lateral[0], this.#lateral[1], out.lateral);
-    this.#integrateBehind(drive, out.behind);
+    this.#integrate(drive, out.behind, out.lateral);
     const m = this.#m;
     evaluate(drive, this.#slope[0], this.#slope[1], m);
-    out.angle.value = -Math.asin(m.value);
+    out.angle.value = this.#turned - Math.asin(m.value);
     out.angle.rate = -m.rate / Math.sqrt(1 - m.value ** 2);
   }
 
-  #integrateBehind(drive: WaveDrive, out: Jet): void {
+  /** Sums up `behind`; of a bent body, adds to `lateral` (the nose's) what lies between. */
+  #integrate(drive: WaveDrive, behind: Jet, lateral: Jet): void {
     const nodes = this.#nodes;
     const m = this.#m;
-    out.value = 0;
-    out.rate = 0;
-    out.acceleration = 0;
-    for (let i = 0; i < nodes.length; i += 3) {
-      const weight = nodes[i];
-      evaluate(drive, nodes[i + 1], nodes[i + 2], m);
+    clear(behind);
+    for (let i = 0; i < nodes.length; i += 4) {
+      evaluate(drive, nodes[i], nodes[i + 1], m);
       const cosine = Math.sqrt(1 - m.value * m.value);
       const product = m.value * m.rate;
-      out.value += weight * cosine;
-      out.rate -= (weight * product) / cosine;
-      out.acceleration -=
-        weight * ((m.rate * m.rate + m.value * m.acceleration) / cosine + product ** 2 / cosine ** 3);
+      const rate = -product / cosine;
+      const acceleration = -(
+        (m.rate * m.rate + m.value * m.acceleration) / cosine +
+        product ** 2 / cosine ** 3
+      );
+      const along = nodes[i + 2];
+      const across = nodes[i + 3];
+      behind.value += along * cosine + across * m.value;
+      behind.rate += along * rate + across * m.rate;
+      behind.acceleration += along * acceleration + across * m.acceleration;
+      if (!this.#bent) continue;
+      lateral.value += along * m.value - across * cosine;
+      lateral.rate += along * m.rate - across * rate;
+      lateral.acceleration += along * m.acceleration - across * acceleration;
     }
   }
 }

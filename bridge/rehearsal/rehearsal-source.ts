@@ -9,6 +9,7 @@ import { type Fault, parseFault } from "./faults.ts";
 import { SimulatedHub } from "./simulated-hub.ts";
 import { EARTH_FIELD_UT, SimulatedRig, type Truth } from "./simulated-rig.ts";
 import { STEADY_SWIMMER, type SwimmerOptions } from "./swimmer-options.ts";
+import type { Unrest } from "./unrest.ts";
 
 /** Bytes are handed over this often, s of rehearsal: as a serial port's driver does. */
 const CHUNK_S = 0.004;
@@ -39,6 +40,8 @@ export interface RehearsalOptions {
   readonly faults?: readonly string[];
   /** What differs from a steady swimmer. */
   readonly swimmer?: Partial<SwimmerOptions>;
+  /** Wandering biases and fields, for tests of headings. */
+  readonly unrest?: Unrest;
   /** Endless unless given, s. */
   readonly durationS?: number;
   /** Times real time, or as fast as possible. */
@@ -125,13 +128,14 @@ export class RehearsalSource implements ByteSource {
   }
 
   #simulate(): SimulatedRig {
-    const { rig, seed = 1, swimmer, earthFieldUT = EARTH_FIELD_UT } = this.#options;
+    const { rig, seed = 1, swimmer, earthFieldUT = EARTH_FIELD_UT, unrest } = this.#options;
     return new SimulatedRig({
       rig,
       seed,
       faults: this.#faults,
       swimmer: { ...STEADY_SWIMMER, ...swimmer },
       earthFieldUT,
+      unrest,
     });
   }
 }

@@ -14,6 +14,7 @@ import { NoisySensor } from "./sensor-noise.ts";
 import { newJet } from "./signal.ts";
 import { newKinematics, Swimmer } from "./swimmer.ts";
 import type { SwimmerOptions } from "./swimmer-options.ts";
+import { type Unrest, unrestOf } from "./unrest.ts";
 
 /** Points of the true midline: as many as the display's. */
 export const TRUTH_POINTS = 41;
@@ -45,6 +46,8 @@ export interface SimulatedRigOptions {
   readonly swimmer: SwimmerOptions;
   /** µT, earth axes. */
   readonly earthFieldUT: readonly number[];
+  /** None unless given. */
+  readonly unrest?: Unrest | undefined;
 }
 
 export class SimulatedRig {
@@ -67,7 +70,7 @@ export class SimulatedRig {
   readonly #field = new Float64Array(3);
   readonly #toBody = new Float64Array(4);
 
-  constructor({ rig, seed, faults, swimmer, earthFieldUT }: SimulatedRigOptions) {
+  constructor({ rig, seed, faults, swimmer, earthFieldUT, unrest }: SimulatedRigOptions) {
     this.#rig = rig;
     this.swimmer = new Swimmer(rig.body.lengthMm / 1000, swimmer);
     this.#earthFieldUT = earthFieldUT;
@@ -88,7 +91,11 @@ export class SimulatedRig {
         peakRate: (sensor, fromS, toS) => this.#peakRate(sensor, fromS, toS),
       }),
     );
-    this.#effectsOn = sensors.map((_, sensor) => this.effects.filter((_, i) => faults[i].sensor === sensor));
+    this.#effectsOn = sensors.map((_, sensor) => {
+      const own = this.effects.filter((_, i) => faults[i].sensor === sensor);
+      if (unrest === undefined) return own;
+      return [...own, unrestOf(unrest, Random.forStream(seed, sensors.length + faults.length + sensor))];
+    });
   }
 
   /** Per sensor: rad/s, m/s² and µT for one count. */

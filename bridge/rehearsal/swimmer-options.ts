@@ -8,6 +8,8 @@ export interface SwimmerOptions {
   readonly frequencyHz: number;
   /** Share of the published amplitude. */
   readonly amplitude: number;
+  /** Steady bend from tail tip to nose under the wave, rad, positive with the nose turned left. */
+  readonly bend: number;
   /** How long the body lies still first, s: filters settle. */
   readonly restS: number;
   /** How long the first beats take to reach full amplitude, s. */
@@ -43,6 +45,7 @@ export const STEADY_SWIMMER: SwimmerOptions = {
   gait: "carangiform",
   frequencyHz: 1.1,
   amplitude: 1,
+  bend: 0,
   restS: 3,
   startS: 2,
   changes: [],

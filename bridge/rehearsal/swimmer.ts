@@ -74,7 +74,7 @@ export class Swimmer {
 
   /** A place on this body, made once and asked often. @param station 0 nose to 1 tail tip */
   place(station: number): WavePlace {
-    return new WavePlace(this.#options.gait, this.#lengthM, station);
+    return new WavePlace(this.#options.gait, this.#lengthM, station, this.#options.bend);
   }
 
   /** Writes what `place` does at `timeS` to `out`. */

@@ -183,11 +183,17 @@ const fieldSchema = z.discriminatedUnion("what", [
         .min(1)
         .max(4)
         .default(["w", "x", "y", "z"])
-        .describe("The parts in the order sent."),
+        .describe(
+          "The parts in the order sent; one sent from earth to sensor has its x, y and z signs turned.",
+        ),
+      frame: z
+        .enum(["enu", "ned"])
+        .default("enu")
+        .describe("Earth axes of the maker. enu: x east, y north, z up. ned: x north, y east, z down."),
       scale: scaled.scale,
       missing,
     })
-    .describe("Fused on board: Hamilton, sensor to earth (x east, y north, z up)."),
+    .describe("Fused on board: Hamilton, sensor to earth. The rig's mounting turns it into body axes."),
   z.strictObject({ what: z.literal("sequence"), ...place, ...counter }).describe("Counts sweeps."),
   z.strictObject({
     what: z.literal("tick"),

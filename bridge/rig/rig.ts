@@ -159,10 +159,10 @@ export const rigSchema = z.strictObject({
     .prefault({})
     .describe("What the body swims in."),
   heading: z
-    .enum(["magnetic", "free"])
+    .enum(["magnetic", "relative", "free"])
     .default("magnetic")
     .describe(
-      "magnetic: held by the magnetometers. free: gyroscopes only; it drifts, and the screen says so.",
+      "magnetic: held by the magnetometers; while the field is off along the whole body, as relative. relative: each sensor's against its neighbours' is held by how the body moves, the whole body's drifts; no magnetometer needed. free: gyroscopes only; it drifts, and the screen says so.",
     ),
   midline: z
     .strictObject({
@@ -170,6 +170,14 @@ export const rigSchema = z.strictObject({
         .enum(["slerp"])
         .default("slerp")
         .describe("Between sensors along the body, on the sphere."),
+      meanBendDeg: z
+        .number()
+        .min(-180)
+        .max(180)
+        .default(0)
+        .describe(
+          "Bend of the whole body, tail tip to nose, over whole tailbeats; positive with the nose turned left; spread evenly. Relative heading leans on it where the body moves too little to tell.",
+        ),
     })
     .prefault({})
     .describe("How the midline is built."),
@@ -180,4 +188,6 @@ export const rigSchema = z.strictObject({
 });
 
 export type RigFile = z.infer<typeof rigSchema>;
+/** What holds the headings. */
+export type HeadingSource = RigFile["heading"];
 export type SensorPlace = RigFile["sensors"][number];

@@ -47,6 +47,13 @@ export const thresholdsSchema = z.strictObject({
     .describe(
       "A flag when the hub failed to read a sensor in this share or more of the last second's sweeps: the same measure as for lost samples.",
     ),
+  onBoardOffDeg: z
+    .number()
+    .min(1)
+    .max(180)
+    .describe(
+      "A flag when a sensor's own orientation differs by this much RMS from ours, in inclination or (less its slow mean) heading: 20 ms of delay at a fast beat of 8 rad/s make 6°, a wrong mounting or frame mostly tens.",
+    ),
   stuckAxisS: z
     .number()
     .min(0.1)

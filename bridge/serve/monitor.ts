@@ -225,7 +225,7 @@ export class Monitor implements ByteSink {
 
   #status(): StatusMessage {
     const { recorder, source } = this.#options;
-    const { health, tailbeat, drift, counters, timeS, hostTimeMs, sweepCount } = this.#pipeline;
+    const { health, tailbeat, drift, counters, timeS, hostTimeMs, sweepCount, fusion } = this.#pipeline;
     const { good, badChecksum, discardedBytes } = counters;
     return {
       type: "status",
@@ -242,6 +242,7 @@ export class Monitor implements ByteSink {
         tailAmplitudeM: tailbeat.tailAmplitudeM,
         steadyBeats: tailbeat.steadyBeats,
       },
+      heading: fusion.heading,
     };
   }
 

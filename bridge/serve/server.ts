@@ -3,6 +3,7 @@
  */
 import { createServer, type IncomingMessage, type Server } from "node:http";
 import type { AddressInfo } from "node:net";
+import { networkInterfaces } from "node:os";
 import type { Duplex } from "node:stream";
 import { type WebSocket, WebSocketServer } from "ws";
 import { BendwatchError } from "../errors.ts";
@@ -20,6 +21,8 @@ import { Viewer } from "./viewer.ts";
 const PING_INTERVAL_MS = 5000;
 const MAX_VIEWERS = 64;
 const CLIENT_MESSAGES_PER_SECOND = 10;
+/** Listen everywhere: no address that a browser could open. */
+const ANY_ADDRESS = new Set(["0.0.0.0", "::"]);
 
 export interface ServerOptions extends AccessOptions {
   /** 0 picks a free one. */
@@ -76,7 +79,8 @@ export class StreamServer {
     });
     this.#pings = setInterval(() => this.#dropDeadViewers(), PING_INTERVAL_MS);
     const { port: actual } = this.#http.address() as AddressInfo;
-    const name = host.includes(":") ? `[${host}]` : host;
+    const shown = ANY_ADDRESS.has(host) ? (ownAddress() ?? host) : host;
+    const name = shown.includes(":") ? `[${shown}]` : shown;
     return `http://${name}:${actual}/${token === undefined ? "" : `?token=${encodeURIComponent(token)}`}`;
   }
 
@@ -156,6 +160,12 @@ export class StreamServer {
       socket.ping();
     }
   }
+}
+
+/** An address of this machine by which others reach it, where it has one. */
+function ownAddress(): string | undefined {
+  const all = Object.values(networkInterfaces()).flatMap((addresses) => addresses ?? []);
+  return all.find(({ internal, family }) => !internal && family === "IPv4")?.address;
 }
 
 function refuse(socket: Duplex, status: number, reason: string): void {

@@ -10,11 +10,13 @@ export type FlagKind =
   | "low headroom"
   | "magnetic interference"
   | "rig-wide magnetic interference"
+  | "heading held by the body"
   | "lost samples"
   | "corrupt packets"
   | "link silent"
   | "stuck axis"
   | "sensor read errors"
+  | "on-board fusion differs"
   | "recording trouble"
   | "hub restarted";
 

@@ -28,12 +28,16 @@ export interface WelcomeMessage {
   /** Points of the midline in each frame, nose to tail. */
   readonly pointCount: number;
   readonly source: { readonly kind: "serial" | "trial" | "rehearsal"; readonly label: string };
-  readonly heading: "magnetic" | "free";
+  /** As the rig file says. */
+  readonly heading: HeadingView;
   /** Flow speed, m/s, where the rig file gives one. */
   readonly flowMPerS: number | null;
   /** Changes whenever the bridge starts anew or a looped trial starts over: views clear their past. */
   readonly runId: string;
 }
+
+/** What holds the headings: the magnetometers, the body, or nothing but the gyroscopes. */
+export type HeadingView = "magnetic" | "relative" | "free";
 
 /** silent: the port is open but nothing comes. */
 export type LinkView = "opening" | "flowing" | "silent" | "closed" | "ended";
@@ -66,6 +70,8 @@ export interface StatusMessage {
     readonly discardedBytes: number;
   };
   readonly tailbeat: TailbeatView;
+  /** At present. */
+  readonly heading: HeadingView;
 }
 
 export interface TailbeatView {

@@ -23,16 +23,18 @@ export async function run(): Promise<{ rows: Record<string, string | number>[]; 
     logLevel: "warning",
   });
   const measured = JSON.parse(execFileSync(process.execPath, [outfile], { encoding: "utf8" })) as Measured;
-  const { fusion, madgwick, sensors } = measured;
+  const { fusion, relative, madgwick, sensors } = measured;
   return {
     rows: [
       row(`ChainFusion, ${sensors} sensors`, fusion, madgwick),
+      row("the same, relative heading", relative, madgwick),
       row("ahrs Madgwick", madgwick, madgwick),
     ],
     json: {
       ...measured,
       ratioOfBest: fusion.best / madgwick.best,
       ratioOfMedians: fusion.median / madgwick.median,
+      relativeOverMagnetic: relative.median / fusion.median,
     },
   };
 }

@@ -138,6 +138,14 @@ test("a flag of the whole rig names no sensor; text from the bridge is text, nev
   expect(await page.locator("#flags img, #marks b").count()).toBe(0);
 });
 
+test("headings held by the body are said to be so, and no more once a magnetometer holds them", async () => {
+  const bridge = await startBridge({ heading: "relative" });
+  const page = await open(bridge.address);
+  await page.getByText("Heading: held by the body").waitFor();
+  bridge.show({ heading: "magnetic" });
+  await page.getByText("Heading: held by the body").waitFor({ state: "detached" });
+});
+
 test("a rig whose heading runs free says so, and a sensor without magnetometer shows no field", async () => {
   const bridge = await startBridge(sixAxisScene());
   const page = await open(bridge.address);

@@ -1,7 +1,15 @@
 import { describe, expect, it } from "vitest";
 import { Calibration, mountingMatrix } from "../../bridge/calibration/calibration.ts";
+import { rotate } from "../../bridge/numeric/quaternion.ts";
 import { sensorSchema } from "../../bridge/rig/rig.ts";
-import { createSweep, HAS_ACCEL, HAS_GYRO, HAS_INERTIAL, HAS_MAG } from "../../bridge/sweep.ts";
+import {
+  createSweep,
+  HAS_ACCEL,
+  HAS_GYRO,
+  HAS_INERTIAL,
+  HAS_MAG,
+  HAS_ORIENTATION,
+} from "../../bridge/sweep.ts";
 
 /** A handful of double-precision products of numbers up to 50. */
 const ROUNDING = 1e-13;
@@ -92,5 +100,30 @@ describe("mountingMatrix", () => {
         expect(Math.abs(dot(a, b) - (i === j ? 1 : 0))).toBeLessThanOrEqual(ROUNDING);
       });
     });
+  });
+});
+
+describe("A quaternion fused on board", () => {
+  it("is turned by the mounting: a vector's sensor coordinates and its body coordinates give the same in the earth", () => {
+    const mounting = { yawDeg: 90, pitchDeg: 20, rollDeg: -35 };
+    const sweep = createSweep(1);
+    const own = [0.5, -0.5, 0.5, 0.5];
+    sweep.onBoard.set(own);
+    sweep.raw.set([1, 2, 3]);
+    sweep.present[0] = HAS_GYRO | HAS_ORIENTATION;
+    new Calibration([place({ mounting })]).apply(sweep);
+    const bySensor = [0, 0, 0];
+    const byBody = [0, 0, 0];
+    rotate(bySensor, own, [1, 2, 3]);
+    rotate(byBody, sweep.onBoardBody, sweep.values);
+    close(byBody, bySensor);
+  });
+
+  it("is brought to unit length", () => {
+    const sweep = createSweep(1);
+    sweep.onBoard.set([0, 0, 0, 1.02]);
+    sweep.present[0] = HAS_ORIENTATION;
+    new Calibration([place({})]).apply(sweep);
+    close([...sweep.onBoardBody], [0, 0, 0, 1]);
   });
 });

@@ -2,6 +2,7 @@ import fc from "fast-check";
 import { expect, test } from "vitest";
 import { DeclaredDecoder } from "../../bridge/link/declared.ts";
 import { compileLayout } from "../../bridge/link/declared-compile.ts";
+import { rotate } from "../../bridge/numeric/quaternion.ts";
 import { type PacketLayout, packetLayoutSchema } from "../../bridge/rig/packet-layout.ts";
 import { HAS_GYRO, HAS_MAG, HAS_ORIENTATION } from "../../bridge/sweep.ts";
 import { hex, join, Log, pushCut } from "./log.ts";
@@ -55,6 +56,28 @@ test("four zeros are no orientation, and a number that is none is no reading", (
   expect(present([zero, zero, zero, zero])).toBe(0);
   expect(present([one, zero, zero, "7f c0 00 00"])).toBe(0);
   expect(present([one, zero, zero, "7f 80 00 00"])).toBe(0);
+});
+
+test("a quaternion to north-east-down is turned to east-north-up", () => {
+  const layout = {
+    framing: { kind: "fixed", bytes: 5, syncHex: "7E" },
+    packets: [
+      {
+        name: "one",
+        fields: [{ what: "quaternion", sensor: 0, at: 1, type: "i8", scale: 0.01, frame: "ned" }],
+      },
+    ],
+  };
+  const decode = decoderOf(layout, 1);
+  const nose = (packet: string) => {
+    const out = [0, 0, 0];
+    rotate(out, decode(hex(packet)).sweeps[0].onBoard, [1, 0, 0]);
+    return out.map((v) => Math.round(v * 1000) / 1000 + 0);
+  };
+  // Level and ahead: north. Turned right by 90 deg, which is positive about down: east. Nose up by 53 deg.
+  expect(nose("7e 64 00 00 00")).toEqual([0, 1, 0]);
+  expect(nose("7e 47 00 00 47").map(Math.round)).toEqual([1, 0, 0]);
+  expect(nose("7e 59 00 2d 00")[2]).toBeCloseTo(0.8, 1);
 });
 
 /** A packet for each sensor's gyro and each one's magnetometer: kind, count of sweeps, sensor (1 or 2), three axes. */

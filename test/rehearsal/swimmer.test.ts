@@ -63,8 +63,11 @@ test.each<GaitName>(["carangiform", "anguilliform"])(
   },
 );
 
-test("the body keeps its length at every moment", () => {
-  const swimmer = swimmerOf();
+/** Straight under its wave, and steadily bent to the left. */
+const BENDS = [0, 0.4];
+
+test.each(BENDS)("a body bent by %d rad keeps its length at every moment", (bend) => {
+  const swimmer = swimmerOf({ bend });
   const count = 2001;
   const places = Array.from({ length: count }, (_, i) => swimmer.place(i / (count - 1)));
   const midline = new Float64Array(3 * count);
@@ -84,8 +87,23 @@ test("the body keeps its length at every moment", () => {
   }
 });
 
-test("angular velocity is the derivative of the orientation", () => {
-  const swimmer = swimmerOf();
+test("a still body with a steady bend is an arc of a circle", () => {
+  const bend = 0.4;
+  const swimmer = swimmerOf({ bend, heading: 0 });
+  const midline = new Float64Array(6);
+  swimmer.midline(0.5, [swimmer.place(0), swimmer.place(1)], midline);
+  // The chord of an arc of length L that turns by b is L sin(b/2) / (b/2); by symmetry it lies along the travel axis.
+  expect(midline[3]).toBeCloseTo((-LENGTH_M * Math.sin(bend / 2)) / (bend / 2), 12);
+  expect(Math.abs(midline[4])).toBeLessThan(1e-12);
+  const yaw = (station: number) => {
+    const q = at(swimmer, 0.5, station).orientation;
+    return 2 * Math.atan2(q[3], q[0]);
+  };
+  expect(yaw(0) - yaw(1)).toBeCloseTo(bend, 12);
+});
+
+test.each(BENDS)("angular velocity is the derivative of the orientation, bent by %d rad", (bend) => {
+  const swimmer = swimmerOf({ bend });
   const h = 1e-5;
   for (const station of STATIONS) {
     for (let t = 1.1; t < 8; t += 0.31) {
@@ -103,8 +121,8 @@ test("angular velocity is the derivative of the orientation", () => {
   }
 });
 
-test("specific force is the acceleration of the place, less gravity", () => {
-  const swimmer = swimmerOf();
+test.each(BENDS)("specific force is the acceleration of the place, less gravity, bent by %d rad", (bend) => {
+  const swimmer = swimmerOf({ bend });
   const h = 1e-3;
   for (const station of STATIONS) {
     for (let t = 1.1; t < 8; t += 0.31) {

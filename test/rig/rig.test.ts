@@ -71,7 +71,7 @@ describe("what is wrong in a rig file is named by key, found and expected:", () 
   test.each([
     ["a text for a number", { body: { kind: "foil", lengthMm: "640" } }, "body.lengthMm", '"640"', "number"],
     ["a value out of range", { hub: { rateHz: 0.5 } }, "hub.rateHz", "0.5", "number to be >=1"],
-    ["another word", { heading: "compass" }, "heading", '"compass"', 'one of "magnetic"|"free"'],
+    ["another word", { heading: "compass" }, "heading", '"compass"', 'one of "magnetic"|"relative"|"free"'],
     ["a missing group", { hub: undefined }, "hub", "nothing", "object"],
     [
       "a port by two ways",

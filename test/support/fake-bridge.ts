@@ -146,7 +146,7 @@ export class FakeBridge {
   }
 
   #status(): BridgeMessage {
-    const { link, linkDetail, recording, wave, lengthM, rateHz, lostShare } = this.#scene;
+    const { link, linkDetail, recording, wave, lengthM, rateHz, lostShare, heading } = this.#scene;
     return {
       type: "status",
       hubTimeS: this.#hubTimeS,
@@ -159,6 +159,7 @@ export class FakeBridge {
       driftPpm: 18,
       counters: { good: Math.round(this.#hubTimeS * rateHz), badChecksum: 3, discardedBytes: 41 },
       tailbeat: tailbeatOf(wave, lengthM),
+      heading,
     };
   }
 

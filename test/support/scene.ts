@@ -114,7 +114,7 @@ export function tailbeatOf({ frequencyHz, tailShare }: Wave, lengthM: number): T
 
 /** A status of the healthy scene whose link is in some state. */
 export function statusOf(link: LinkView, linkDetail = ""): StatusMessage {
-  const { recording, wave, lengthM } = healthyScene();
+  const { recording, wave, lengthM, heading } = healthyScene();
   return {
     type: "status",
     hubTimeS: 12,
@@ -127,6 +127,7 @@ export function statusOf(link: LinkView, linkDetail = ""): StatusMessage {
     driftPpm: null,
     counters: { good: 0, badChecksum: 0, discardedBytes: 0 },
     tailbeat: tailbeatOf(wave, lengthM),
+    heading,
   };
 }
 

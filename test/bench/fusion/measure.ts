@@ -27,6 +27,8 @@ export interface Summary {
 export interface Measured {
   readonly sensors: number;
   readonly fusion: Summary & { readonly heapBytes: number };
+  /** The same with headings held by the body. */
+  readonly relative: Summary & { readonly heapBytes: number };
   readonly madgwick: Summary & { readonly heapBytes: number };
   /** Results kept alive, so that nothing is optimised away. */
   readonly kept: number;
@@ -34,19 +36,23 @@ export interface Measured {
 
 function measure(): Measured {
   const readings = wavingChain();
-  const fusion = fusionRunner(readings);
+  const fusion = fusionRunner(readings, "magnetic");
+  const relative = fusionRunner(readings, "relative");
   const madgwick = madgwickRunner(readings);
   const fusionNs: number[] = [];
+  const relativeNs: number[] = [];
   const madgwickNs: number[] = [];
   for (let round = 0; round < WARM_UP_ROUNDS + ROUNDS; round++) {
     madgwickNs.push(nsPerUpdate(madgwick.round));
     fusionNs.push(nsPerUpdate(fusion.round));
+    relativeNs.push(nsPerUpdate(relative.round));
   }
   return {
     sensors: SENSORS,
     fusion: { ...summary(fusionNs.slice(WARM_UP_ROUNDS)), heapBytes: heapBytesPerUpdate(fusion.round) },
+    relative: { ...summary(relativeNs.slice(WARM_UP_ROUNDS)), heapBytes: heapBytesPerUpdate(relative.round) },
     madgwick: { ...summary(madgwickNs.slice(WARM_UP_ROUNDS)), heapBytes: heapBytesPerUpdate(madgwick.round) },
-    kept: fusion.kept() + madgwick.kept(),
+    kept: fusion.kept() + relative.kept() + madgwick.kept(),
   };
 }
 
@@ -74,8 +80,8 @@ function wavingChain(): Float64Array {
   return readings;
 }
 
-function fusionRunner(readings: Float64Array) {
-  const fusion = new ChainFusion({ sensorCount: SENSORS, rateHz: RATE_HZ, heading: "magnetic" });
+function fusionRunner(readings: Float64Array, heading: "magnetic" | "relative") {
+  const fusion = new ChainFusion({ sensorCount: SENSORS, rateHz: RATE_HZ, heading });
   const sweep = createSweep(SENSORS);
   sweep.present.fill(HAS_INERTIAL | HAS_MAG);
   sweep.stepS = 1 / RATE_HZ;

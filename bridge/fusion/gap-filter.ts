@@ -1,0 +1,105 @@
+/**
+ * The heading error of one gap between two sensors over time: a Kalman filter of two states, the error and its rate of
+ * drift (the difference of the two gyroscopes' biases about the vertical), and its gradual correction.
+ */
+import { RAD_PER_DEG } from "../numeric/units.ts";
+import type { GapMeasurement } from "./gap-window.ts";
+
+/** Where things lie in a gap's record; rad, rad/s. */
+export enum Gap {
+  ERROR = 0,
+  DRIFT = ERROR + 1,
+  /** Covariance: error with error, with drift, drift with drift. */
+  EE = DRIFT + 1,
+  ED = EE + 1,
+  DD = ED + 1,
+  /** Variance that no measurement takes away: that of the way of measuring. */
+  LASTING = DD + 1,
+  /** A window has measured this gap since it was reset. */
+  MEASURED = LASTING + 1,
+  /** Of the newest sweep: time since the one before, s; turn to take off. */
+  STEP = MEASURED + 1,
+  TURN = STEP + 1,
+  SIZE = TURN + 1,
+}
+
+/** Of a start: sensors mounted straight on a body that is not (20°); and their bias within data sheets. Ours, no source. */
+const START = 20 * RAD_PER_DEG;
+const DRIFT = 0.5 * RAD_PER_DEG;
+/** At rest the fusion itself finds the bias, of both sensors to 0.03 °/s. */
+const DRIFT_AT_REST = Math.SQRT2 * 0.03 * RAD_PER_DEG;
+const REST_FADE_S = 2;
+/** The drift wanders by 0.1 °/s in 10 s (as variance a second): a unit that warms up in the hand. Ours, no source. */
+const WANDER = (0.1 * RAD_PER_DEG) ** 2 / 10;
+/** Errors that come with a clipped gyroscope, as variance a second: 5° in one second. Ours, no source. */
+const CLIPPED = (5 * RAD_PER_DEG) ** 2;
+/** A correction takes this long, s, and never turns faster than this, rad/s. */
+const CORRECT_S = 2;
+const FASTEST = 5 * RAD_PER_DEG;
+/** Beyond this an angle means nothing. */
+const MOST = Math.PI ** 2;
+
+export function resetGap(g: Float64Array): void {
+  g.fill(0);
+  g[Gap.EE] = START * START;
+  g[Gap.DD] = DRIFT * DRIFT;
+}
+
+/** Standard deviation of the gap's heading, rad. */
+export function gapSigma(g: Float64Array): number {
+  return Math.sqrt(g[Gap.EE]! + g[Gap.LASTING]!);
+}
+
+/**
+ * Time passes, Gap.STEP seconds of it, and the heading is corrected a little: Gap.TURN is what to take off the heading of
+ * the sensor behind against the one before.
+ */
+export function advanceGap(g: Float64Array, atRest: boolean, clipped: boolean): void {
+  const stepS = g[Gap.STEP]!;
+  g[Gap.EE] = Math.min(
+    MOST,
+    g[Gap.EE]! +
+      stepS * (2 * g[Gap.ED]! + stepS * g[Gap.DD]!) +
+      (clipped ? CLIPPED * stepS : (WANDER * stepS ** 3) / 3),
+  );
+  g[Gap.ED]! += stepS * g[Gap.DD]!;
+  g[Gap.DD] = Math.min(DRIFT * DRIFT, g[Gap.DD]! + WANDER * stepS);
+  if (atRest) {
+    g[Gap.DRIFT]! *= 1 - Math.min(1, stepS / REST_FADE_S);
+    g[Gap.DD] = Math.min(g[Gap.DD]!, DRIFT_AT_REST * DRIFT_AT_REST);
+    const most = Math.sqrt(g[Gap.EE]! * g[Gap.DD]!);
+    g[Gap.ED] = Math.max(-most, Math.min(most, g[Gap.ED]!));
+  }
+  const drifted = g[Gap.ERROR]! + g[Gap.DRIFT]! * stepS;
+  const most = FASTEST * stepS;
+  const turn = Math.max(
+    -most,
+    Math.min(most, g[Gap.DRIFT]! * stepS + g[Gap.ERROR]! * Math.min(1, stepS / CORRECT_S)),
+  );
+  g[Gap.ERROR] = drifted - turn;
+  g[Gap.TURN] = turn;
+}
+
+/**
+ * Takes a window's measurement, which speaks of the middle of the window.
+ * @param expected mean of the filter's error over the window, rad
+ */
+export function measureGap(
+  g: Float64Array,
+  measured: GapMeasurement,
+  expected: number,
+  windowS: number,
+): void {
+  const back = 0.5 * windowS;
+  const e = g[Gap.EE]! - back * g[Gap.ED]!;
+  const d = g[Gap.ED]! - back * g[Gap.DD]!;
+  const inverse = 1 / (e - back * d + measured.random);
+  const innovation = measured.error - expected;
+  g[Gap.ERROR]! += e * inverse * innovation;
+  g[Gap.DRIFT]! += d * inverse * innovation;
+  g[Gap.EE]! -= e * e * inverse;
+  g[Gap.ED]! -= e * d * inverse;
+  g[Gap.DD]! -= d * d * inverse;
+  g[Gap.LASTING] = measured.lasting;
+  g[Gap.MEASURED] = 1;
+}
