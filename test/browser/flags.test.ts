@@ -184,10 +184,3 @@ test.each([
     expect(await redness(page, x, y(2.8))).toBeLessThan(50);
   },
 );
-
-test("a rig whose headings are held by the body says so", async () => {
-  const bridge = await startBridge({ ...sixAxisScene(), heading: "relative" });
-  const page = await open(bridge.address);
-  await page.waitForFunction(() => document.body.textContent?.includes("Heading: held by the body."));
-  expect(await page.locator("body").textContent()).not.toMatch(/heading drifts/i);
-});
