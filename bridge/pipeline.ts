@@ -8,7 +8,7 @@
  */
 import { Midline } from "./body/midline.ts";
 import { TravelAxis } from "./body/travel-axis.ts";
-import { Calibration } from "./calibration/calibration.ts";
+import { Calibration, mountingMatrix } from "./calibration/calibration.ts";
 import { DriftMeter } from "./clock/drift.ts";
 import { Admission, HubClock } from "./clock/hub-clock.ts";
 import { SilenceWatch } from "./clock/silence.ts";
@@ -18,6 +18,7 @@ import { Health } from "./health/health.ts";
 import { siteField } from "./health/site-field.ts";
 import { createDecoder } from "./link/decoder.ts";
 import type { LinkCounters, PacketDecoder } from "./link/packets.ts";
+import { RAD_PER_DEG } from "./numeric/units.ts";
 import type { Rig } from "./rig/load.ts";
 import type { Sweep } from "./sweep.ts";
 import { TrialRing } from "./trial/ring.ts";
@@ -109,6 +110,8 @@ export class Pipeline {
       heading: rig.heading,
       samplingOffsetsS: sensors.map((sensor) => sensor.samplingOffsetUs / 1e6),
       sensorRatesHz: sensors.map((sensor) => sensor.rateHz),
+      gyroRanges: models.map((model) => model.gyro.rangeDegPerS * RAD_PER_DEG),
+      gyroAxes: sensors.map((sensor) => mountingMatrix(sensor.mounting).flat()),
     });
     this.midline = new Midline({
       lengthM: body.lengthMm / 1000,

@@ -13,7 +13,9 @@
  */
 import { setIdentity } from "../numeric/quaternion.ts";
 import { CONDITION, HAS_ACCEL, HAS_GYRO, HAS_INERTIAL, HAS_MAG, type Sweep, TRUST } from "../sweep.ts";
+import { clippedAxes, settleStretch, steadyField } from "./clipping.ts";
 import { Coefficients } from "./coefficients.ts";
+import { settleGap } from "./gap.ts";
 import { estimateBias } from "./gyro-bias.ts";
 import { composeEarth, correctHeading, levelField, noseYaw, startHeading } from "./heading.ts";
 import { composeLevel, correctInclination } from "./inclination.ts";
@@ -22,8 +24,9 @@ import { DEFAULT_PARAMETERS, type FusionParameters } from "./parameters.ts";
 import { takeReading } from "./reading.ts";
 import { createRecord, loseOrientation, resetRecord, Slot } from "./record.ts";
 import { watchRest } from "./rest.ts";
-import { extrapolate, integrateRate, takeRate } from "./strapdown.ts";
+import { carryToEnd, extrapolate, integrateRate, takeRate } from "./strapdown.ts";
 import { trustOf } from "./trust.ts";
+import { headingSigma, inclinationSigma, isRecovered, narrowInclination } from "./uncertainty.ts";
 
 export interface ChainFusionOptions {
   readonly sensorCount: number;
@@ -35,8 +38,15 @@ export interface ChainFusionOptions {
   readonly samplingOffsetsS?: readonly number[];
   /** Rate of sensors that give a reading less often than the hub sweeps, by sensor; the hub's where left out. */
   readonly sensorRatesHz?: readonly (number | undefined)[];
+  /** Range of the gyroscopes, by sensor: plus and minus this, rad/s. Where left out, only flagged readings are clipped. */
+  readonly gyroRanges?: readonly (number | undefined)[];
+  /** Matrices by rows (9) that take the sensor's axes to the body's, by sensor; the identity where left out. */
+  readonly gyroAxes?: readonly (readonly number[] | undefined)[];
   readonly parameters?: Partial<FusionParameters>;
 }
+
+/** Standard deviation of an angle that could be anything, rad. */
+const ANY_SIGMA = Math.PI / Math.sqrt(3);
 
 export class ChainFusion {
   /** Four a sensor, body axes to earth, at the sweep's own time. Borrowed: they change with each step. */
@@ -45,6 +55,9 @@ export class ChainFusion {
   readonly trust: Uint8Array;
   /** 1 where a reading was due and the orientation is predicted instead. */
   readonly bridged: Uint8Array;
+  /** Standard deviation of inclination and of heading, rad, one a sensor; that of any angle at all, π/√3, where lost. */
+  readonly inclinationSigma: Float64Array;
+  readonly headingSigma: Float64Array;
 
   readonly #parameters: FusionParameters;
   readonly #coefficients: Coefficients;
@@ -63,18 +76,24 @@ export class ChainFusion {
       heading,
       samplingOffsetsS = [],
       sensorRatesHz = [],
+      gyroRanges = [],
+      gyroAxes = [],
       parameters = {},
     } = options;
     const intervalsS = Array.from({ length: sensorCount }, (_, i) => 1 / (sensorRatesHz[i] ?? rateHz));
     this.#parameters = { ...DEFAULT_PARAMETERS, ...parameters };
     this.#coefficients = new Coefficients(this.#parameters, rateHz);
     this.#magnetic = heading === "magnetic";
-    this.#records = intervalsS.map((intervalS) => createRecord(this.#parameters, intervalS));
+    this.#records = intervalsS.map((intervalS, i) =>
+      createRecord(this.#parameters, intervalS, gyroRanges[i], gyroAxes[i]),
+    );
     this.#offsetsS = Float64Array.from(intervalsS, (_, i) => samplingOffsetsS[i] ?? 0);
     this.#dueAfterS = Float64Array.from(intervalsS, (intervalS) => intervalS - 0.5 / rateHz);
     this.orientations = new Float64Array(sensorCount * 4);
     this.trust = new Uint8Array(sensorCount);
     this.bridged = new Uint8Array(sensorCount);
+    this.inclinationSigma = new Float64Array(sensorCount);
+    this.headingSigma = new Float64Array(sensorCount);
     this.reset();
   }
 
@@ -86,6 +105,8 @@ export class ChainFusion {
     });
     this.trust.fill(TRUST.LOST);
     this.bridged.fill(0);
+    this.inclinationSigma.fill(ANY_SIGMA);
+    this.headingSigma.fill(ANY_SIGMA);
     this.#timeS = -Infinity;
   }
 
@@ -112,13 +133,20 @@ export class ChainFusion {
     const parts = takeReading(r, sweep, sensor);
     if (!(parts & HAS_GYRO)) return;
     const conditions = sweep.conditions[sensor]!;
-    if (conditions & CONDITION.GYRO_CLIPPED)
-      r[Slot.CLIPPED_UNTIL] = r[Slot.NOW]! + this.#parameters.clippedHoldS;
+    const fieldCounts = this.#magnetic && parts >= HAS_MAG && (conditions & CONDITION.MAG_DISTURBED) === 0;
+    r[Slot.CLIPPED_AXES] = clippedAxes(r, sweep, sensor);
+    if (r[Slot.CLIPPED_AXES] !== 0 || conditions & CONDITION.GYRO_CLIPPED) r[Slot.CLIPPED] = 1;
+    else if (r[Slot.CLIP_COUNT] === 0 && r[Slot.CLIPPED] === 1 && isRecovered(r, this.#parameters))
+      r[Slot.CLIPPED] = 0;
     if (r[Slot.STARTED] === 0) {
       if ((parts & HAS_INERTIAL) !== HAS_INERTIAL) return;
       this.#start(r);
     } else {
-      turn(r);
+      turn(r, this.#parameters);
+      if (parts & HAS_ACCEL) carryToEnd(r, Slot.FORCE);
+      if (parts & HAS_MAG) carryToEnd(r, Slot.FIELD);
+      if (r[Slot.CLIP_COUNT] !== 0) settleStretch(r, fieldCounts, this.#parameters);
+      else if (r[Slot.GAP_VARIANCE]! > 0) settleGap(r, fieldCounts);
       if (parts & HAS_ACCEL) this.#level(r);
       else composeLevel(r);
     }
@@ -141,6 +169,7 @@ export class ChainFusion {
     correctInclination(r, gains);
     composeLevel(r);
     startHeading(r);
+    if (!this.#magnetic) r[Slot.HEADING_VARIANCE] = 0;
   }
 
   /** A new specific force. */
@@ -150,6 +179,7 @@ export class ChainFusion {
     const gains = this.#coefficients.forStep(r, Slot.FORCE_STEP);
     watchRest(r, gains, this.#parameters);
     correctInclination(r, gains);
+    narrowInclination(r, this.#parameters);
     composeLevel(r);
     estimateBias(r, this.#coefficients, this.#parameters);
   }
@@ -161,6 +191,7 @@ export class ChainFusion {
     r[Slot.FIELD_SEEN] = 1;
     const gains = this.#coefficients.forStep(r, Slot.FIELD_STEP);
     levelField(r);
+    steadyField(r, gains);
     watchField(r, gains, this.#parameters);
     correctHeading(r, gains, this.#parameters);
   }
@@ -174,6 +205,11 @@ export class ChainFusion {
       composeEarth(r, this.orientations, at);
       const aheadS = ageS - this.#offsetsS[sensor]!;
       if (aheadS !== 0) extrapolate(r, this.orientations, at, aheadS, this.#parameters.slopeFadeS);
+      this.inclinationSigma[sensor] = inclinationSigma(r, aheadS, this.#parameters);
+      this.headingSigma[sensor] = headingSigma(r, aheadS, this.#parameters);
+    } else {
+      this.inclinationSigma[sensor] = ANY_SIGMA;
+      this.headingSigma[sensor] = ANY_SIGMA;
     }
     this.bridged[sensor] = bridged ? 1 : 0;
     this.trust[sensor] = trustOf(r, this.#magnetic, bridged, this.#parameters);
@@ -181,8 +217,9 @@ export class ChainFusion {
 }
 
 /** A new angular rate. */
-function turn(r: Float64Array): void {
+function turn(r: Float64Array, parameters: FusionParameters): void {
   r[Slot.RATE_STEP] = r[Slot.NOW]! - r[Slot.RATE_TIME]!;
   r[Slot.RATE_TIME] = r[Slot.NOW]!;
-  integrateRate(r);
+  r[Slot.HEADING_DRIFT]! += parameters.biasSigmaMotion * r[Slot.RATE_STEP]!;
+  integrateRate(r, parameters);
 }

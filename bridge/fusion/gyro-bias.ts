@@ -13,6 +13,7 @@ import { stepLowPass } from "../numeric/low-pass.ts";
 import { type Coefficients, Gain } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
+import { followAcceleration } from "./uncertainty.ts";
 
 /** The measurement matrix by rows, each row's disagreement (rad/s), and its variance ((rad/s)²). */
 const seenThrough = new Float64Array(9);
@@ -30,11 +31,12 @@ export function estimateBias(
   if (r[Slot.SPAN]! < parameters.biasSpanS) return;
   const gains = coefficients.forStep(r, Slot.SPAN);
   followLevel(r, gains);
+  followAcceleration(r, gains);
   growCovariance(r, gains, parameters);
   if (r[Slot.AT_REST] === 1) {
     measureAtRest(r, gains);
     updateBias(r, parameters);
-  } else if (r[Slot.NOW]! >= r[Slot.CLIPPED_UNTIL]!) {
+  } else if (r[Slot.CLIPPED] === 0) {
     // Corrections that follow clipped rates would be taken for bias.
     measureInMotion(r, gains);
     updateBias(r, parameters);

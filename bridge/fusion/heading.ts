@@ -2,6 +2,7 @@
 import { Gain } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
+import { narrowHeading, uncertainShare } from "./uncertainty.ts";
 
 /** Below this horizontal length the nose axis has no heading. */
 const VERTICAL = 1e-3;
@@ -81,25 +82,23 @@ export function composeEarth(r: Float64Array, out: Float64Array, outAt: number):
 }
 
 /**
- * The share to correct by: the first readings are averaged (1, 1/2, 1/3 ... until the steady gain is reached); a disturbed
- * field counts for nothing until the allowance for rejection is used up, then for less.
+ * The share to correct by. A disturbed field counts for nothing until the allowance for rejection is used up, then for
+ * less. An undisturbed one, and any before there is a reference, counts the more the less certain the heading is.
  */
 function chooseGain(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
-  let gain = gains[Gain.HEADING]!;
+  const { magRejectionFactor, magMaxRejectionS } = parameters;
+  const stepS = r[Slot.FIELD_STEP]!;
+  const believed = r[Slot.DISTURBED] === 0 || (r[Slot.REFERENCE_KNOWN] === 0 && r[Slot.FIELD_FLAGGED] === 0);
+  let share = gains[Gain.HEADING]!;
   if (r[Slot.DISTURBED] === 0) {
-    const wonBack = parameters.magRejectionFactor * r[Slot.FIELD_STEP]!;
-    r[Slot.REJECTED_TIME] = Math.max(0, r[Slot.REJECTED_TIME]! - wonBack);
-  } else if (r[Slot.REJECTED_TIME]! > parameters.magMaxRejectionS) {
-    gain /= parameters.magRejectionFactor;
+    r[Slot.REJECTED_TIME] = Math.max(0, r[Slot.REJECTED_TIME]! - magRejectionFactor * stepS);
+  } else if (r[Slot.REJECTED_TIME]! > magMaxRejectionS) {
+    share /= magRejectionFactor;
   } else {
-    r[Slot.REJECTED_TIME]! += r[Slot.FIELD_STEP]!;
-    gain = 0;
+    r[Slot.REJECTED_TIME]! += stepS;
+    share = 0;
   }
-  if (r[Slot.HEADING_SETTLED] === 0) {
-    r[Slot.HEADING_COUNT]! += 1;
-    const average = 1 / r[Slot.HEADING_COUNT]!;
-    if (average < gains[Gain.HEADING]!) r[Slot.HEADING_SETTLED] = 1;
-    gain = Math.max(gain, average);
-  }
-  r[Slot.HEADING_GAIN] = gain;
+  if (believed) share = Math.max(share, uncertainShare(r, gains));
+  narrowHeading(r, share);
+  r[Slot.HEADING_GAIN] = share;
 }

@@ -2,6 +2,7 @@
 import { TRUST } from "../sweep.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
+import { isHeadingSettled } from "./uncertainty.ts";
 
 /**
  * The sensor's TRUST code.
@@ -16,9 +17,10 @@ export function trustOf(
 ): number {
   if (r[Slot.STARTED] === 0) return TRUST.LOST;
   if (!magnetic || isHeadingUnaided(r, parameters)) return TRUST.HEADING_UNAIDED;
-  if (r[Slot.NOW]! < r[Slot.CLIPPED_UNTIL]!) return TRUST.CLIPPED;
+  if (r[Slot.CLIPPED] === 1) return TRUST.CLIPPED;
   if (bridged) return TRUST.BRIDGED;
-  if (r[Slot.FORCE_LOW_PASS]! < parameters.accelTauS || r[Slot.HEADING_SETTLED] === 0) return TRUST.SETTLING;
+  if (r[Slot.FORCE_LOW_PASS]! < parameters.accelTauS || !isHeadingSettled(r, parameters))
+    return TRUST.SETTLING;
   return TRUST.GOOD;
 }
 

@@ -19,12 +19,12 @@ describe.skipIf(folder === null)(
     const trials = folder === null ? [] : trialNames(folder).map((name) => readTrial(folder, name));
 
     it(
-      "are fused as well as by the published implementation: mean total 3.11°, inclination 0.743°",
+      "are fused as well as by the published implementation: mean total 3.11°, inclination 0.74°",
       () => {
         const mean = meanScores(trials.map((trial) => scoreTrial(trial)));
-        // The means of reference.json are 3.1098° and 0.7427°.
+        // The means of reference.json are 3.1098° and 0.7427°; measured when written: 3.101° and 0.687°.
         expect(mean.totalDeg).toBeLessThanOrEqual(3.11);
-        expect(mean.inclinationDeg).toBeLessThanOrEqual(0.743);
+        expect(mean.inclinationDeg).toBeLessThanOrEqual(0.74);
       },
       PATIENCE_MS,
     );
@@ -33,8 +33,8 @@ describe.skipIf(folder === null)(
       "with 5.4 % of samples lost stay well below what linear interpolation gives, 6.17°",
       () => {
         const mean = meanScores(trials.map((trial) => scoreTrial(trial, lossPattern(trial.samples))));
-        // Measured when written: 4.07°.
-        expect(mean.totalDeg).toBeLessThan(4.2);
+        // Measured when written: 3.92°.
+        expect(mean.totalDeg).toBeLessThan(4);
       },
       PATIENCE_MS,
     );
