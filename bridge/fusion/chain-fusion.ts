@@ -17,8 +17,8 @@ import { clippedAxes, settleStretch, steadyField } from "./clipping.ts";
 import { Coefficients } from "./coefficients.ts";
 import { settleGap } from "./gap.ts";
 import { estimateBias } from "./gyro-bias.ts";
-import { composeEarth, correctHeading, levelField, noseYaw, startHeading } from "./heading.ts";
-import { composeLevel, correctInclination } from "./inclination.ts";
+import { composeEarth, correctHeading, levelField, noseYaw, startHeading, sumField } from "./heading.ts";
+import { averageForce, composeLevel, correctInclination } from "./inclination.ts";
 import { watchField } from "./magnetic-reference.ts";
 import { DEFAULT_PARAMETERS, type FusionParameters } from "./parameters.ts";
 import { takeReading } from "./reading.ts";
@@ -166,7 +166,10 @@ export class ChainFusion {
     const gains = this.#coefficients.forStep(r, Slot.INTERVAL);
     takeRate(r);
     watchRest(r, gains, this.#parameters);
-    correctInclination(r, gains);
+    averageForce(r, gains, this.#parameters);
+    correctInclination(r);
+    r[Slot.SPAN_TILT] = 0;
+    r[Slot.SPAN_TILT + 1] = 0;
     composeLevel(r);
     startHeading(r);
     if (!this.#magnetic) r[Slot.HEADING_VARIANCE] = 0;
@@ -178,7 +181,7 @@ export class ChainFusion {
     r[Slot.FORCE_TIME] = r[Slot.NOW]!;
     const gains = this.#coefficients.forStep(r, Slot.FORCE_STEP);
     watchRest(r, gains, this.#parameters);
-    correctInclination(r, gains);
+    if (averageForce(r, gains, this.#parameters)) correctInclination(r);
     narrowInclination(r, this.#parameters);
     composeLevel(r);
     estimateBias(r, this.#coefficients, this.#parameters);
@@ -193,7 +196,8 @@ export class ChainFusion {
     levelField(r);
     steadyField(r, gains);
     watchField(r, gains, this.#parameters);
-    correctHeading(r, gains, this.#parameters);
+    if (sumField(r, this.#parameters))
+      correctHeading(r, this.#coefficients.forStep(r, Slot.HEADING_STEP), this.#parameters);
   }
 
   /** The output at the sweep's own time. A lost orientation stands still. */
@@ -205,8 +209,11 @@ export class ChainFusion {
       composeEarth(r, this.orientations, at);
       const aheadS = ageS - this.#offsetsS[sensor]!;
       if (aheadS !== 0) extrapolate(r, this.orientations, at, aheadS, this.#parameters.slopeFadeS);
-      this.inclinationSigma[sensor] = inclinationSigma(r, aheadS, this.#parameters);
-      this.headingSigma[sensor] = headingSigma(r, aheadS, this.#parameters);
+      // Nothing passing: at the end of a span is often enough.
+      if (aheadS !== 0 || r[Slot.CLIP_COUNT] !== 0 || r[Slot.SPAN] === 0) {
+        this.inclinationSigma[sensor] = inclinationSigma(r, aheadS, this.#parameters);
+        this.headingSigma[sensor] = headingSigma(r, aheadS, this.#parameters);
+      }
     } else {
       this.inclinationSigma[sensor] = ANY_SIGMA;
       this.headingSigma[sensor] = ANY_SIGMA;

@@ -21,7 +21,7 @@ const residual = new Float64Array(3);
 const variance = new Float64Array(3);
 const before = new Float64Array(3);
 
-/** After each inclination correction: sums, and at the end of a span estimates the bias. */
+/** After each specific force: sums, and at the end of a span, after its correction of the inclination, estimates the bias. */
 export function estimateBias(
   r: Float64Array,
   coefficients: Coefficients,
@@ -47,8 +47,6 @@ export function estimateBias(
 function sum(r: Float64Array): void {
   const stepS = r[Slot.FORCE_STEP]!;
   r[Slot.SPAN]! += stepS;
-  r[Slot.SPAN_TILT]! -= r[Slot.UP + 1]!;
-  r[Slot.SPAN_TILT + 1]! += r[Slot.UP]!;
   for (let i = 0; i < 9; i++) r[Slot.SPAN_MATRIX + i]! += stepS * r[Slot.LEVEL_MATRIX + i]!;
 }
 

@@ -2,7 +2,7 @@
 import { Gain } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
-import { narrowHeading, uncertainShare } from "./uncertainty.ts";
+import { isHeadingSettled, narrowHeading, uncertainShare } from "./uncertainty.ts";
 
 /** Below this horizontal length the nose axis has no heading. */
 const VERTICAL = 1e-3;
@@ -35,11 +35,38 @@ export function levelField(r: Float64Array): void {
   }
 }
 
-/** Turns the heading by a share of its disagreement with the field. A vertical field turns nothing. */
+/**
+ * Sums the newest field; against the heading's time constant nothing is lost by correcting once a span of readings.
+ * @returns whether a correction is due: after a span, or with each reading while the heading is uncertain
+ */
+export function sumField(r: Float64Array, parameters: FusionParameters): boolean {
+  r[Slot.FIELD_SUM]! += r[Slot.LEVEL_FIELD]!;
+  r[Slot.FIELD_SUM + 1]! += r[Slot.LEVEL_FIELD + 1]!;
+  r[Slot.FIELD_SUM + 2]! += r[Slot.LEVEL_FIELD + 2]!;
+  r[Slot.HEADING_STEP]! += r[Slot.FIELD_STEP]!;
+  return r[Slot.HEADING_STEP]! >= parameters.headingSpanS || !isHeadingSettled(r, parameters);
+}
+
+/** Turns the heading by a share of its disagreement with the summed field. A vertical field turns nothing. */
 export function correctHeading(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
-  const x = r[Slot.LEVEL_FIELD]!;
-  const y = r[Slot.LEVEL_FIELD + 1]!;
-  const z = r[Slot.LEVEL_FIELD + 2]!;
+  const x = r[Slot.FIELD_SUM]!;
+  const y = r[Slot.FIELD_SUM + 1]!;
+  const z = r[Slot.FIELD_SUM + 2]!;
+  turnHeading(r, x, y, z, gains, parameters);
+  r[Slot.FIELD_SUM] = 0;
+  r[Slot.FIELD_SUM + 1] = 0;
+  r[Slot.FIELD_SUM + 2] = 0;
+  r[Slot.HEADING_STEP] = 0;
+}
+
+function turnHeading(
+  r: Float64Array,
+  x: number,
+  y: number,
+  z: number,
+  gains: Float64Array,
+  parameters: FusionParameters,
+): void {
   if (x * x + y * y <= VERTICAL_FIELD * z * z) return;
   chooseGain(r, gains, parameters);
   const gain = r[Slot.HEADING_GAIN]!;
@@ -87,7 +114,7 @@ export function composeEarth(r: Float64Array, out: Float64Array, outAt: number):
  */
 function chooseGain(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
   const { magRejectionFactor, magMaxRejectionS } = parameters;
-  const stepS = r[Slot.FIELD_STEP]!;
+  const stepS = r[Slot.HEADING_STEP]!;
   const believed = r[Slot.DISTURBED] === 0 || (r[Slot.REFERENCE_KNOWN] === 0 && r[Slot.FIELD_FLAGGED] === 0);
   let share = gains[Gain.HEADING]!;
   if (r[Slot.DISTURBED] === 0) {

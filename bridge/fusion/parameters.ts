@@ -55,6 +55,8 @@ export interface FusionParameters {
    * work. Large: fast turns blur. Ours, no source: well below the time constant of the inclination correction.
    */
   readonly biasSpanS: number;
+  /** The same of the field readings that make one correction of the heading, s. */
+  readonly headingSpanS: number;
 
   /** Rest is believed after this long, s. Small: a slow even turn may pass for rest. */
   readonly restMinS: number;
@@ -122,6 +124,7 @@ export const DEFAULT_PARAMETERS: FusionParameters = {
   biasVerticalWeight: 1e-4,
   biasSigmaRest: 0.03 * RAD_PER_DEG,
   biasSpanS: 0.1,
+  headingSpanS: 0.05,
 
   restMinS: 1.5,
   restTauS: 0.5,

@@ -124,8 +124,11 @@ export enum Slot {
 
   /** Level frame -> earth about z: cosine and sine of half the angle. */
   HEADING = REST_LOW_PASS + 1 + 3 * 6,
+  /** Field in the level frame, summed for the next correction of the heading, and the time that it covers. */
+  FIELD_SUM = HEADING + 2,
+  HEADING_STEP = FIELD_SUM + 3,
   /** Share of the disagreement with the field that the newest reading takes away. */
-  HEADING_GAIN = HEADING + 2,
+  HEADING_GAIN = HEADING_STEP + 1,
   /** Time for which a disturbed field has been ignored. */
   REJECTED_TIME = HEADING_GAIN + 1,
   /** Yaw of the nose axis to start with where there is no field: east, or where it pointed before it was lost. */

@@ -19,6 +19,8 @@ import { Slot } from "./record.ts";
 
 /** Variance of an angle that could be anything, rad². */
 const ANY_ANGLE = (Math.PI * Math.PI) / 3;
+/** A variance below this, rad², is left as it is: it would fade into numbers too small to reckon with fast. */
+const NEGLIGIBLE = 1e-12;
 /** Of a rate that is predicted, this share of its size may be wrong. Ours, no source. */
 const PREDICTED_SHARE = 0.2;
 
@@ -42,9 +44,11 @@ export function openInclination(r: Float64Array, parameters: FusionParameters): 
 
 /** The average of the specific force has grown by a reading. */
 export function narrowInclination(r: Float64Array, parameters: FusionParameters): void {
+  const variance = r[Slot.TILT_VARIANCE]!;
   const averagedS = Math.min(r[Slot.FORCE_LOW_PASS]!, parameters.accelTauS);
+  if (variance < NEGLIGIBLE && averagedS === parameters.accelTauS) return;
   const share = r[Slot.FORCE_STEP]! / averagedS;
-  if (share < 1) r[Slot.TILT_VARIANCE]! *= 1 - share;
+  if (share < 1) r[Slot.TILT_VARIANCE] = (1 - share) * variance;
   else r[Slot.TILT_VARIANCE] = (parameters.accelSigma ** 2 * parameters.accelTauS) / averagedS;
 }
 
@@ -65,7 +69,7 @@ export function uncertainShare(r: Float64Array, gains: Float64Array): number {
 
 /** The heading takes a share of its disagreement with the field. */
 export function narrowHeading(r: Float64Array, share: number): void {
-  r[Slot.HEADING_VARIANCE]! *= 1 - share;
+  if (r[Slot.HEADING_VARIANCE]! > NEGLIGIBLE) r[Slot.HEADING_VARIANCE]! *= 1 - share;
   r[Slot.HEADING_DRIFT]! *= 1 - share;
 }
 
