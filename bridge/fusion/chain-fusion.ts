@@ -163,9 +163,9 @@ export class ChainFusion {
     r[Slot.FORCE_TIME] = r[Slot.NOW]!;
     r[Slot.RATE_STEP] = r[Slot.INTERVAL]!;
     r[Slot.FORCE_STEP] = r[Slot.INTERVAL]!;
-    const gains = this.#coefficients.forStep(r, Slot.INTERVAL);
     takeRate(r);
-    watchRest(r, gains, this.#parameters);
+    watchRest(r, this.#coefficients, this.#parameters);
+    const gains = this.#coefficients.forStep(r, Slot.INTERVAL);
     averageForce(r, gains, this.#parameters);
     correctInclination(r);
     r[Slot.SPAN_TILT] = 0;
@@ -179,8 +179,8 @@ export class ChainFusion {
   #level(r: Float64Array): void {
     r[Slot.FORCE_STEP] = r[Slot.NOW]! - r[Slot.FORCE_TIME]!;
     r[Slot.FORCE_TIME] = r[Slot.NOW]!;
+    watchRest(r, this.#coefficients, this.#parameters);
     const gains = this.#coefficients.forStep(r, Slot.FORCE_STEP);
-    watchRest(r, gains, this.#parameters);
     if (averageForce(r, gains, this.#parameters)) correctInclination(r);
     narrowInclination(r, this.#parameters);
     composeLevel(r);

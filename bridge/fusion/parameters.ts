@@ -62,6 +62,8 @@ export interface FusionParameters {
   readonly restMinS: number;
   /** Time constant of the low-pass that readings at rest are compared with, s. */
   readonly restTauS: number;
+  /** Span of readings whose mean makes one step of that low-pass, s. Ours, no source: well below its time constant. */
+  readonly restSpanS: number;
   /** Greatest deviation of the angular rate from its low-pass at rest, rad/s. */
   readonly restRateLimit: number;
   /** Greatest deviation of the specific force from its low-pass at rest, m/s². */
@@ -128,6 +130,7 @@ export const DEFAULT_PARAMETERS: FusionParameters = {
 
   restMinS: 1.5,
   restTauS: 0.5,
+  restSpanS: 0.05,
   restRateLimit: 2 * RAD_PER_DEG,
   restAccelLimit: 0.5,
 

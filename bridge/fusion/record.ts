@@ -121,9 +121,13 @@ export enum Slot {
   AT_REST = LEVEL_LOW_PASS + 1 + 3 * 11,
   REST_TIME = AT_REST + 1,
   REST_LOW_PASS = REST_TIME + 1,
+  /** Sums of rate and specific force for the low-pass's next step, how many, and the time that they cover. */
+  REST_SUM = REST_LOW_PASS + 1 + 3 * 6,
+  REST_COUNT = REST_SUM + 6,
+  REST_SPAN = REST_COUNT + 1,
 
   /** Level frame -> earth about z: cosine and sine of half the angle. */
-  HEADING = REST_LOW_PASS + 1 + 3 * 6,
+  HEADING = REST_SPAN + 1,
   /** Field in the level frame, summed for the next correction of the heading, and the time that it covers. */
   FIELD_SUM = HEADING + 2,
   HEADING_STEP = FIELD_SUM + 3,
