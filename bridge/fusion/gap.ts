@@ -64,7 +64,8 @@ export function settleGap(r: Float64Array, fresh: boolean): void {
   if (fresh && r[Slot.STEADY_KNOWN] === 1) {
     const share = variance / (variance + FIELD_SHARE * FIELD_SHARE);
     turnTowardsField(r, share);
-    variance *= 1 - share;
+    // About the field itself nothing is known: two of three axes gain.
+    variance *= 1 - (2 / 3) * share;
   }
   r[Slot.HEADING_VARIANCE]! += variance / 3;
   r[Slot.TILT_VARIANCE]! += variance * (2 / 3);

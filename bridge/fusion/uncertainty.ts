@@ -10,7 +10,8 @@
  *
  * Inclination: the average of the specific force is worth the more the longer it is. Above its steady part the variance
  * falls as one over the averaged time, and after the time constant as the average forgets. The steady part grows with the
- * level of the body's own acceleration: the root mean square of the specific force's norm less gravity.
+ * level of the body's own acceleration, the root mean square of the specific force's norm less gravity, and with what is
+ * not known of the gyroscope's bias, which tilts for one time constant before it is corrected.
  */
 import { STANDARD_GRAVITY } from "../numeric/units.ts";
 import { Gain } from "./coefficients.ts";
@@ -75,10 +76,12 @@ export function narrowHeading(r: Float64Array, share: number): void {
 
 /** Standard deviation of the inclination as it is put out, rad. */
 export function inclinationSigma(r: Float64Array, aheadS: number, parameters: FusionParameters): number {
-  const { inclinationSigma: steady, accelerationShare } = parameters;
+  const { inclinationSigma: steady, accelerationShare, accelTauS } = parameters;
+  const p: number = Slot.BIAS_COVARIANCE;
+  const drifted = ((r[p]! + r[p + 3]! + r[p + 5]!) / 3) * accelTauS * accelTauS;
   const moved = (accelerationShare / STANDARD_GRAVITY) ** 2 * r[Slot.ACCELERATION]!;
   return Math.sqrt(
-    Math.min(ANY_ANGLE, steady * steady + moved + r[Slot.TILT_VARIANCE]! + passing(r, aheadS)),
+    Math.min(ANY_ANGLE, steady * steady + moved + drifted + r[Slot.TILT_VARIANCE]! + passing(r, aheadS)),
   );
 }
 
