@@ -13,7 +13,7 @@
  */
 import { setIdentity } from "../numeric/quaternion.ts";
 import { CONDITION, HAS_ACCEL, HAS_GYRO, HAS_INERTIAL, HAS_MAG, type Sweep, TRUST } from "../sweep.ts";
-import { clippedAxes, settleStretch, steadyField } from "./clipping.ts";
+import { clippedAxes, keepField, settleStretch } from "./clipping.ts";
 import { Coefficients } from "./coefficients.ts";
 import { settleGap } from "./gap.ts";
 import { estimateBias } from "./gyro-bias.ts";
@@ -192,12 +192,12 @@ export class ChainFusion {
     r[Slot.FIELD_STEP] = r[Slot.FIELD_SEEN] === 1 ? r[Slot.NOW]! - r[Slot.FIELD_TIME]! : r[Slot.INTERVAL]!;
     r[Slot.FIELD_TIME] = r[Slot.NOW]!;
     r[Slot.FIELD_SEEN] = 1;
-    const gains = this.#coefficients.forStep(r, Slot.FIELD_STEP);
     levelField(r);
-    steadyField(r, gains);
+    if (!sumField(r, this.#parameters)) return;
+    const gains = this.#coefficients.forStep(r, Slot.FIELD_STEP);
+    keepField(r);
     watchField(r, gains, this.#parameters);
-    if (sumField(r, this.#parameters))
-      correctHeading(r, this.#coefficients.forStep(r, Slot.HEADING_STEP), this.#parameters);
+    correctHeading(r, gains, this.#parameters);
   }
 
   /** The output at the sweep's own time. A lost orientation stands still. */

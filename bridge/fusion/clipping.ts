@@ -16,7 +16,6 @@
 import { conjugate, rotate, turnBy } from "../numeric/quaternion.ts";
 import { CHANNELS, CONDITION, type Sweep } from "../sweep.ts";
 import { estimateExcess } from "./clip-excess.ts";
-import { Gain } from "./coefficients.ts";
 import { storeRate } from "./gap.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { CLIP_READINGS, Slot } from "./record.ts";
@@ -135,11 +134,9 @@ function integrateStretch(r: Float64Array, lever: number): void {
   }
 }
 
-/** Lets the average field in the level frame follow the newest one; an open stretch or gap keeps the one before it. */
-export function steadyField(r: Float64Array, gains: Float64Array): void {
+/** Keeps the newest mean field, for the next stretch or gap; while one is open, the one before it stays. */
+export function keepField(r: Float64Array): void {
   if (r[Slot.CLIP_COUNT] !== 0 || r[Slot.GAP_OPEN] === 1) return;
-  const gain = r[Slot.STEADY_KNOWN] === 0 ? 1 : gains[Gain.STEADY]!;
+  for (let i = 0; i < 3; i++) r[Slot.STEADY_FIELD + i] = r[Slot.LEVEL_FIELD + i]!;
   r[Slot.STEADY_KNOWN] = 1;
-  for (let i = 0; i < 3; i++)
-    r[Slot.STEADY_FIELD + i]! += gain * (r[Slot.LEVEL_FIELD + i]! - r[Slot.STEADY_FIELD + i]!);
 }

@@ -27,10 +27,8 @@ export enum Gain {
   HEADING_NOISE = HEADING + 1,
   /** Share of the reference field's difference from the current field that one step takes away. */
   REFERENCE = HEADING_NOISE + 1,
-  /** The same of the average field that a clipped stretch is compared with. */
-  STEADY = REFERENCE + 1,
   /** The same of the mean square of the acceleration. */
-  ACCELERATION = STEADY + 1,
+  ACCELERATION = REFERENCE + 1,
   /** Variance that the bias gains in the step, (rad/s)². */
   BIAS_NOISE = ACCELERATION + 1,
   /** Variances of one step's measurement of the bias, (rad/s)²: horizontal and vertical in motion, and at rest. */
@@ -83,7 +81,6 @@ function writeGains(gains: Float64Array, parameters: FusionParameters, stepS: nu
   gains[Gain.HEADING_NOISE] = (parameters.headingSigma ** 2 * parameters.magTauS) / stepS;
   gains[Gain.REFERENCE] = firstOrderGain(parameters.magReferenceTauS, stepS);
   gains[Gain.ACCELERATION] = firstOrderGain(parameters.accelTauS, stepS);
-  gains[Gain.STEADY] = firstOrderGain(parameters.magSteadyTauS, stepS);
   gains[Gain.BIAS_NOISE] = noise;
   gains[Gain.MOTION_VARIANCE] = measurementVariance(parameters.biasSigmaMotion, noise);
   gains[Gain.VERTICAL_VARIANCE] = gains[Gain.MOTION_VARIANCE]! / parameters.biasVerticalWeight;

@@ -36,37 +36,30 @@ export function levelField(r: Float64Array): void {
 }
 
 /**
- * Sums the newest field; against the heading's time constant nothing is lost by correcting once a span of readings.
- * @returns whether a correction is due: after a span, or with each reading while the heading is uncertain
+ * Adds the newest field to the span's. Against the times in which a field is judged and heading corrected nothing is lost
+ * by doing so once a span of readings.
+ * @returns whether that is due: after a span, or with each reading while the heading is uncertain. The level field is then
+ *   the mean of the span, and the field's step its length.
  */
 export function sumField(r: Float64Array, parameters: FusionParameters): boolean {
   r[Slot.FIELD_SUM]! += r[Slot.LEVEL_FIELD]!;
   r[Slot.FIELD_SUM + 1]! += r[Slot.LEVEL_FIELD + 1]!;
   r[Slot.FIELD_SUM + 2]! += r[Slot.LEVEL_FIELD + 2]!;
-  r[Slot.HEADING_STEP]! += r[Slot.FIELD_STEP]!;
-  return r[Slot.HEADING_STEP]! >= parameters.headingSpanS || !isHeadingSettled(r, parameters);
+  r[Slot.FIELD_COUNT]! += 1;
+  r[Slot.FIELD_SPAN]! += r[Slot.FIELD_STEP]!;
+  if (r[Slot.FIELD_SPAN]! < parameters.fieldSpanS && isHeadingSettled(r, parameters)) return false;
+  const scale = 1 / r[Slot.FIELD_COUNT]!;
+  for (let i = 0; i < 3; i++) r[Slot.LEVEL_FIELD + i] = scale * r[Slot.FIELD_SUM + i]!;
+  r[Slot.FIELD_STEP] = r[Slot.FIELD_SPAN]!;
+  for (let i: number = Slot.FIELD_SUM; i <= Slot.FIELD_SPAN; i++) r[i] = 0;
+  return true;
 }
 
-/** Turns the heading by a share of its disagreement with the summed field. A vertical field turns nothing. */
+/** Turns the heading by a share of its disagreement with the field. A vertical field turns nothing. */
 export function correctHeading(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
-  const x = r[Slot.FIELD_SUM]!;
-  const y = r[Slot.FIELD_SUM + 1]!;
-  const z = r[Slot.FIELD_SUM + 2]!;
-  turnHeading(r, x, y, z, gains, parameters);
-  r[Slot.FIELD_SUM] = 0;
-  r[Slot.FIELD_SUM + 1] = 0;
-  r[Slot.FIELD_SUM + 2] = 0;
-  r[Slot.HEADING_STEP] = 0;
-}
-
-function turnHeading(
-  r: Float64Array,
-  x: number,
-  y: number,
-  z: number,
-  gains: Float64Array,
-  parameters: FusionParameters,
-): void {
+  const x = r[Slot.LEVEL_FIELD]!;
+  const y = r[Slot.LEVEL_FIELD + 1]!;
+  const z = r[Slot.LEVEL_FIELD + 2]!;
   if (x * x + y * y <= VERTICAL_FIELD * z * z) return;
   chooseGain(r, gains, parameters);
   const gain = r[Slot.HEADING_GAIN]!;
@@ -114,7 +107,7 @@ export function composeEarth(r: Float64Array, out: Float64Array, outAt: number):
  */
 function chooseGain(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
   const { magRejectionFactor, magMaxRejectionS } = parameters;
-  const stepS = r[Slot.HEADING_STEP]!;
+  const stepS = r[Slot.FIELD_STEP]!;
   const believed = r[Slot.DISTURBED] === 0 || (r[Slot.REFERENCE_KNOWN] === 0 && r[Slot.FIELD_FLAGGED] === 0);
   let share = gains[Gain.HEADING]!;
   if (r[Slot.DISTURBED] === 0) {

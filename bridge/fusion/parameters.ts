@@ -55,8 +55,8 @@ export interface FusionParameters {
    * work. Large: fast turns blur. Ours, no source: well below the time constant of the inclination correction.
    */
   readonly biasSpanS: number;
-  /** The same of the field readings that make one correction of the heading, s. */
-  readonly headingSpanS: number;
+  /** Span of field readings whose mean is judged, and corrects the heading, s. Ours, no source: a fast beat's tenth. */
+  readonly fieldSpanS: number;
 
   /** Rest is believed after this long, s. Small: a slow even turn may pass for rest. */
   readonly restMinS: number;
@@ -71,11 +71,6 @@ export interface FusionParameters {
 
   /** Time constant that smooths the field's norm and dip before they are judged, s. */
   readonly magCurrentTauS: number;
-  /**
-   * Time constant of the average field that the field after a clipped stretch is compared with, s. Small: noise. Large:
-   * an uneven field blurs. Ours, no source: a few readings.
-   */
-  readonly magSteadyTauS: number;
   /** Time constant with which the reference norm and dip follow an undisturbed field, s. */
   readonly magReferenceTauS: number;
   /** The field is the reference's when its norm lies within this share of it ... */
@@ -126,7 +121,7 @@ export const DEFAULT_PARAMETERS: FusionParameters = {
   biasVerticalWeight: 1e-4,
   biasSigmaRest: 0.03 * RAD_PER_DEG,
   biasSpanS: 0.1,
-  headingSpanS: 0.05,
+  fieldSpanS: 0.02,
 
   restMinS: 1.5,
   restTauS: 0.5,
@@ -135,7 +130,6 @@ export const DEFAULT_PARAMETERS: FusionParameters = {
   restAccelLimit: 0.5,
 
   magCurrentTauS: 0.05,
-  magSteadyTauS: 0.02,
   magReferenceTauS: 20,
   magNormShare: 0.1,
   magDipLimit: 10 * RAD_PER_DEG,

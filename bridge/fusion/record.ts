@@ -59,7 +59,7 @@ export enum Slot {
   /** Sensor axes as seen from the body, the columns of a matrix by rows; and the gyroscope's range, rad/s. */
   GYRO_AXES = BEFORE_GAP + 4,
   GYRO_RANGE = GYRO_AXES + 9,
-  /** The field in the level frame, averaged over a few readings. */
+  /** The field in the level frame, mean of a span of readings. */
   STEADY_FIELD = GYRO_RANGE + 1,
   STEADY_KNOWN = STEADY_FIELD + 3,
   /** Sensor axes of the newest reading that are clipped, as bits. */
@@ -128,11 +128,12 @@ export enum Slot {
 
   /** Level frame -> earth about z: cosine and sine of half the angle. */
   HEADING = REST_SPAN + 1,
-  /** Field in the level frame, summed for the next correction of the heading, and the time that it covers. */
+  /** Field in the level frame, summed over a span of readings; how many, and the time that they cover. */
   FIELD_SUM = HEADING + 2,
-  HEADING_STEP = FIELD_SUM + 3,
+  FIELD_COUNT = FIELD_SUM + 3,
+  FIELD_SPAN = FIELD_COUNT + 1,
   /** Share of the disagreement with the field that the newest reading takes away. */
-  HEADING_GAIN = HEADING_STEP + 1,
+  HEADING_GAIN = FIELD_SPAN + 1,
   /** Time for which a disturbed field has been ignored. */
   REJECTED_TIME = HEADING_GAIN + 1,
   /** Yaw of the nose axis to start with where there is no field: east, or where it pointed before it was lost. */
