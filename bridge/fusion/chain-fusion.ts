@@ -1,15 +1,19 @@
 /**
  * Sweeps to orientations, for every sensor of the chain by itself: the online method of D. Laidig and T. Seel, "VQF:
  * Highly accurate IMU orientation estimation with bias estimation and magnetic disturbance rejection", Information
- * Fusion 91 (2023) 187-204, with true time steps and lost samples taken into account.
+ * Fusion 91 (2023) 187-204, with true time steps, and lost samples and clipped rates made good.
  *
  * Quaternions are Hamilton, scalar first, from body axes (x nose, y left, z up) to the earth (x east, y magnetic north,
  * z up).
  *
  * Lost samples. While a reading is missing, the output is predicted from the last angular rates. When readings return,
- * the missing rates are filled in between those on both sides and integrated (strapdown.ts); the low-pass filters take
- * one long step along the straight line between the readings on both sides (numeric/low-pass.ts). After `lostAfterS` without readings the orientation
- * is lost: the output stands still, and the next reading starts anew, keeping the bias and the reference field.
+ * the missing rates are filled in between those on both sides and integrated (gap.ts); the low-pass filters take one long
+ * step along the straight line between the readings on both sides (numeric/low-pass.ts). After `lostAfterS` without
+ * readings the orientation is lost: the output stands still, and the next reading starts anew, keeping the bias and the
+ * reference field.
+ *
+ * Clipped rates. What an axis turned beyond its range is estimated and put in where it belongs (clipping.ts). How
+ * uncertain that and all else leaves inclination and heading is stated (uncertainty.ts).
  */
 import { setIdentity } from "../numeric/quaternion.ts";
 import { CONDITION, HAS_ACCEL, HAS_GYRO, HAS_INERTIAL, HAS_MAG, type Sweep, TRUST } from "../sweep.ts";

@@ -137,7 +137,7 @@ function heapBytesPerUpdate(round: () => void): number {
   return Math.min(...positive) / (SWEEPS_A_ROUND * SENSORS);
 }
 
-/** What a million updates leave on the heap after a collection, bytes; run with --expose-gc. */
+/** What a million updates leave on the heap after a collection, bytes; run with --expose-gc, twice: code is compiled once. */
 function heapBytesLeft(round: () => void): number {
   const collect = globalThis.gc!;
   collect();
