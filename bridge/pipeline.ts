@@ -9,7 +9,7 @@
  */
 import { Midline } from "./body/midline.ts";
 import { TravelAxis } from "./body/travel-axis.ts";
-import { Calibration } from "./calibration/calibration.ts";
+import { Calibration, mountingMatrix } from "./calibration/calibration.ts";
 import { DriftMeter } from "./clock/drift.ts";
 import { Admission, HubClock } from "./clock/hub-clock.ts";
 import { SilenceWatch } from "./clock/silence.ts";
@@ -119,6 +119,8 @@ export class Pipeline {
       },
       samplingOffsetsS: sensors.map((sensor) => sensor.samplingOffsetUs / 1e6),
       sensorRatesHz: sensors.map((sensor) => sensor.rateHz),
+      gyroRanges: models.map((model) => model.gyro.rangeDegPerS * RAD_PER_DEG),
+      gyroAxes: sensors.map((sensor) => mountingMatrix(sensor.mounting).flat()),
     });
     this.#fallback = rig.heading === "magnetic" ? new HeadingFallback(this.flags) : null;
     this.midline = new Midline({

@@ -1,20 +1,26 @@
 /**
  * Sweeps to orientations, for every sensor of the chain by itself: the online method of D. Laidig and T. Seel, "VQF:
  * Highly accurate IMU orientation estimation with bias estimation and magnetic disturbance rejection", Information
- * Fusion 91 (2023) 187-204, with true time steps and lost samples taken into account.
+ * Fusion 91 (2023) 187-204, with true time steps, and lost samples and clipped rates made good.
  *
  * Quaternions are Hamilton, scalar first, from body axes (x nose, y left, z up) to the earth (x east, y magnetic north,
  * z up).
  *
  * Lost samples. While a reading is missing, the output is predicted from the last angular rates. When readings return,
- * the missing rates are filled in between those on both sides and integrated (strapdown.ts); the low-pass filters take
- * one long step along the straight line between the readings on both sides (numeric/low-pass.ts). After `lostAfterS` without readings the orientation
- * is lost: the output stands still, and the next reading starts anew, keeping the bias and the reference field.
+ * the missing rates are filled in between those on both sides and integrated (gap.ts); the low-pass filters take one long
+ * step along the straight line between the readings on both sides (numeric/low-pass.ts). After `lostAfterS` without
+ * readings the orientation is lost: the output stands still, and the next reading starts anew, keeping the bias and the
+ * reference field.
+ *
+ * Clipped rates. What an axis turned beyond its range is estimated and put in where it belongs (clipping.ts). How
+ * uncertain that and all else leaves inclination and heading is stated (uncertainty.ts).
  */
 import { setIdentity } from "../numeric/quaternion.ts";
 import type { HeadingSource } from "../rig/rig.ts";
 import { CONDITION, HAS_ACCEL, HAS_GYRO, HAS_INERTIAL, HAS_MAG, type Sweep, TRUST } from "../sweep.ts";
+import { clippedAxes, keepField, settleStretch } from "./clipping.ts";
 import { Coefficients } from "./coefficients.ts";
+import { settleGap } from "./gap.ts";
 import { estimateBias } from "./gyro-bias.ts";
 import {
   composeEarth,
@@ -23,10 +29,11 @@ import {
   levelField,
   noseYaw,
   startHeading,
+  sumField,
   turnHeading,
   yawOf,
 } from "./heading.ts";
-import { composeLevel, correctInclination } from "./inclination.ts";
+import { averageForce, composeLevel, correctInclination } from "./inclination.ts";
 import { watchField } from "./magnetic-reference.ts";
 import { OnBoard } from "./on-board.ts";
 import { DEFAULT_PARAMETERS, type FusionParameters } from "./parameters.ts";
@@ -34,8 +41,9 @@ import { takeReading } from "./reading.ts";
 import { createRecord, loseOrientation, resetRecord, Slot } from "./record.ts";
 import { type ChainBody, RelativeHeading } from "./relative-heading.ts";
 import { watchRest } from "./rest.ts";
-import { extrapolate, integrateRate, takeRate } from "./strapdown.ts";
+import { carryToEnd, extrapolate, integrateRate, takeRate } from "./strapdown.ts";
 import { magneticTrust, trustOf } from "./trust.ts";
+import { headingSigma, inclinationSigma, isRecovered, narrowInclination } from "./uncertainty.ts";
 
 export interface ChainFusionOptions {
   readonly sensorCount: number;
@@ -52,8 +60,15 @@ export interface ChainFusionOptions {
   readonly samplingOffsetsS?: readonly number[];
   /** Rate of sensors that give a reading less often than the hub sweeps, by sensor; the hub's where left out. */
   readonly sensorRatesHz?: readonly (number | undefined)[];
+  /** Range of the gyroscopes, by sensor: plus and minus this, rad/s. Where left out, only flagged readings are clipped. */
+  readonly gyroRanges?: readonly (number | undefined)[];
+  /** Matrices by rows (9) that take the sensor's axes to the body's, by sensor; the identity where left out. */
+  readonly gyroAxes?: readonly (readonly number[] | undefined)[];
   readonly parameters?: Partial<FusionParameters>;
 }
+
+/** Standard deviation of an angle that could be anything, rad. */
+const ANY_SIGMA = Math.PI / Math.sqrt(3);
 
 export class ChainFusion {
   /** Four a sensor, body axes to earth, at the sweep's own time. Borrowed: they change with each step. */
@@ -64,6 +79,9 @@ export class ChainFusion {
   readonly bridged: Uint8Array;
   /** Of sensors that fuse on board: where their own orientation is taken, and how far it differs from ours. */
   readonly onBoard: OnBoard;
+  /** Standard deviation of inclination and of heading, rad, one a sensor; that of any angle at all, π/√3, where lost. */
+  readonly inclinationSigma: Float64Array;
+  readonly headingSigma: Float64Array;
 
   readonly #parameters: FusionParameters;
   readonly #coefficients: Coefficients;
@@ -84,6 +102,8 @@ export class ChainFusion {
       heading,
       samplingOffsetsS = [],
       sensorRatesHz = [],
+      gyroRanges = [],
+      gyroAxes = [],
       parameters = {},
       body = straightBody(sensorCount),
     } = options;
@@ -93,13 +113,17 @@ export class ChainFusion {
     this.#startHeading = heading;
     this.#heading = heading;
     this.#relative = new RelativeHeading(body);
-    this.#records = intervalsS.map((intervalS) => createRecord(this.#parameters, intervalS));
+    this.#records = intervalsS.map((intervalS, i) =>
+      createRecord(this.#parameters, intervalS, gyroRanges[i], gyroAxes[i]),
+    );
     this.#offsetsS = Float64Array.from(intervalsS, (_, i) => samplingOffsetsS[i] ?? 0);
     this.#dueAfterS = Float64Array.from(intervalsS, (intervalS) => intervalS - 0.5 / rateHz);
     this.orientations = new Float64Array(sensorCount * 4);
     this.trust = new Uint8Array(sensorCount);
     this.bridged = new Uint8Array(sensorCount);
     this.onBoard = new OnBoard(sensorCount);
+    this.inclinationSigma = new Float64Array(sensorCount);
+    this.headingSigma = new Float64Array(sensorCount);
     this.reset();
   }
 
@@ -111,6 +135,8 @@ export class ChainFusion {
     });
     this.trust.fill(TRUST.LOST);
     this.bridged.fill(0);
+    this.inclinationSigma.fill(ANY_SIGMA);
+    this.headingSigma.fill(ANY_SIGMA);
     this.#timeS = -Infinity;
     this.#heading = this.#startHeading;
     this.#relative.reset();
@@ -172,13 +198,21 @@ export class ChainFusion {
     const parts = takeReading(r, sweep, sensor);
     if (!(parts & HAS_GYRO)) return;
     const conditions = sweep.conditions[sensor]!;
-    if (conditions & CONDITION.GYRO_CLIPPED)
-      r[Slot.CLIPPED_UNTIL] = r[Slot.NOW]! + this.#parameters.clippedHoldS;
+    const magnetic = this.#heading === "magnetic";
+    const fieldCounts = magnetic && parts >= HAS_MAG && (conditions & CONDITION.MAG_DISTURBED) === 0;
+    r[Slot.CLIPPED_AXES] = clippedAxes(r, sweep, sensor);
+    if (r[Slot.CLIPPED_AXES] !== 0 || conditions & CONDITION.GYRO_CLIPPED) r[Slot.CLIPPED] = 1;
+    else if (r[Slot.CLIP_COUNT] === 0 && r[Slot.CLIPPED] === 1 && isRecovered(r, magnetic, this.#parameters))
+      r[Slot.CLIPPED] = 0;
     if (r[Slot.STARTED] === 0) {
       if ((parts & HAS_INERTIAL) !== HAS_INERTIAL) return;
       this.#start(r);
     } else {
-      turn(r);
+      turn(r, this.#parameters);
+      if (parts & HAS_ACCEL) carryToEnd(r, Slot.FORCE);
+      if (parts & HAS_MAG) carryToEnd(r, Slot.FIELD);
+      if (r[Slot.CLIP_COUNT] !== 0) settleStretch(r, fieldCounts, this.#parameters);
+      else if (r[Slot.GAP_VARIANCE]! > 0) settleGap(r, fieldCounts);
       if (parts & HAS_ACCEL) this.#level(r);
       else composeLevel(r);
     }
@@ -195,21 +229,26 @@ export class ChainFusion {
     r[Slot.FORCE_TIME] = r[Slot.NOW]!;
     r[Slot.RATE_STEP] = r[Slot.INTERVAL]!;
     r[Slot.FORCE_STEP] = r[Slot.INTERVAL]!;
-    const gains = this.#coefficients.forStep(r, Slot.INTERVAL);
     takeRate(r);
-    watchRest(r, gains, this.#parameters);
-    correctInclination(r, gains);
+    watchRest(r, this.#coefficients, this.#parameters);
+    const gains = this.#coefficients.forStep(r, Slot.INTERVAL);
+    averageForce(r, gains, this.#parameters);
+    correctInclination(r);
+    r[Slot.SPAN_TILT] = 0;
+    r[Slot.SPAN_TILT + 1] = 0;
     composeLevel(r);
     startHeading(r);
+    if (this.#heading !== "magnetic") r[Slot.HEADING_VARIANCE] = 0;
   }
 
   /** A new specific force. */
   #level(r: Float64Array): void {
     r[Slot.FORCE_STEP] = r[Slot.NOW]! - r[Slot.FORCE_TIME]!;
     r[Slot.FORCE_TIME] = r[Slot.NOW]!;
+    watchRest(r, this.#coefficients, this.#parameters);
     const gains = this.#coefficients.forStep(r, Slot.FORCE_STEP);
-    watchRest(r, gains, this.#parameters);
-    correctInclination(r, gains);
+    if (averageForce(r, gains, this.#parameters)) correctInclination(r);
+    narrowInclination(r, this.#parameters);
     composeLevel(r);
     estimateBias(r, this.#coefficients, this.#parameters);
   }
@@ -219,8 +258,10 @@ export class ChainFusion {
     r[Slot.FIELD_STEP] = r[Slot.FIELD_SEEN] === 1 ? r[Slot.NOW]! - r[Slot.FIELD_TIME]! : r[Slot.INTERVAL]!;
     r[Slot.FIELD_TIME] = r[Slot.NOW]!;
     r[Slot.FIELD_SEEN] = 1;
-    const gains = this.#coefficients.forStep(r, Slot.FIELD_STEP);
     levelField(r);
+    if (!sumField(r, this.#parameters)) return;
+    const gains = this.#coefficients.forStep(r, Slot.FIELD_STEP);
+    keepField(r);
     watchField(r, gains, this.#parameters);
     if (this.#heading === "magnetic") correctHeading(r, gains, this.#parameters);
   }
@@ -234,6 +275,14 @@ export class ChainFusion {
       composeEarth(r, this.orientations, at);
       const aheadS = ageS - this.#offsetsS[sensor]!;
       if (aheadS !== 0) extrapolate(r, this.orientations, at, aheadS, this.#parameters.slopeFadeS);
+      // Nothing passing: at the end of a span is often enough.
+      if (aheadS !== 0 || r[Slot.CLIP_COUNT] !== 0 || r[Slot.SPAN] === 0) {
+        this.inclinationSigma[sensor] = inclinationSigma(r, aheadS, this.#parameters);
+        this.headingSigma[sensor] = headingSigma(r, aheadS, this.#parameters);
+      }
+    } else {
+      this.inclinationSigma[sensor] = ANY_SIGMA;
+      this.headingSigma[sensor] = ANY_SIGMA;
     }
     this.bridged[sensor] = bridged ? 1 : 0;
     this.trust[sensor] = trustOf(r, this.#headingTrust(r, sensor), bridged, this.#parameters);
@@ -256,10 +305,11 @@ export class ChainFusion {
 }
 
 /** A new angular rate. */
-function turn(r: Float64Array): void {
+function turn(r: Float64Array, parameters: FusionParameters): void {
   r[Slot.RATE_STEP] = r[Slot.NOW]! - r[Slot.RATE_TIME]!;
   r[Slot.RATE_TIME] = r[Slot.NOW]!;
-  integrateRate(r);
+  r[Slot.HEADING_DRIFT]! += parameters.biasSigmaMotion * r[Slot.RATE_STEP]!;
+  integrateRate(r, parameters);
 }
 
 function straightBody(sensorCount: number): ChainBody {

@@ -21,12 +21,16 @@ export enum Gain {
   FORCE = STEP + 1,
   REST = FORCE + 6,
   FIELD = REST + 6,
-  /** Share of the heading's disagreement with the field that one step takes away. */
+  /** Share of the heading's disagreement with the field that one step takes away in the steady state. */
   HEADING = FIELD + 6,
+  /** Variance of the field's direction as one reading of that step shows it, rad². */
+  HEADING_NOISE = HEADING + 1,
   /** Share of the reference field's difference from the current field that one step takes away. */
-  REFERENCE = HEADING + 1,
+  REFERENCE = HEADING_NOISE + 1,
+  /** The same of the mean square of the acceleration. */
+  ACCELERATION = REFERENCE + 1,
   /** Variance that the bias gains in the step, (rad/s)². */
-  BIAS_NOISE = REFERENCE + 1,
+  BIAS_NOISE = ACCELERATION + 1,
   /** Variances of one step's measurement of the bias, (rad/s)²: horizontal and vertical in motion, and at rest. */
   MOTION_VARIANCE = BIAS_NOISE + 1,
   VERTICAL_VARIANCE = MOTION_VARIANCE + 1,
@@ -39,17 +43,20 @@ export class Coefficients {
   readonly #parameters: FusionParameters;
   /** By multiple, from 1. */
   readonly #multiples: readonly Float64Array[];
+  readonly #odd = new Float64Array(Gain.SIZE);
 
   constructor(parameters: FusionParameters, rateHz: number) {
     this.#parameters = parameters;
-    this.#multiples = Array.from({ length: MULTIPLES + 1 }, (_, n) =>
-      gainsFor(parameters, Math.max(n, 1) / rateHz),
-    );
+    this.#multiples = Array.from({ length: MULTIPLES + 1 }, (_, n) => {
+      const gains = new Float64Array(Gain.SIZE);
+      writeGains(gains, parameters, Math.max(n, 1) / rateHz);
+      return gains;
+    });
   }
 
   /**
-   * The set for the step length at `at` in a record (s, above zero). An odd length, which a steady hub never gives, makes
-   * a set of its own.
+   * The set for the step length at `at` in a record (s, above zero). That of an odd length, which a steady hub never gives,
+   * is worked out on the spot and borrowed: it changes with the next call.
    */
   forStep(record: Float64Array, at: number): Float64Array {
     const stepS = record[at]!;
@@ -59,24 +66,25 @@ export class Coefficients {
     const multiple = Math.round(stepS / nominalS);
     const off = Math.abs(stepS - multiple * nominalS);
     if (multiple >= 1 && multiple <= MULTIPLES && off <= SAME_STEP * stepS) return this.#multiples[multiple]!;
-    return gainsFor(this.#parameters, stepS);
+    writeGains(this.#odd, this.#parameters, stepS);
+    return this.#odd;
   }
 }
 
-function gainsFor(parameters: FusionParameters, stepS: number): Float64Array {
-  const gains = new Float64Array(Gain.SIZE);
+function writeGains(gains: Float64Array, parameters: FusionParameters, stepS: number): void {
   const noise = (FORGOTTEN_SIGMA ** 2 * stepS) / parameters.biasForgettingS;
   gains[Gain.STEP] = stepS;
   lowPassGains(gains, Gain.FORCE, parameters.accelTauS, stepS);
   lowPassGains(gains, Gain.REST, parameters.restTauS, stepS);
   lowPassGains(gains, Gain.FIELD, parameters.magCurrentTauS, stepS);
   gains[Gain.HEADING] = firstOrderGain(parameters.magTauS, stepS);
+  gains[Gain.HEADING_NOISE] = (parameters.headingSigma ** 2 * parameters.magTauS) / stepS;
   gains[Gain.REFERENCE] = firstOrderGain(parameters.magReferenceTauS, stepS);
+  gains[Gain.ACCELERATION] = firstOrderGain(parameters.accelTauS, stepS);
   gains[Gain.BIAS_NOISE] = noise;
   gains[Gain.MOTION_VARIANCE] = measurementVariance(parameters.biasSigmaMotion, noise);
   gains[Gain.VERTICAL_VARIANCE] = gains[Gain.MOTION_VARIANCE]! / parameters.biasVerticalWeight;
   gains[Gain.REST_VARIANCE] = measurementVariance(parameters.biasSigmaRest, noise);
-  return gains;
 }
 
 /** Gain of a first-order low-pass with time constant `tauS` over one step. */

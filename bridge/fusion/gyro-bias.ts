@@ -13,6 +13,7 @@ import { stepLowPass } from "../numeric/low-pass.ts";
 import { type Coefficients, Gain } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
+import { followAcceleration } from "./uncertainty.ts";
 
 /** The measurement matrix by rows, each row's disagreement (rad/s), and its variance ((rad/s)²). */
 const seenThrough = new Float64Array(9);
@@ -20,7 +21,7 @@ const residual = new Float64Array(3);
 const variance = new Float64Array(3);
 const before = new Float64Array(3);
 
-/** After each inclination correction: sums, and at the end of a span estimates the bias. */
+/** After each specific force: sums, and at the end of a span, after its correction of the inclination, estimates the bias. */
 export function estimateBias(
   r: Float64Array,
   coefficients: Coefficients,
@@ -30,11 +31,12 @@ export function estimateBias(
   if (r[Slot.SPAN]! < parameters.biasSpanS) return;
   const gains = coefficients.forStep(r, Slot.SPAN);
   followLevel(r, gains);
+  followAcceleration(r, gains);
   growCovariance(r, gains, parameters);
   if (r[Slot.AT_REST] === 1) {
     measureAtRest(r, gains);
     updateBias(r, parameters);
-  } else if (r[Slot.NOW]! >= r[Slot.CLIPPED_UNTIL]!) {
+  } else if (r[Slot.CLIPPED] === 0) {
     // Corrections that follow clipped rates would be taken for bias.
     measureInMotion(r, gains);
     updateBias(r, parameters);
@@ -45,8 +47,6 @@ export function estimateBias(
 function sum(r: Float64Array): void {
   const stepS = r[Slot.FORCE_STEP]!;
   r[Slot.SPAN]! += stepS;
-  r[Slot.SPAN_TILT]! -= r[Slot.UP + 1]!;
-  r[Slot.SPAN_TILT + 1]! += r[Slot.UP]!;
   for (let i = 0; i < 9; i++) r[Slot.SPAN_MATRIX + i]! += stepS * r[Slot.LEVEL_MATRIX + i]!;
 }
 

@@ -2,6 +2,7 @@
 import { Gain } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
+import { isHeadingSettled, narrowHeading, uncertainShare } from "./uncertainty.ts";
 
 /** Below this horizontal length the nose axis has no heading. */
 const VERTICAL = 1e-3;
@@ -41,6 +42,26 @@ export function levelField(r: Float64Array): void {
     const row = Slot.LEVEL_MATRIX + 3 * i;
     r[Slot.LEVEL_FIELD + i] = r[row]! * x + r[row + 1]! * y + r[row + 2]! * z;
   }
+}
+
+/**
+ * Adds the newest field to the span's. Against the times in which a field is judged and heading corrected nothing is lost
+ * by doing so once a span of readings.
+ * @returns whether that is due: after a span, or with each reading while the heading is uncertain. The level field is then
+ *   the mean of the span, and the field's step its length.
+ */
+export function sumField(r: Float64Array, parameters: FusionParameters): boolean {
+  r[Slot.FIELD_SUM]! += r[Slot.LEVEL_FIELD]!;
+  r[Slot.FIELD_SUM + 1]! += r[Slot.LEVEL_FIELD + 1]!;
+  r[Slot.FIELD_SUM + 2]! += r[Slot.LEVEL_FIELD + 2]!;
+  r[Slot.FIELD_COUNT]! += 1;
+  r[Slot.FIELD_SPAN]! += r[Slot.FIELD_STEP]!;
+  if (r[Slot.FIELD_SPAN]! < parameters.fieldSpanS && isHeadingSettled(r, parameters)) return false;
+  const scale = 1 / r[Slot.FIELD_COUNT]!;
+  for (let i = 0; i < 3; i++) r[Slot.LEVEL_FIELD + i] = scale * r[Slot.FIELD_SUM + i]!;
+  r[Slot.FIELD_STEP] = r[Slot.FIELD_SPAN]!;
+  for (let i: number = Slot.FIELD_SUM; i <= Slot.FIELD_SPAN; i++) r[i] = 0;
+  return true;
 }
 
 /** Turns the heading by a share of its disagreement with the field. A vertical field turns nothing. */
@@ -86,7 +107,7 @@ export function turnHeading(r: Float64Array): void {
 /** The present heading stands as the mean of all field readings so far: the next ones correct it at the steady gain. */
 export function keepHeading(r: Float64Array): void {
   if (r[Slot.STARTED] === 0) return;
-  r[Slot.HEADING_SETTLED] = 1;
+  r[Slot.HEADING_VARIANCE] = 0;
 }
 
 /** out (4 slots) = heading · level: body axes -> earth. */
@@ -104,25 +125,23 @@ export function composeEarth(r: Float64Array, out: Float64Array, outAt: number):
 }
 
 /**
- * The share to correct by: the first readings are averaged (1, 1/2, 1/3 ... until the steady gain is reached); a disturbed
- * field counts for nothing until the allowance for rejection is used up, then for less.
+ * The share to correct by. A disturbed field counts for nothing until the allowance for rejection is used up, then for
+ * less. An undisturbed one, and any before there is a reference, counts the more the less certain the heading is.
  */
 function chooseGain(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
-  let gain = gains[Gain.HEADING]!;
+  const { magRejectionFactor, magMaxRejectionS } = parameters;
+  const stepS = r[Slot.FIELD_STEP]!;
+  const believed = r[Slot.DISTURBED] === 0 || (r[Slot.REFERENCE_KNOWN] === 0 && r[Slot.FIELD_FLAGGED] === 0);
+  let share = gains[Gain.HEADING]!;
   if (r[Slot.DISTURBED] === 0) {
-    const wonBack = parameters.magRejectionFactor * r[Slot.FIELD_STEP]!;
-    r[Slot.REJECTED_TIME] = Math.max(0, r[Slot.REJECTED_TIME]! - wonBack);
-  } else if (r[Slot.REJECTED_TIME]! > parameters.magMaxRejectionS) {
-    gain /= parameters.magRejectionFactor;
+    r[Slot.REJECTED_TIME] = Math.max(0, r[Slot.REJECTED_TIME]! - magRejectionFactor * stepS);
+  } else if (r[Slot.REJECTED_TIME]! > magMaxRejectionS) {
+    share /= magRejectionFactor;
   } else {
-    r[Slot.REJECTED_TIME]! += r[Slot.FIELD_STEP]!;
-    gain = 0;
+    r[Slot.REJECTED_TIME]! += stepS;
+    share = 0;
   }
-  if (r[Slot.HEADING_SETTLED] === 0) {
-    r[Slot.HEADING_COUNT]! += 1;
-    const average = 1 / r[Slot.HEADING_COUNT]!;
-    if (average < gains[Gain.HEADING]!) r[Slot.HEADING_SETTLED] = 1;
-    gain = Math.max(gain, average);
-  }
-  r[Slot.HEADING_GAIN] = gain;
+  if (believed) share = Math.max(share, uncertainShare(r, gains));
+  narrowHeading(r, share);
+  r[Slot.HEADING_GAIN] = share;
 }

@@ -7,6 +7,12 @@
  */
 import { RAD_PER_DEG } from "../numeric/units.ts";
 
+/**
+ * Uncertainty of the field's direction beside the one before a clipped stretch or a gap, rad: noise, timing, uneven field.
+ * Ours, no source: a twentieth of the norm, a few times a magnetometer's noise.
+ */
+export const FIELD_SHARE = 0.05;
+
 export interface FusionParameters {
   /**
    * Time constant of the inclination correction, s. Small: gyroscope errors fade sooner, but the body's accelerations
@@ -15,6 +21,22 @@ export interface FusionParameters {
   readonly accelTauS: number;
   /** Time constant of the heading correction, s. Small: magnetic noise and disturbance leak into heading. Large: drift lasts. */
   readonly magTauS: number;
+
+  /** Standard deviation of the inclination in steady, gentle motion, rad. Ours: bias in motion over the time constant, and noise. */
+  readonly inclinationSigma: number;
+  /** How much of the direction error of a single specific force its average keeps: tilt per acceleration / g. Ours, no source. */
+  readonly accelerationShare: number;
+  /**
+   * Standard deviation of the specific force's direction averaged over the time constant, rad; it decides how far a
+   * clipped stretch opens the inclination's correction. Small: opens more readily, and lets more acceleration in. Ours, no
+   * source: a mean acceleration of 0.5 m/s² over the time constant.
+   */
+  readonly accelSigma: number;
+  /**
+   * Standard deviation of a settled heading in an even field, rad; it decides how far a clipped stretch or a gap opens the
+   * heading's correction. Small: opens more readily. Ours, no source: what a calibrated magnetometer is good for.
+   */
+  readonly headingSigma: number;
 
   /** Standard deviation of the gyroscope's bias at the start, rad/s. Small: a real bias is found late. */
   readonly biasSigmaStart: number;
@@ -33,11 +55,15 @@ export interface FusionParameters {
    * work. Large: fast turns blur. Ours, no source: well below the time constant of the inclination correction.
    */
   readonly biasSpanS: number;
+  /** Span of field readings whose mean is judged, and corrects the heading, s. Ours, no source: a fast beat's tenth. */
+  readonly fieldSpanS: number;
 
   /** Rest is believed after this long, s. Small: a slow even turn may pass for rest. */
   readonly restMinS: number;
   /** Time constant of the low-pass that readings at rest are compared with, s. */
   readonly restTauS: number;
+  /** Span of readings whose mean makes one step of that low-pass, s. Ours, no source: well below its time constant. */
+  readonly restSpanS: number;
   /** Greatest deviation of the angular rate from its low-pass at rest, rad/s. */
   readonly restRateLimit: number;
   /** Greatest deviation of the specific force from its low-pass at rest, m/s². */
@@ -64,8 +90,6 @@ export interface FusionParameters {
   /** How much more slowly; and how fast undisturbed time wins back the allowance for rejection. */
   readonly magRejectionFactor: number;
 
-  /** How long trust stays reduced after a clipped gyroscope reading, s: one time constant of the inclination correction. */
-  readonly clippedHoldS: number;
   /**
    * Time constant with which the slope of the angular rate fades in a prediction across lost samples, s. Small: the last
    * rate is held. Large: fast tailbeats overshoot. Ours, no source: on a sine a prediction with slope is nearer than one
@@ -85,16 +109,23 @@ export const DEFAULT_PARAMETERS: FusionParameters = {
   accelTauS: 3,
   magTauS: 9,
 
+  inclinationSigma: 0.4 * RAD_PER_DEG,
+  accelerationShare: 0.05,
+  accelSigma: 0.05,
+  headingSigma: 2 * RAD_PER_DEG,
+
   biasSigmaStart: 0.5 * RAD_PER_DEG,
   biasForgettingS: 100,
   biasLimit: 2 * RAD_PER_DEG,
   biasSigmaMotion: 0.1 * RAD_PER_DEG,
   biasVerticalWeight: 1e-4,
   biasSigmaRest: 0.03 * RAD_PER_DEG,
-  biasSpanS: 0.05,
+  biasSpanS: 0.1,
+  fieldSpanS: 0.02,
 
   restMinS: 1.5,
   restTauS: 0.5,
+  restSpanS: 0.05,
   restRateLimit: 2 * RAD_PER_DEG,
   restAccelLimit: 0.5,
 
@@ -109,7 +140,6 @@ export const DEFAULT_PARAMETERS: FusionParameters = {
   magMaxRejectionS: 60,
   magRejectionFactor: 2,
 
-  clippedHoldS: 3,
   slopeFadeS: 0.1,
   lostAfterS: 1,
   magMissingAfterS: 1,

@@ -123,9 +123,8 @@ export class RelativeHeading {
     if (this.#usable[gap] === 1 && this.#usable[gap + 1] === 1) {
       this.#add(gap, g, sums);
     }
-    const now = before[Slot.NOW]!;
     const atRest = before[Slot.AT_REST] === 1 && behind[Slot.AT_REST] === 1;
-    const clipped = now < before[Slot.CLIPPED_UNTIL]! || now < behind[Slot.CLIPPED_UNTIL]!;
+    const clipped = before[Slot.CLIPPED] === 1 || behind[Slot.CLIPPED] === 1;
     advanceGap(g, atRest, clipped);
     this.turns[gap] = g[Gap.TURN]!;
     this.sigma[gap] = gapSigma(g);

@@ -1,6 +1,6 @@
 /** Rest: for a while neither the angular rate nor the specific force strays from its own low-pass. */
 import { stepLowPass } from "../numeric/low-pass.ts";
-import { Gain } from "./coefficients.ts";
+import { type Coefficients, Gain } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
 
@@ -10,10 +10,13 @@ const FORCE = RATE + 3;
 
 /**
  * The newest angular rate and specific force: a deviation, or an even rate too great to be bias, ends rest; time without
- * brings it.
+ * brings it. Each reading is compared; the low-pass takes the mean of a short span of them at once.
  */
-export function watchRest(r: Float64Array, gains: Float64Array, parameters: FusionParameters): void {
-  stepLowPass(r, Slot.REST_LOW_PASS, 6, Slot.RATE, gains, Gain.REST);
+export function watchRest(r: Float64Array, coefficients: Coefficients, parameters: FusionParameters): void {
+  for (let i = 0; i < 6; i++) r[Slot.REST_SUM + i]! += r[Slot.RATE + i]!;
+  r[Slot.REST_COUNT]! += 1;
+  r[Slot.REST_SPAN]! += r[Slot.FORCE_STEP]!;
+  if (r[Slot.REST_SPAN]! >= parameters.restSpanS) followMean(r, coefficients);
   if (!isQuiet(r, parameters)) {
     r[Slot.REST_TIME] = 0;
     r[Slot.AT_REST] = 0;
@@ -21,6 +24,15 @@ export function watchRest(r: Float64Array, gains: Float64Array, parameters: Fusi
   }
   r[Slot.REST_TIME]! += r[Slot.FORCE_STEP]!;
   if (r[Slot.REST_TIME]! >= parameters.restMinS) r[Slot.AT_REST] = 1;
+}
+
+function followMean(r: Float64Array, coefficients: Coefficients): void {
+  const scale = 1 / r[Slot.REST_COUNT]!;
+  for (let i = 0; i < 6; i++) r[Slot.REST_SUM + i]! *= scale;
+  stepLowPass(r, Slot.REST_LOW_PASS, 6, Slot.REST_SUM, coefficients.forStep(r, Slot.REST_SPAN), Gain.REST);
+  for (let i = 0; i < 6; i++) r[Slot.REST_SUM + i] = 0;
+  r[Slot.REST_COUNT] = 0;
+  r[Slot.REST_SPAN] = 0;
 }
 
 function isQuiet(r: Float64Array, parameters: FusionParameters): boolean {

@@ -2,6 +2,7 @@
 import { TRUST } from "../sweep.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
+import { isHeadingSettled } from "./uncertainty.ts";
 
 /**
  * The sensor's TRUST code.
@@ -16,7 +17,7 @@ export function trustOf(
 ): number {
   if (r[Slot.STARTED] === 0) return TRUST.LOST;
   if (heading === TRUST.HEADING_UNAIDED) return TRUST.HEADING_UNAIDED;
-  if (r[Slot.NOW]! < r[Slot.CLIPPED_UNTIL]!) return TRUST.CLIPPED;
+  if (r[Slot.CLIPPED] === 1) return TRUST.CLIPPED;
   if (bridged) return TRUST.BRIDGED;
   if (r[Slot.FORCE_LOW_PASS]! < parameters.accelTauS) return TRUST.SETTLING;
   return heading;
@@ -25,7 +26,7 @@ export function trustOf(
 /** What a heading held by the magnetometer is worth. */
 export function magneticTrust(r: Float64Array, parameters: FusionParameters): number {
   if (isHeadingUnaided(r, parameters)) return TRUST.HEADING_UNAIDED;
-  return r[Slot.HEADING_SETTLED] === 0 ? TRUST.SETTLING : TRUST.GOOD;
+  return isHeadingSettled(r, parameters) ? TRUST.GOOD : TRUST.SETTLING;
 }
 
 /** Before there is a reference the field cannot be called disturbed: then the heading is settling, not unaided. */

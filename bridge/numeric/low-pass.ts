@@ -34,7 +34,12 @@ export function lowPassGains(out: Float64Array, outAt: number, tauS: number, ste
   const decay = Math.exp(-angle);
   const cosine = decay * Math.cos(angle);
   const sine = decay * Math.sin(angle);
-  out.set([stepS, tauS, cosine + sine, sine, -2 * sine, cosine - sine], outAt);
+  out[outAt] = stepS;
+  out[outAt + 1] = tauS;
+  out[outAt + 2] = cosine + sine;
+  out[outAt + 3] = sine;
+  out[outAt + 4] = -2 * sine;
+  out[outAt + 5] = cosine - sine;
 }
 
 /**

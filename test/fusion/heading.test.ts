@@ -97,17 +97,6 @@ describe("magnetic heading", () => {
     weave(fusion, sweep, 2, undisturbed);
     expect(fusion.trust[0]).toBe(TRUST.HEADING_UNAIDED);
   });
-
-  it("is reduced in trust for three seconds after a clipped gyroscope reading", () => {
-    const { fusion, sweep } = settled();
-    sweep.conditions[0] = CONDITION.GYRO_CLIPPED;
-    weave(fusion, sweep, 0.1, undisturbed);
-    sweep.conditions[0] = 0;
-    weave(fusion, sweep, 2.5, undisturbed);
-    expect(fusion.trust[0]).toBe(TRUST.CLIPPED);
-    weave(fusion, sweep, 1, undisturbed);
-    expect(fusion.trust[0]).toBe(TRUST.GOOD);
-  });
 });
 
 describe("free heading", () => {

@@ -161,7 +161,8 @@ describe("predictions", () => {
     let worst = 0;
     for (let i = 0; i <= 20 * RATE_HZ; i++) {
       const truth = turned([0, 0, (0.5 * i) / RATE_HZ]);
-      fillRow(sweep, 0, truth, [0, 0, 0.5]);
+      // Specific force and field are means over the sensor's interval too: those of its middle.
+      fillRow(sweep, 0, turned([0, 0, (0.5 * Math.max(0, i - 2)) / RATE_HZ]), [0, 0, 0.5]);
       sweep.present[0] = i % 4 === 0 ? HAS_INERTIAL | HAS_MAG : 0;
       sweep.timeS = i / RATE_HZ;
       fusion.step(sweep);

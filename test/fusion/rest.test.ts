@@ -103,7 +103,8 @@ describe("gyroscope bias", () => {
       const sweep = oneSensor();
       for (let i = 1; i <= 120 * RATE_HZ; i++) {
         // Turning about a level axis at 1 rad/s: rest is out of the question.
-        fillRow(sweep, 0, turned([i / RATE_HZ, 0, 0]), [1 + 0.5 * RAD_PER_DEG, 0, 0]);
+        // Rate and specific force are means over the interval: those of its middle.
+        fillRow(sweep, 0, turned([(i - 0.5) / RATE_HZ, 0, 0]), [1 + 0.5 * RAD_PER_DEG, 0, 0]);
         advance(fusion, sweep);
       }
       return inclinationError(fusion, turned([120, 0, 0])) * DEG_PER_RAD;

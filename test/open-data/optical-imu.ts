@@ -9,7 +9,7 @@ import { join } from "node:path";
 import { gunzipSync } from "node:zlib";
 import { ChainFusion } from "../../bridge/fusion/chain-fusion.ts";
 import { DEG_PER_RAD } from "../../bridge/numeric/units.ts";
-import { createSweep, HAS_INERTIAL, HAS_MAG } from "../../bridge/sweep.ts";
+import { ACCEL, CHANNELS, createSweep, HAS_INERTIAL, HAS_MAG, type Sweep } from "../../bridge/sweep.ts";
 
 export interface Trial {
   readonly name: string;
@@ -29,6 +29,9 @@ export interface Scores {
   readonly totalDeg: number;
   readonly headingDeg: number;
   readonly inclinationDeg: number;
+  /** Error over the standard deviation that the fusion states for it: 1 where it is honest on average. */
+  readonly headingRatio: number;
+  readonly inclinationRatio: number;
 }
 
 /** What reference.json says of one trial. */
@@ -84,17 +87,22 @@ export function readTrial(folder: string, name: string): Trial {
   return trial;
 }
 
+/** Numbers between 0 and 1, the same each time: S. K. Park, K. W. Miller, Comm. ACM 31(10), 1988. */
+function parkMiller(): () => number {
+  let n = 1234567890;
+  return () => {
+    n = (16807 * n) % 2147483647;
+    return n / 2147483647;
+  };
+}
+
 /**
  * Lost samples, 1 where lost, about 5.4 %: bursts of 20 and single ones, from a Park-Miller generator started alike for
  * every trial (the pattern of the data's own description).
  */
 export function lossPattern(samples: number): Uint8Array {
   const lost = new Uint8Array(samples);
-  let n = 1234567890;
-  const draw = () => {
-    n = (16807 * n) % 2147483647;
-    return n / 2147483647;
-  };
+  const draw = parkMiller();
   for (let i = 1000; i < samples; ) {
     if (draw() < 0.0025) {
       lost.fill(1, i, i + 20);
@@ -107,23 +115,66 @@ export function lossPattern(samples: number): Uint8Array {
   return lost;
 }
 
-/** Runs a trial through the fusion and scores every sample that counts, lost ones too. */
-export function scoreTrial(trial: Trial, lost?: Uint8Array): Scores {
-  const fusion = new ChainFusion({ sensorCount: 1, rateHz: trial.rateHz, heading: "magnetic" });
+/** Plus and minus 500 degrees a second, rad/s, for trials that are faster than that. */
+export const CLIP_RANGE = 500 / DEG_PER_RAD;
+/** The trials that are, by the start of their names. */
+export const CLIPPED_TRIALS = ["06", "16", "21", "29"];
+
+/** What is done to a trial before it is fused. */
+export interface Damage {
+  /** 1 where a sample is lost. */
+  readonly lost?: Uint8Array;
+  /** The gyroscope is cut off at plus and minus this on each axis, rad/s. */
+  readonly gyroRange?: number;
+  /** Sample times are displaced, each by up to this share of the interval either way. */
+  readonly jitter?: number;
+}
+
+/**
+ * Runs a trial through the fusion and scores every sample that counts, lost ones too. Jittered: a sample is taken at its
+ * displaced time, rate, force and field each on the straight line between the two samples around it, and compared with
+ * the reference of its regular time.
+ */
+export function scoreTrial(trial: Trial, { lost, gyroRange = Infinity, jitter = 0 }: Damage = {}): Scores {
+  const fusion = new ChainFusion({
+    sensorCount: 1,
+    rateHz: trial.rateHz,
+    heading: "magnetic",
+    gyroRanges: [gyroRange],
+  });
   const sweep = createSweep(1);
   sweep.stepS = 1 / trial.rateHz;
-  const sums = { total: 0, heading: 0, inclination: 0, count: 0 };
+  const sums = { total: 0, heading: 0, inclination: 0, headingRatio: 0, inclinationRatio: 0, count: 0 };
+  const draw = parkMiller();
   for (let i = 0; i < trial.samples; i++) {
     const isLost = lost?.[i] === 1;
-    sweep.timeS = trial.timesS[i]!;
+    const late = jitter > 0 && i > 0 && i < trial.samples - 1 ? jitter * (2 * draw() - 1) : 0;
+    sweep.timeS = trial.timesS[i]! + late / trial.rateHz;
     sweep.present[0] = isLost ? 0 : HAS_INERTIAL | HAS_MAG;
-    if (!isLost) sweep.values.set(trial.values.subarray(i * 9, i * 9 + 9));
+    if (!isLost) fill(sweep, trial, i, late, gyroRange);
     fusion.step(sweep);
-    if (trial.movement[i] === 1)
-      addErrors(sums, fusion.orientations, trial.reference.subarray(i * 4, i * 4 + 4));
+    if (trial.movement[i] === 1) addErrors(sums, fusion, trial.reference.subarray(i * 4, i * 4 + 4));
   }
-  const rms = (sum: number) => Math.sqrt(sum / sums.count) * DEG_PER_RAD;
-  return { totalDeg: rms(sums.total), headingDeg: rms(sums.heading), inclinationDeg: rms(sums.inclination) };
+  const rms = (sum: number) => Math.sqrt(sum / sums.count);
+  return {
+    totalDeg: rms(sums.total) * DEG_PER_RAD,
+    headingDeg: rms(sums.heading) * DEG_PER_RAD,
+    inclinationDeg: rms(sums.inclination) * DEG_PER_RAD,
+    headingRatio: rms(sums.headingRatio),
+    inclinationRatio: rms(sums.inclinationRatio),
+  };
+}
+
+/** The readings at sample i and a share of an interval later, cut off at the gyroscope's range. */
+function fill(sweep: Sweep, trial: Trial, i: number, late: number, gyroRange: number): void {
+  const other = i + Math.sign(late);
+  for (let c = 0; c < CHANNELS; c++) {
+    const here = trial.values[i * CHANNELS + c]!;
+    const there = trial.values[other * CHANNELS + c]!;
+    const value = here + Math.abs(late) * (there - here);
+    sweep.values[c] = c < ACCEL ? Math.max(-gyroRange, Math.min(gyroRange, value)) : value;
+  }
+  sweep.raw.set(sweep.values);
 }
 
 /** Mean of each error over several runs. */
@@ -133,22 +184,29 @@ export function meanScores(all: readonly Scores[]): Scores {
     totalDeg: mean((s) => s.totalDeg),
     headingDeg: mean((s) => s.headingDeg),
     inclinationDeg: mean((s) => s.inclinationDeg),
+    headingRatio: mean((s) => s.headingRatio),
+    inclinationRatio: mean((s) => s.inclinationRatio),
   };
 }
 
 /** The error measure of the data's paper: e = q conj(r); total, heading and inclination parts of it, squared. */
 function addErrors(
-  sums: { total: number; heading: number; inclination: number; count: number },
-  q: Float64Array,
+  sums: Record<"total" | "heading" | "inclination" | "headingRatio" | "inclinationRatio" | "count", number>,
+  fusion: ChainFusion,
   r: Float64Array,
 ): void {
   const [rw, rx, ry, rz] = [r[0]!, r[1]!, r[2]!, r[3]!];
   if (Number.isNaN(rw)) return;
+  const q = fusion.orientations;
   const [qw, qx, qy, qz] = [q[0]!, q[1]!, q[2]!, q[3]!];
   const ew = qw * rw + qx * rx + qy * ry + qz * rz;
   const ez = qz * rw - qw * rz - qx * ry + qy * rx;
+  const inclination = (2 * Math.acos(Math.min(1, Math.sqrt(ew * ew + ez * ez)))) ** 2;
+  const heading = (2 * Math.atan(Math.abs(ez / ew))) ** 2;
   sums.total += (2 * Math.acos(Math.min(1, Math.abs(ew)))) ** 2;
-  sums.inclination += (2 * Math.acos(Math.min(1, Math.sqrt(ew * ew + ez * ez)))) ** 2;
-  sums.heading += (2 * Math.atan(Math.abs(ez / ew))) ** 2;
+  sums.inclination += inclination;
+  sums.heading += heading;
+  sums.inclinationRatio += inclination / fusion.inclinationSigma[0]! ** 2;
+  sums.headingRatio += heading / fusion.headingSigma[0]! ** 2;
   sums.count++;
 }

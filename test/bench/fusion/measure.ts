@@ -26,7 +26,7 @@ export interface Summary {
 
 export interface Measured {
   readonly sensors: number;
-  readonly fusion: Summary & { readonly heapBytes: number };
+  readonly fusion: Summary & { readonly heapBytes: number; readonly heapBytesLeft: number };
   /** The same with headings held by the body. */
   readonly relative: Summary & { readonly heapBytes: number };
   readonly madgwick: Summary & { readonly heapBytes: number };
@@ -49,7 +49,11 @@ function measure(): Measured {
   }
   return {
     sensors: SENSORS,
-    fusion: { ...summary(fusionNs.slice(WARM_UP_ROUNDS)), heapBytes: heapBytesPerUpdate(fusion.round) },
+    fusion: {
+      ...summary(fusionNs.slice(WARM_UP_ROUNDS)),
+      heapBytes: heapBytesPerUpdate(fusion.round),
+      heapBytesLeft: heapBytesLeft(fusion.round),
+    },
     relative: { ...summary(relativeNs.slice(WARM_UP_ROUNDS)), heapBytes: heapBytesPerUpdate(relative.round) },
     madgwick: { ...summary(madgwickNs.slice(WARM_UP_ROUNDS)), heapBytes: heapBytesPerUpdate(madgwick.round) },
     kept: fusion.kept() + relative.kept() + madgwick.kept(),
@@ -137,6 +141,16 @@ function heapBytesPerUpdate(round: () => void): number {
   });
   const positive = growths.filter((growth) => growth >= 0);
   return Math.min(...positive) / (SWEEPS_A_ROUND * SENSORS);
+}
+
+/** What a million updates leave on the heap after a collection, bytes; run with --expose-gc, twice: code is compiled once. */
+function heapBytesLeft(round: () => void): number {
+  const collect = globalThis.gc!;
+  collect();
+  const before = process.memoryUsage().heapUsed;
+  for (let updates = 0; updates < 1_000_000; updates += SWEEPS_A_ROUND * SENSORS) round();
+  collect();
+  return process.memoryUsage().heapUsed - before;
 }
 
 function summary(times: readonly number[]): Summary {
