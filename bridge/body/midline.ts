@@ -7,7 +7,7 @@
  * segment's middle: whatever the orientations, its length is the body's. Sensors that are lost drop out and their
  * neighbours carry on.
  */
-import { arcBetween, normalise, rotate, slerpAlong } from "../numeric/quaternion.ts";
+import { arcBetween, normalise, rotate, signOfDot } from "../numeric/quaternion.ts";
 import { TRUST } from "../sweep.ts";
 
 export interface MidlineOptions {
@@ -39,6 +39,9 @@ export class Midline {
 
   /** Angle between each sensor and the next one that is left, as of the last step. */
   readonly #arc: Float64Array;
+  /** One over its sine, 0 where that is too small; and -1 where the shorter way is by the negative quaternion. */
+  readonly #overSine: Float64Array;
+  readonly #sign: Float64Array;
   /** As of the last step. Borrowed from fusion, which rewrites it with the next sweep. */
   #orientations: Float64Array = new Float64Array(0);
 
@@ -55,6 +58,8 @@ export class Midline {
     this.#share = new Float64Array(this.#placeCount);
     this.#lost = new Uint8Array(stations.length);
     this.#arc = new Float64Array(stations.length);
+    this.#overSine = new Float64Array(stations.length);
+    this.#sign = new Float64Array(stations.length);
     this.#sensorsLeft = stations.length;
     this.#placeSensors();
     for (let point = 1; point < pointCount; point++) this.positions[3 * point] = -point * this.#segmentM;
@@ -96,19 +101,34 @@ export class Midline {
 
   /** Measures the angle between the sensors before and behind `place`, once for all places between them. */
   #measureArc(place: number): void {
-    const before = this.#before[place];
-    const behind = this.#behind[place];
-    if (place > 1 && before === this.#before[place - 2] && behind === this.#behind[place - 2]) return;
-    this.#arc[before] = arcBetween(this.#orientations, this.#orientations, 4 * before, 4 * behind);
-  }
-
-  /** Leaves the orientation at `place` in #orientation. */
-  #interpolate(place: number): void {
     const q = this.#orientations;
     const before = this.#before[place];
     const behind = this.#behind[place];
-    slerpAlong(this.#orientation, q, q, this.#arc[before], this.#share[place], 0, 4 * before, 4 * behind);
-    normalise(this.#orientation, this.#orientation);
+    if (place > 1 && before === this.#before[place - 2] && behind === this.#behind[place - 2]) return;
+    const arc = arcBetween(q, q, 4 * before, 4 * behind);
+    const sine = Math.sin(arc);
+    this.#arc[before] = arc;
+    this.#overSine[before] = sine < 1e-9 ? 0 : 1 / sine;
+    this.#sign[before] = signOfDot(q, q, 4 * before, 4 * behind);
+  }
+
+  /** Leaves the orientation at `place` in #orientation: slerp, with what is common to all places of a gap known. */
+  #interpolate(place: number): void {
+    const q = this.#orientations;
+    const out = this.#orientation;
+    const before = this.#before[place];
+    const a = 4 * before;
+    const b = 4 * this.#behind[place];
+    const share = this.#share[place];
+    const arc = this.#arc[before];
+    const over = this.#overSine[before];
+    const fromA = over === 0 ? 1 - share : Math.sin((1 - share) * arc) * over;
+    const fromB = this.#sign[before] * (over === 0 ? share : Math.sin(share * arc) * over);
+    out[0] = fromA * q[a] + fromB * q[b];
+    out[1] = fromA * q[a + 1] + fromB * q[b + 1];
+    out[2] = fromA * q[a + 2] + fromB * q[b + 2];
+    out[3] = fromA * q[a + 3] + fromB * q[b + 3];
+    normalise(out, out);
   }
 
   #lossChanged(trust: Uint8Array): boolean {

@@ -63,6 +63,8 @@ export class FlatTops {
   /** Levels found: readings there are clipped. */
   readonly #ceiling: Float64Array;
   readonly #floor: Float64Array;
+  /** A level was found on some axis in this run. */
+  #anyFound = false;
   readonly #high: RollingMax;
   readonly #negatedLow: RollingMax;
 
@@ -125,6 +127,7 @@ export class FlatTops {
       const row = start + k;
       this.foundBehind[row] = 0;
       if (!held) this.#follow(row, raw[row]!, afterGap);
+      if (!this.#anyFound) continue;
       const atLevel =
         raw[row]! >= this.#ceiling[row]! - this.#count[row]! ||
         raw[row]! <= this.#floor[row]! + this.#count[row]!;
@@ -134,9 +137,16 @@ export class FlatTops {
   }
 
   #follow(row: number, value: number, afterGap: boolean): void {
-    const count = this.#count[row]!;
     this.#high.put(row, value);
     this.#negatedLow.put(row, -value);
+    // Too small for a cut, and nothing under way that it could end: most readings go this way.
+    if (Math.abs(value) < this.#least[row]! && this.#run[row]! < PLATEAU && this.#leftSide[row] === 0) {
+      this.#run[row] = 0;
+      this.#last2[row] = afterGap ? value : this.#last[row]!;
+      this.#last[row] = value;
+      return;
+    }
+    const count = this.#count[row]!;
     // Beyond a level that was found: it was none, or the range was changed.
     if (value > this.#ceiling[row]! + count) this.#ceiling[row] = Number.POSITIVE_INFINITY;
     if (value < this.#floor[row]! - count) this.#floor[row] = Number.NEGATIVE_INFINITY;
@@ -218,6 +228,7 @@ export class FlatTops {
     const known = side > 0 ? this.#ceiling[row]! : this.#floor[row]!;
     if (Math.abs(level - known) <= this.#count[row]!) return;
     this.foundBehind[row] = readings;
+    this.#anyFound = true;
     if (side > 0) this.#ceiling[row] = level;
     else this.#floor[row] = level;
   }

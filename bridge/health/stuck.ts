@@ -131,8 +131,8 @@ export class StuckAxes {
   }
 
   #isStill(row: number, timeS: number): boolean {
-    const longEnough = timeS - this.#stillSinceS[row]! >= this.#setup.thresholds.stuckAxisS - 1e-6;
-    return longEnough && this.#repeats[row]! >= LEAST_REPEATS;
+    if (this.#repeats[row]! < LEAST_REPEATS) return false;
+    return timeS - this.#stillSinceS[row]! >= this.#setup.thresholds.stuckAxisS - 1e-6;
   }
 
   #shouldMove(row: number, start: number, timeS: number): boolean {

@@ -203,20 +203,7 @@ export function arcBetween(a: Slots, b: Slots, aAt = 0, bAt = 0): number {
  * own sign. Shares outside 0..1 extrapolate at the same rate.
  */
 export function slerp(out: Slots, a: Slots, b: Slots, share: number, outAt = 0, aAt = 0, bAt = 0): void {
-  slerpAlong(out, a, b, arcBetween(a, b, aAt, bAt), share, outAt, aAt, bAt);
-}
-
-/** The same where the angle between the two, `arc` (see arcBetween), is known: for many shares between one pair. */
-export function slerpAlong(
-  out: Slots,
-  a: Slots,
-  b: Slots,
-  arc: number,
-  share: number,
-  outAt = 0,
-  aAt = 0,
-  bAt = 0,
-): void {
+  const arc = arcBetween(a, b, aAt, bAt);
   const sine = Math.sin(arc);
   const near = sine < 1e-9;
   const fromA = near ? 1 - share : Math.sin((1 - share) * arc) / sine;
@@ -228,7 +215,7 @@ export function slerpAlong(
 }
 
 /** -1 where b lies on the far half of the 3-sphere from a, else 1. */
-function signOfDot(a: Slots, b: Slots, aAt: number, bAt: number): number {
+export function signOfDot(a: Slots, b: Slots, aAt = 0, bAt = 0): number {
   const dot =
     a[aAt]! * b[bAt]! + a[aAt + 1]! * b[bAt + 1]! + a[aAt + 2]! * b[bAt + 2]! + a[aAt + 3]! * b[bAt + 3]!;
   return dot < 0 ? -1 : 1;
