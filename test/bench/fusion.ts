@@ -1,30 +1,14 @@
 /**
  * Time of one nine-axis fusion update, beside the Madgwick filter of the npm package `ahrs` on the same readings in the
- * same run, and what an update, and a million of them, leave on the heap (bytes). Measured as it ships: bundled with the build's own settings, and run by
- * plain Node in a process of its own (a TypeScript loader in the process slows the code by a quarter).
+ * same run, and what an update, and a million of them, leave on the heap (bytes).
  */
-import { execFileSync } from "node:child_process";
-import { join } from "node:path";
-import { build } from "esbuild";
+import { runBundled } from "./bundled.ts";
 import type { Measured, Summary } from "./fusion/measure.ts";
 
 export const name = "fusion";
 
 export async function run(): Promise<{ rows: Record<string, string | number>[]; json: unknown }> {
-  const outfile = join(import.meta.dirname, "../../dist/bench/fusion.mjs");
-  await build({
-    entryPoints: [join(import.meta.dirname, "fusion/measure.ts")],
-    bundle: true,
-    platform: "node",
-    format: "esm",
-    target: "node20",
-    packages: "external",
-    outfile,
-    logLevel: "warning",
-  });
-  const measured = JSON.parse(
-    execFileSync(process.execPath, ["--expose-gc", outfile], { encoding: "utf8" }),
-  ) as Measured;
+  const measured = await runBundled<Measured>("fusion/measure.ts", ["--expose-gc"]);
   const { fusion, relative, madgwick, sensors } = measured;
   return {
     rows: [

@@ -1,5 +1,5 @@
 /** The largest rig: 64 sensors at 1000 sweeps a second. */
-import { loadRig, type Rig } from "../../bridge/rig/load.ts";
+import { loadRig, type Rig } from "../../../bridge/rig/load.ts";
 
 export function rigOf64(): Rig {
   const base = loadRig("long-dummy");
