@@ -40,7 +40,7 @@ export const CONDITION = {
   GAP: 64,
 } as const;
 
-/** Trust in a sensor's orientation, worst last. Names as on screen are in wire/. */
+/** Trust in a sensor's orientation. Names as on screen are in wire/. */
 export const TRUST = {
   GOOD: 0,
   SETTLING: 1,
@@ -51,6 +51,8 @@ export const TRUST = {
   HEADING_UNAIDED: 4,
   /** No readings for so long that the orientation means nothing. */
   LOST: 5,
+  /** The sensor's own orientation, fused on board, taken as it is: not ours to judge. */
+  FUSED_ON_BOARD: 6,
 } as const;
 
 export interface Sweep {

@@ -294,7 +294,7 @@ export class ChainFusion {
     const ageS = this.onBoard.take(sweep, sensor, ours, this.orientations, this.#parameters.lostAfterS);
     if (this.onBoard.used[sensor] === 0) return;
     this.bridged[sensor] = ageS > this.#dueAfterS[sensor]! ? 1 : 0;
-    this.trust[sensor] = this.bridged[sensor] === 1 ? TRUST.BRIDGED : TRUST.GOOD;
+    this.trust[sensor] = this.bridged[sensor] === 1 ? TRUST.BRIDGED : TRUST.FUSED_ON_BOARD;
     r[Slot.START_YAW] = yawOf(this.orientations, 4 * sensor);
   }
 

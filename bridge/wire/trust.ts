@@ -1,4 +1,12 @@
 /** How far a sensor's orientation can be believed, in words; the trust byte of a frame counts into this list. */
-export const TRUST_WORDS = ["good", "settling", "bridged", "clipped", "heading unaided", "lost"] as const;
+export const TRUST_WORDS = [
+  "good",
+  "settling",
+  "bridged",
+  "clipped",
+  "heading unaided",
+  "lost",
+  "fused on board",
+] as const;
 
 export type TrustWord = (typeof TRUST_WORDS)[number];

@@ -10,20 +10,10 @@ import { toAngles } from "../../numeric/angles.ts";
 import { DEG_PER_RAD } from "../../numeric/units.ts";
 import type { Rig } from "../../rig/load.ts";
 import type { Flag, Mark } from "../../wire/flag.ts";
+import { TRUST_WORDS } from "../../wire/trust.ts";
 import { DATA_PACKAGE_FILE, describePackage, SOFTWARE_PREFIX, SUMMARY_FILE } from "./data-package.ts";
 import { attempt, TableFile } from "./table-file.ts";
-import {
-  DECIMALS,
-  FLAGS,
-  GAIT,
-  MARKS,
-  MIDLINE,
-  SENSORS,
-  STATION_COUNT,
-  SYNC,
-  TABLES,
-  TRUST_WORDS,
-} from "./tables.ts";
+import { DECIMALS, FLAGS, GAIT, MARKS, MIDLINE, SENSORS, STATION_COUNT, SYNC, TABLES } from "./tables.ts";
 
 export interface ExportOptions {
   readonly folder: string;

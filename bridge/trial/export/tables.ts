@@ -8,6 +8,7 @@
  *     degrees      3   finer than any sensor's noise
  *     Hz           4   a tailbeat of 10 s timed to 1 ms differs in the fourth place
  */
+import { TRUST_WORDS } from "../../wire/trust.ts";
 
 /** Table Schema (Frictionless, v1) types we use. */
 export type FieldType = "number" | "integer" | "string" | "boolean";
@@ -87,7 +88,7 @@ export const SENSORS: Table = {
     ),
     number("pitch_deg", "deg", "Elevation of the nose; nose-up positive."),
     number("roll_deg", "deg", "Turn about the body's long axis; right side down positive."),
-    text("trust", "good, settling, bridged, clipped, heading unaided or lost."),
+    text("trust", `${TRUST_WORDS.slice(0, -1).join(", ")} or ${TRUST_WORDS.at(-1)}.`),
     {
       name: "bridged",
       type: "boolean",
@@ -142,6 +143,3 @@ export const SYNC: Table = {
 };
 
 export const TABLES: readonly Table[] = [MIDLINE, SENSORS, FLAGS, GAIT, MARKS, SYNC];
-
-/** Trust states by their number in sweep.ts, as written in sensors.csv. */
-export const TRUST_WORDS = ["good", "settling", "bridged", "clipped", "heading unaided", "lost"] as const;
