@@ -73,6 +73,7 @@ export class Monitor implements ByteSink {
     this.#server = new StreamServer({
       ...options,
       greeting: () => this.#greeting(),
+      newestFrame: () => this.#newestFrame(),
       onMessage: (message) => this.#act(message),
     });
   }
@@ -178,6 +179,10 @@ export class Monitor implements ByteSink {
     this.#framedSweeps = this.#pipeline.sweepCount;
     this.#server.sendFrame(this.#frames.write(this.#pipeline, this.#conditions));
     this.#conditions.fill(0);
+  }
+
+  #newestFrame(): Uint8Array | null {
+    return this.#pipeline.sweepCount === 0 ? null : this.#frames.write(this.#pipeline, this.#conditions);
   }
 
   /** All text messages, each when it is due. */

@@ -30,6 +30,8 @@ export interface ServerOptions extends AccessOptions {
   readonly dashboardFolder: string;
   /** What a newly connected viewer is sent first. */
   readonly greeting: () => readonly BridgeMessage[];
+  /** The newest frame, so that who comes while nothing arrives sees the last shape; null before the first. Borrowed. */
+  readonly newestFrame?: () => Uint8Array | null;
   readonly onMessage: (message: DashboardMessage) => void;
 }
 
@@ -148,6 +150,8 @@ export class StreamServer {
       } else this.#options.onMessage(message);
     });
     for (const message of this.#options.greeting()) viewer.offerText(message.type, JSON.stringify(message));
+    const frame = this.#options.newestFrame?.() ?? null;
+    if (frame !== null) viewer.offerFrame(frame);
   }
 
   #dropDeadViewers(): void {

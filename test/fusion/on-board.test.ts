@@ -32,7 +32,11 @@ describe("a sensor that sends only its own orientation", () => {
     own(sweep, attitude, false);
     advance(fusion, sweep);
     expect(totalError(fusion, attitude)).toBeLessThan(1e-12); // copied
-    expect([fusion.trust[0], fusion.bridged[0], fusion.onBoard.used[0]]).toEqual([TRUST.FUSED_ON_BOARD, 0, 1]);
+    expect([fusion.trust[0], fusion.bridged[0], fusion.onBoard.used[0]]).toEqual([
+      TRUST.FUSED_ON_BOARD,
+      0,
+      1,
+    ]);
     expect(fusion.onBoard.tilt[0]).toBeNaN();
   });
 
