@@ -263,7 +263,10 @@ export class Monitor implements ByteSink {
         linkDetail: `${counters.bytes} bytes came, but no packet can be read: ${hint}.`,
       };
     }
-    return { link: silent || counters.good === 0 ? "silent" : "flowing", linkDetail: detail };
+    if (counters.good === 0) return { link: "silent", linkDetail: "Open, and nothing has come yet." };
+    return silent
+      ? { link: "silent", linkDetail: "Open, but no sweep arrives." }
+      : { link: "flowing", linkDetail: detail };
   }
 
   #flagsMessage(): FlagsMessage {
