@@ -148,7 +148,7 @@ function updateText(nowMs: number): void {
   drawnText = view.textRevision;
   header.update(view);
   tailbeat.update(view);
-  flags.update(view);
+  flags.update(view, nowMs);
   notice.update(view, nowMs);
   sensors.update(view);
   markField.update(view);

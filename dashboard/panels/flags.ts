@@ -1,7 +1,7 @@
 /** What is wrong now, newest first, with advice; beneath it what has ended, and the marks. */
 import type { Flag, Mark } from "../../bridge/wire/flag.ts";
 import { setGlyph } from "../lanes/glyphs.ts";
-import { isLive, type ViewState } from "../stream/view-state.ts";
+import { hubTimeNow, isLive, type ViewState } from "../stream/view-state.ts";
 import { duration, flagTitle, setText, unbroken } from "./text.ts";
 
 const ENDED_SHOWN = 8;
@@ -20,9 +20,9 @@ export class FlagsPanel {
   /** Alarms already spoken. */
   readonly #spoken = new Set<number>();
 
-  update(view: ViewState): void {
+  update(view: ViewState, nowMs: number): void {
     const open = view.flags?.open ?? [];
-    const nowS = Math.max(view.frame.hubTimeS, view.status?.hubTimeS ?? 0);
+    const nowS = hubTimeNow(view, nowMs);
     setText(this.#count, open.length === 0 ? "" : `${open.length} open`);
     setText(this.#calm, open.length > 0 ? "" : calmSentence(view));
     this.#showOpen(open, view, nowS);

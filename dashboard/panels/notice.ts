@@ -1,5 +1,5 @@
 /** What stands over the lanes when they are not live: what has happened, how old the shape is, and what to do. */
-import { type LinkWord, linkWord, type ViewState } from "../stream/view-state.ts";
+import { type LinkWord, linkWord, shapeAgeS, type ViewState } from "../stream/view-state.ts";
 import { duration, setText } from "./text.ts";
 
 export interface NoticeText {
@@ -33,7 +33,7 @@ export class Notice {
 export function noticeText(view: ViewState, word: LinkWord, nowMs: number): NoticeText | null {
   const detail = view.status?.linkDetail ?? "";
   const shown = view.runFrameCount > 0;
-  const age = shown ? `The shape is ${duration((nowMs - view.frameAtMs) / 1000)} old.` : "";
+  const age = shown ? `The shape is ${duration(shapeAgeS(view, nowMs))} old.` : "";
   switch (word) {
     case "connecting":
       return { title: "Connecting to the bridge", detail: "If this stays, start it: npm start.", advice: "" };

@@ -126,3 +126,18 @@ function clearRun(view: ViewState): void {
   view.past.clear();
   view.runFrameCount = 0;
 }
+
+/** How long ago the newest sweep arrived, s: by the bridge's word where it has one, for a page opened since. */
+export function shapeAgeS({ frameAtMs, status }: ViewState, nowMs: number): number {
+  return Math.max(nowMs - frameAtMs, status?.behindMs ?? 0) / 1000;
+}
+
+/**
+ * Hub time as far as the page can tell, s: that of the newest frame, and what has passed since where the hub goes on but
+ * nothing arrives. A trial that has ended stands still.
+ */
+export function hubTimeNow(view: ViewState, nowMs: number): number {
+  const newestS = Math.max(view.frame.hubTimeS, view.status?.hubTimeS ?? 0);
+  const waiting = view.frameAtMs > 0 && !isLive(view) && linkWord(view) !== "ended";
+  return waiting ? newestS + shapeAgeS(view, nowMs) : newestS;
+}

@@ -5,9 +5,11 @@ import type { WelcomeMessage } from "../../bridge/wire/messages.ts";
 import { TRUST_WORDS } from "../../bridge/wire/trust.ts";
 import {
   createViewState,
+  hubTimeNow,
   isLive,
   linkWord,
   setBridge,
+  shapeAgeS,
   takeFrame,
   takeMessage,
 } from "../../dashboard/stream/view-state.ts";
@@ -112,4 +114,23 @@ test("trust words stand in the order of the trust bytes", () => {
   const words = Object.keys(TRUST).map((key) => key.toLowerCase().replaceAll("_", " "));
   expect(TRUST_WORDS).toEqual(words);
   expect(Object.values(TRUST)).toEqual(words.map((_, i) => i));
+});
+
+test("while a live link is silent hub time goes on by what has passed; once the run has ended it stands", () => {
+  const view = createViewState();
+  setBridge(view, "connected");
+  takeFrame(view, frameAt(20), 1000);
+  takeMessage(view, { ...statusOf("flowing"), hubTimeS: 20, behindMs: 5 });
+  expect(hubTimeNow(view, 1500)).toBe(20);
+  takeMessage(view, { ...statusOf("silent"), hubTimeS: 20, behindMs: 400 });
+  expect(hubTimeNow(view, 3000)).toBe(22);
+  takeMessage(view, { ...statusOf("ended"), hubTimeS: 20, behindMs: 9000 });
+  expect(hubTimeNow(view, 3000)).toBe(20);
+});
+
+test("a page opened during a silence takes the shape's age from the bridge", () => {
+  const view = createViewState();
+  takeFrame(view, frameAt(20), 1000);
+  takeMessage(view, { ...statusOf("silent"), hubTimeS: 20, behindMs: 30_000 });
+  expect(shapeAgeS(view, 2000)).toBe(30);
 });
