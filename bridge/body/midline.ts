@@ -7,7 +7,7 @@
  * segment's middle: whatever the orientations, its length is the body's. Sensors that are lost drop out and their
  * neighbours carry on.
  */
-import { arcBetween, normalise, rotate, signOfDot } from "../numeric/quaternion.ts";
+import { arcBetween, normalise, overSine, rotate, signOfDot, slerpKnown } from "../numeric/quaternion.ts";
 import { TRUST } from "../sweep.ts";
 
 export interface MidlineOptions {
@@ -106,29 +106,21 @@ export class Midline {
     const behind = this.#behind[place];
     if (place > 1 && before === this.#before[place - 2] && behind === this.#behind[place - 2]) return;
     const arc = arcBetween(q, q, 4 * before, 4 * behind);
-    const sine = Math.sin(arc);
     this.#arc[before] = arc;
-    this.#overSine[before] = sine < 1e-9 ? 0 : 1 / sine;
+    this.#overSine[before] = overSine(arc);
     this.#sign[before] = signOfDot(q, q, 4 * before, 4 * behind);
   }
 
   /** Leaves the orientation at `place` in #orientation: slerp, with what is common to all places of a gap known. */
   #interpolate(place: number): void {
     const q = this.#orientations;
-    const out = this.#orientation;
     const before = this.#before[place];
-    const a = 4 * before;
-    const b = 4 * this.#behind[place];
-    const share = this.#share[place];
+    const behind = this.#behind[place];
     const arc = this.#arc[before];
     const over = this.#overSine[before];
-    const fromA = over === 0 ? 1 - share : Math.sin((1 - share) * arc) * over;
-    const fromB = this.#sign[before] * (over === 0 ? share : Math.sin(share * arc) * over);
-    out[0] = fromA * q[a] + fromB * q[b];
-    out[1] = fromA * q[a + 1] + fromB * q[b + 1];
-    out[2] = fromA * q[a + 2] + fromB * q[b + 2];
-    out[3] = fromA * q[a + 3] + fromB * q[b + 3];
-    normalise(out, out);
+    const sign = this.#sign[before];
+    slerpKnown(this.#orientation, q, q, this.#share[place], arc, over, sign, 0, 4 * before, 4 * behind);
+    normalise(this.#orientation, this.#orientation);
   }
 
   #lossChanged(trust: Uint8Array): boolean {

@@ -204,14 +204,34 @@ export function arcBetween(a: Slots, b: Slots, aAt = 0, bAt = 0): number {
  */
 export function slerp(out: Slots, a: Slots, b: Slots, share: number, outAt = 0, aAt = 0, bAt = 0): void {
   const arc = arcBetween(a, b, aAt, bAt);
-  const sine = Math.sin(arc);
-  const near = sine < 1e-9;
-  const fromA = near ? 1 - share : Math.sin((1 - share) * arc) / sine;
-  const fromB = signOfDot(a, b, aAt, bAt) * (near ? share : Math.sin(share * arc) / sine);
+  slerpKnown(out, a, b, share, arc, overSine(arc), signOfDot(a, b, aAt, bAt), outAt, aAt, bAt);
+}
+
+/** The same where arcBetween, overSine and signOfDot of the pair are known: for many shares between one pair. */
+export function slerpKnown(
+  out: Slots,
+  a: Slots,
+  b: Slots,
+  share: number,
+  arc: number,
+  over: number,
+  sign: number,
+  outAt = 0,
+  aAt = 0,
+  bAt = 0,
+): void {
+  const fromA = over === 0 ? 1 - share : Math.sin((1 - share) * arc) * over;
+  const fromB = sign * (over === 0 ? share : Math.sin(share * arc) * over);
   out[outAt] = fromA * a[aAt]! + fromB * b[bAt]!;
   out[outAt + 1] = fromA * a[aAt + 1]! + fromB * b[bAt + 1]!;
   out[outAt + 2] = fromA * a[aAt + 2]! + fromB * b[bAt + 2]!;
   out[outAt + 3] = fromA * a[aAt + 3]! + fromB * b[bAt + 3]!;
+}
+
+/** One over the sine of an arc; 0 where that is too small to divide by, and shares are taken as they are. */
+export function overSine(arc: number): number {
+  const sine = Math.sin(arc);
+  return sine < 1e-9 ? 0 : 1 / sine;
 }
 
 /** -1 where b lies on the far half of the 3-sphere from a, else 1. */

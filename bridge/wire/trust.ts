@@ -8,5 +8,3 @@ export const TRUST_WORDS = [
   "lost",
   "fused on board",
 ] as const;
-
-export type TrustWord = (typeof TRUST_WORDS)[number];
