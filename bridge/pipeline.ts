@@ -127,6 +127,7 @@ export class Pipeline {
       lengthM: body.lengthMm / 1000,
       stations: sensors.map((sensor) => sensor.station),
       pointCount: POINT_COUNT,
+      interpolation: rig.midline.interpolation,
     });
     this.travel = new TravelAxis(rateHz);
     this.tailbeat = new TailbeatMeter({ lengthM: body.lengthMm / 1000 });

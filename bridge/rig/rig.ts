@@ -167,9 +167,11 @@ export const rigSchema = z.strictObject({
   midline: z
     .strictObject({
       interpolation: z
-        .enum(["slerp"])
+        .enum(["slerp", "smooth"])
         .default("slerp")
-        .describe("Between sensors along the body, on the sphere."),
+        .describe(
+          "Between sensors along the body, on the sphere. slerp: evenly from each to the next, straight beyond the ends. smooth: bend and twist go on through the sensors without a jump, and beyond the ends.",
+        ),
       meanBendDeg: z
         .number()
         .min(-180)
