@@ -108,6 +108,30 @@ export class HarmonicFit {
     return value;
   }
 
+  /** Derivative of one channel's fit to the phase, at the newest phase, per rad. */
+  slope(channel: number): number {
+    const at = channel * this.size;
+    let slope = 0;
+    for (let i = 1; i < this.size; i += 2) {
+      const turned =
+        this.coefficients[at + i + 1]! * this.#regressor[i]! -
+        this.coefficients[at + i]! * this.#regressor[i + 1]!;
+      slope += 0.5 * (i + 1) * turned;
+    }
+    return slope;
+  }
+
+  /** Mean square of that derivative over a whole turn of the phase. */
+  meanSquareSlope(channel: number): number {
+    const at = channel * this.size;
+    let sum = 0;
+    for (let i = 1; i < this.size; i += 2) {
+      const harmonic = 0.5 * (i + 1);
+      sum += 0.5 * harmonic ** 2 * (this.coefficients[at + i]! ** 2 + this.coefficients[at + i + 1]! ** 2);
+    }
+    return sum;
+  }
+
   /** Takes the regressor into its mean product, and leaves in #gain what a unit error does to the coefficients. */
   #solveGain(share: number): void {
     const { size } = this;
