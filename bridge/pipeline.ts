@@ -24,6 +24,7 @@ import { RAD_PER_DEG } from "./numeric/units.ts";
 import type { Rig } from "./rig/load.ts";
 import type { Sweep } from "./sweep.ts";
 import { TrialRing } from "./trial/ring.ts";
+import { Rhythm } from "./wave/rhythm.ts";
 import { type Beat, TailbeatMeter } from "./wave/tailbeat.ts";
 import type { Flag, Mark } from "./wire/flag.ts";
 
@@ -61,6 +62,7 @@ export class Pipeline {
   readonly flags: FlagBook;
   readonly health: Health;
   readonly fusion: ChainFusion;
+  readonly rhythm: Rhythm;
   readonly midline: Midline;
   readonly travel: TravelAxis;
   readonly tailbeat: TailbeatMeter;
@@ -123,6 +125,7 @@ export class Pipeline {
       gyroAxes: sensors.map((sensor) => mountingMatrix(sensor.mounting).flat()),
     });
     this.#fallback = rig.heading === "magnetic" ? new HeadingFallback(this.flags) : null;
+    this.rhythm = new Rhythm(sensors.map((sensor) => sensor.station));
     this.midline = new Midline({
       lengthM: body.lengthMm / 1000,
       stations: sensors.map((sensor) => sensor.station),
@@ -187,6 +190,7 @@ export class Pipeline {
       this.fusion.setHeading(this.#fallback.observe(sweep.timeS) ? "relative" : "magnetic");
     this.fusion.step(sweep);
     this.health.compareOnBoard(sweep.timeS, this.fusion.onBoard.tilt, this.fusion.onBoard.turn);
+    this.rhythm.step(sweep, this.fusion.orientations, this.fusion.trust);
     this.midline.step(this.fusion.orientations, this.fusion.trust);
     this.travel.step(sweep.stepS, this.midline.positions, this.tailbeat.periodS);
     const tail = this.travel.lateral(this.midline.positions, POINT_COUNT - 1);
