@@ -24,8 +24,12 @@ import { RAD_PER_DEG } from "./numeric/units.ts";
 import type { Rig } from "./rig/load.ts";
 import type { Sweep } from "./sweep.ts";
 import { TrialRing } from "./trial/ring.ts";
+import { GaitMeter } from "./wave/gait.ts";
+import type { GaitCycle } from "./wave/gait-cycle.ts";
 import { Rhythm } from "./wave/rhythm.ts";
-import { type Beat, TailbeatMeter } from "./wave/tailbeat.ts";
+import type { Bout } from "./wave/steady-bout.ts";
+import type { TailbeatMeter } from "./wave/tailbeat.ts";
+import { kinematicViscosityOf } from "./wave/water.ts";
 import type { Flag, Mark } from "./wire/flag.ts";
 
 /** Points of the midline, nose and tail tip included. */
@@ -40,7 +44,10 @@ export interface PipelineObserver {
   /** A sweep went through all stages. */
   sweep?(sweep: Sweep): void;
   flag?(flag: Flag, change: "raised" | "changed" | "ended"): void;
-  beat?(beat: Beat): void;
+  /** A tailbeat cycle is complete. */
+  beat?(cycle: GaitCycle): void;
+  /** A bout of steady swimming has ended. */
+  bout?(bout: Bout): void;
   mark?(mark: Mark): void;
   /** A camera frame's time, hub s. */
   sync?(timeS: number, edge: number): void;
@@ -65,6 +72,7 @@ export class Pipeline {
   readonly rhythm: Rhythm;
   readonly midline: Midline;
   readonly travel: TravelAxis;
+  readonly gait: GaitMeter;
   readonly tailbeat: TailbeatMeter;
   readonly ring: TrialRing | null;
   /** Sweeps that went through all stages. */
@@ -133,7 +141,23 @@ export class Pipeline {
       interpolation: rig.midline.interpolation,
     });
     this.travel = new TravelAxis(rateHz);
-    this.tailbeat = new TailbeatMeter({ lengthM: body.lengthMm / 1000 });
+    this.gait = new GaitMeter({
+      rateHz,
+      lengthM: body.lengthMm / 1000,
+      pointCount: POINT_COUNT,
+      stations: sensors.map((sensor) => sensor.station),
+      flowMPerS: rig.water.flowMPerS ?? Number.NaN,
+      viscosityM2PerS: viscosityOf(rig),
+      spreadCycles: rig.gait.spreadCycles,
+      steady: {
+        frequencyShare: rig.gait.steadyFrequencyShare,
+        amplitudeShare: rig.gait.steadyAmplitudeShare,
+        cycles: rig.gait.steadyCycles,
+      },
+      onCycle: (cycle) => observer.beat?.(cycle),
+      onBout: (bout) => observer.bout?.(bout),
+    });
+    this.tailbeat = this.gait.tailbeat;
     this.ring = ring
       ? new TrialRing({ sensorCount, pointCount: POINT_COUNT, rateHz, seconds: RING_SECONDS })
       : null;
@@ -164,8 +188,9 @@ export class Pipeline {
     return mark;
   }
 
-  /** The run is over: open flags end with it. */
+  /** The run is over: open flags and a steady bout end with it. */
   finish(): void {
+    this.gait.finish();
     this.flags.endAll(this.timeS);
   }
 
@@ -193,8 +218,7 @@ export class Pipeline {
     this.rhythm.step(sweep, this.fusion.orientations, this.fusion.trust);
     this.midline.step(this.fusion.orientations, this.fusion.trust);
     this.travel.step(sweep.stepS, this.midline.positions, this.tailbeat.periodS);
-    const tail = this.travel.lateral(this.midline.positions, POINT_COUNT - 1);
-    if (this.tailbeat.step(sweep.timeS, tail)) this.#observer.beat?.(this.tailbeat.lastBeat!);
+    this.gait.step(sweep.timeS, this.midline.positions, this.travel.direction, this.fusion.trust);
     this.ring?.push(sweep, this.fusion.orientations, this.fusion.trust, this.midline.positions);
     this.timeS = sweep.timeS;
     this.hostTimeMs = sweep.hostTimeMs;
@@ -214,4 +238,11 @@ export class Pipeline {
     this.health.corruption(bad - this.#badPackets, timeS);
     this.#badPackets = bad;
   }
+}
+
+/** Of the rig's water, m²/s; NaN where its temperature is not given. */
+function viscosityOf({ water }: Rig): number {
+  if (water.temperatureC === undefined) return Number.NaN;
+  const salinity = water.kind === "sea" ? water.salinityGPerKg : 0;
+  return kinematicViscosityOf(water.temperatureC, salinity);
 }

@@ -28,8 +28,8 @@ export class TravelAxis {
   /** Last entry at or before the window's start: it moves either way as the window does. */
   #start = 0;
   #firstStepS = 0;
-  #cos = 1;
-  #sin = 0;
+  /** East and north share of the axis's unit vector; east until the first sweep. Borrowed. */
+  readonly direction = new Float64Array([1, 0]);
 
   /** @param rateHz sweeps a second, nominal: how many the longest window may hold */
   constructor(rateHz: number) {
@@ -41,7 +41,7 @@ export class TravelAxis {
 
   /** rad from east, anticlockwise; 0 (east) until the first sweep. */
   get heading(): number {
-    return Math.atan2(this.#sin, this.#cos);
+    return Math.atan2(this.direction[1], this.direction[0]);
   }
 
   /**
@@ -95,8 +95,8 @@ export class TravelAxis {
     }
     const length = Math.hypot(sumX, sumY);
     if (!(length > STEEP_SHARE * chord * spanS)) return;
-    this.#cos = sumX / length;
-    this.#sin = sumY / length;
+    this.direction[0] = sumX / length;
+    this.direction[1] = sumY / length;
   }
 
   /**
@@ -108,15 +108,15 @@ export class TravelAxis {
     for (let i = 0; i < positions.length; i += 3) {
       const x = positions[i];
       const y = positions[i + 1];
-      out[i] = this.#cos * x + this.#sin * y;
-      out[i + 1] = this.#cos * y - this.#sin * x;
+      out[i] = this.direction[0] * x + this.direction[1] * y;
+      out[i + 1] = this.direction[0] * y - this.direction[1] * x;
       out[i + 2] = positions[i + 2];
     }
   }
 
   /** Excursion of one point to the left of the travel axis through the nose, m. */
   lateral(positions: Float64Array, point: number): number {
-    return this.#cos * positions[3 * point + 1] - this.#sin * positions[3 * point];
+    return this.direction[0] * positions[3 * point + 1] - this.direction[1] * positions[3 * point];
   }
 }
 

@@ -17,7 +17,9 @@ interface ExportCommandOptions {
 export function addExport(program: Command): void {
   program
     .command("export")
-    .description("Write a trial's midline, sensors, flags, tailbeats and marks as CSV with datapackage.json.")
+    .description(
+      "Write a trial's midline, sensors, flags, gait numbers and marks as CSV with datapackage.json.",
+    )
     .argument("<trial>", "by name under recordings/ or by path")
     .requiredOption("--to <folder>", "folder for the tables")
     .option("--overwrite", "write into a folder that holds other files too", false)
@@ -61,7 +63,8 @@ export function exportTrial(
         writer.sweep(timeS, midline.positions, fusion.orientations, fusion.trust, fusion.bridged);
       },
       flag: (flag) => writer.flag(flag),
-      beat: (beat) => writer.beat(beat),
+      beat: (cycle) => writer.beat(cycle),
+      bout: (bout) => writer.bout(bout),
       mark: (mark) => writer.mark(mark),
       sync: (timeS, edge) => writer.sync(timeS, edge),
     },

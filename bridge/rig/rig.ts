@@ -153,8 +153,19 @@ export const rigSchema = z.strictObject({
   water: z
     .strictObject({
       kind: z.enum(["fresh", "sea"]).default("fresh").describe("For density and viscosity."),
-      temperatureC: z.number().min(-2).max(45).optional().describe("Of the water."),
-      flowMPerS: z.number().min(0).max(30).optional().describe("Speed of the water past the body."),
+      salinityGPerKg: z
+        .number()
+        .min(0)
+        .max(42)
+        .default(35)
+        .describe("Dissolved salt; counts in sea water only. 35: the ocean's reference."),
+      temperatureC: z.number().min(-2).max(45).optional().describe("Of the water; for the Reynolds number."),
+      flowMPerS: z
+        .number()
+        .min(0)
+        .max(30)
+        .optional()
+        .describe("Speed of the water past the body; for Strouhal number, slip and Reynolds number."),
     })
     .prefault({})
     .describe("What the body swims in."),
@@ -183,6 +194,43 @@ export const rigSchema = z.strictObject({
     })
     .prefault({})
     .describe("How the midline is built."),
+  gait: z
+    .strictObject({
+      spreadCycles: z
+        .number()
+        .int()
+        .min(2)
+        .max(200)
+        .default(10)
+        .describe(
+          "Cycles that a number's spread is taken over: enough that the spread itself is known to a quarter, few enough to follow a change.",
+        ),
+      steadyFrequencyShare: z
+        .number()
+        .min(0.001)
+        .max(1)
+        .default(0.05)
+        .describe(
+          "Swimming is steady while each cycle's frequency stays within this share of the bout's mean (common practice, no source),",
+        ),
+      steadyAmplitudeShare: z
+        .number()
+        .min(0.001)
+        .max(1)
+        .default(0.1)
+        .describe(
+          "and its tail amplitude within this share, which varies more from beat to beat (common practice, no source),",
+        ),
+      steadyCycles: z
+        .number()
+        .int()
+        .min(2)
+        .max(100)
+        .default(3)
+        .describe("for at least so many cycles: two may agree by chance."),
+    })
+    .prefault({})
+    .describe("How tailbeats are summed up."),
   flags: thresholdsSchema
     .partial()
     .prefault({})

@@ -20,6 +20,7 @@ const UNIT_OF_ENDING: readonly (readonly [string, string])[] = [
   ["MPerS2", "m/s²"],
   ["DegPerS", "°/s"],
   ["MPerS", "m/s"],
+  ["GPerKg", "g/kg"],
   ["MilliG", "mg"],
   ["Share", "share of 1"],
   ["Deg", "°"],

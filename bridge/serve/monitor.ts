@@ -23,6 +23,7 @@ import type {
 import { FrameWriter, Strip } from "./display.ts";
 import { every } from "./every.ts";
 import { StreamServer } from "./server.ts";
+import { tailbeatView } from "./tailbeat-view.ts";
 
 const FRAME_INTERVAL_MS = 1000 / 60;
 const STATUS_INTERVAL_MS = 500;
@@ -230,7 +231,7 @@ export class Monitor implements ByteSink {
 
   #status(): StatusMessage {
     const { recorder, source } = this.#options;
-    const { health, tailbeat, drift, counters, timeS, hostTimeMs, sweepCount, fusion } = this.#pipeline;
+    const { health, gait, drift, counters, timeS, hostTimeMs, sweepCount, fusion } = this.#pipeline;
     const { good, badChecksum, discardedBytes } = counters;
     return {
       type: "status",
@@ -242,11 +243,7 @@ export class Monitor implements ByteSink {
       behindMs: source.kind === "trial" || sweepCount === 0 ? null : Math.max(0, Date.now() - hostTimeMs),
       driftPpm: drift.ppm,
       counters: { good, badChecksum, discardedBytes },
-      tailbeat: {
-        frequencyHz: tailbeat.frequencyHz,
-        tailAmplitudeM: tailbeat.tailAmplitudeM,
-        steadyBeats: tailbeat.steadyBeats,
-      },
+      tailbeat: tailbeatView(gait),
       heading: fusion.heading,
     };
   }

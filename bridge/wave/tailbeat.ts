@@ -8,14 +8,13 @@
  *
  * Times are hub times and may be unevenly spaced: lost sweeps cost accuracy, not beats.
  */
-import { SteadyBout } from "./steady-bout.ts";
 
 /** Threshold either side of the mean line, as a share of half the last beat's peak-to-peak amplitude: noise near the line makes no second crossing, and a tail that beats at a quarter of its last amplitude still counts. */
 const THRESHOLD_SHARE = 0.2;
 /** Least threshold, as a share of body length: a degree of orientation noise at the tail moves its tip by well under this. */
 const LEAST_THRESHOLD_SHARE = 0.005;
 /** The slowest beat waited for, s. Large animals cruise at a few tenths of a hertz (common practice, no source). */
-const SLOWEST_BEAT_S = 5;
+export const SLOWEST_BEAT_S = 5;
 /** No beat for this many periods of the last one: the body has stopped. Two, so that one beat may be missed. */
 const PERIODS_TO_STOP = 2;
 /** Time constant of the mean line while the body does not beat, s: shorter than a pose is held, longer than a slow half beat. */
@@ -29,8 +28,6 @@ export interface Beat {
   /** Hub time, s. */
   endS: number;
   frequencyHz: number;
-  /** Peak to peak, m. */
-  tailAmplitudeM: number;
 }
 
 export interface TailbeatOptions {
@@ -40,7 +37,9 @@ export interface TailbeatOptions {
 
 export class TailbeatMeter {
   readonly #leastThresholdM: number;
-  readonly #lastBeat: Beat = { startS: 0, endS: 0, frequencyHz: 0, tailAmplitudeM: 0 };
+  readonly #lastBeat: Beat = { startS: 0, endS: 0, frequencyHz: 0 };
+  /** Of the last beat, peak to peak, m. */
+  #amplitudeM = 0;
   #anyBeat = false;
 
   #started = false;
@@ -64,7 +63,6 @@ export class TailbeatMeter {
   #lowestM = Number.POSITIVE_INFINITY;
 
   #beating = false;
-  readonly #bout = new SteadyBout();
 
   constructor({ lengthM }: TailbeatOptions) {
     this.#leastThresholdM = LEAST_THRESHOLD_SHARE * lengthM;
@@ -78,16 +76,6 @@ export class TailbeatMeter {
   /** Of the last beat; null while the body does not beat. */
   get frequencyHz(): number | null {
     return this.#beating ? this.#lastBeat.frequencyHz : null;
-  }
-
-  /** Peak to peak of the last beat, m; null while the body does not beat. */
-  get tailAmplitudeM(): number | null {
-    return this.#beating ? this.#lastBeat.tailAmplitudeM : null;
-  }
-
-  /** Beats in a row, the last one included, that agree with their mean; 0 while the body does not beat. */
-  get steadyBeats(): number {
-    return this.#bout.beats;
   }
 
   /** Where in the present beat: 0 at the upward crossing, up to 1 at the next as expected; NaN while not beating. */
@@ -163,7 +151,7 @@ export class TailbeatMeter {
 
   #threshold(): number {
     if (!this.#beating) return this.#leastThresholdM;
-    return Math.max(this.#leastThresholdM, 0.5 * THRESHOLD_SHARE * this.#lastBeat.tailAmplitudeM);
+    return Math.max(this.#leastThresholdM, 0.5 * THRESHOLD_SHARE * this.#amplitudeM);
   }
 
   /** The tail has crossed the line upward for good: ends the beat that was under way, if any, and begins the next. */
@@ -186,20 +174,18 @@ export class TailbeatMeter {
     beat.startS = startS;
     beat.endS = endS;
     beat.frequencyHz = 1 / (endS - startS);
-    beat.tailAmplitudeM = this.#highestM - this.#lowestM;
+    this.#amplitudeM = this.#highestM - this.#lowestM;
     this.#anyBeat = true;
     this.#beating = true;
     this.#meanM += MEAN_LINE_WEIGHT * (areaMS / (endS - startS) - this.#meanM);
-    this.#bout.add(beat.frequencyHz, beat.tailAmplitudeM);
   }
 
   /** Forgets the beat under way once the next crossing is overdue, so that a pause is never counted as one long beat. */
   #stopIfOverdue(): void {
-    const limitS = this.#beating ? PERIODS_TO_STOP / this.#lastBeat.frequencyHz : SLOWEST_BEAT_S;
+    const limitS = Math.min(SLOWEST_BEAT_S, PERIODS_TO_STOP * (this.periodS ?? SLOWEST_BEAT_S));
     if (Number.isNaN(this.#beatStartS) || this.#timeS - this.#beatStartS <= limitS) return;
     this.#beating = false;
     this.#side = 0;
     this.#beatStartS = Number.NaN;
-    this.#bout.end();
   }
 }

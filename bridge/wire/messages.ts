@@ -3,6 +3,7 @@
  * version: a dashboard from another version is refused at the handshake.
  */
 import type { Flag, Mark } from "./flag.ts";
+import type { DoubtWord, GaitNumber } from "./gait.ts";
 
 export const SUBPROTOCOL = "bendwatch.1";
 /** Longest text message the bridge accepts, bytes. */
@@ -74,13 +75,22 @@ export interface StatusMessage {
   readonly heading: HeadingView;
 }
 
+/** Of the newest cycle; all null while the body does not beat. */
 export interface TailbeatView {
-  /** Hz; null while the body does not beat. */
-  readonly frequencyHz: number | null;
-  /** Peak to peak, m, of the tail tip across the travel axis, against the nose. */
-  readonly tailAmplitudeM: number | null;
-  /** Beats in a row whose frequency and amplitude agree within the spread given in config. */
-  readonly steadyBeats: number;
+  readonly numbers: Readonly<Record<GaitNumber, GaitNumberView>>;
+  /** Cycles in a row that agree by the rig's criterion, the newest included; 0 while the body does not beat. */
+  readonly steadyCycles: number;
+  /** Whether they are as many as the rig asks for. */
+  readonly steady: boolean;
+}
+
+export interface GaitNumberView {
+  /** SI, angles in rad; null when not known. */
+  readonly value: number | null;
+  /** Standard deviation over the last cycles, in the same unit; null when not known. */
+  readonly spread: number | null;
+  /** Why it is not to be trusted, or not known; none when it is good. */
+  readonly doubts: readonly DoubtWord[];
 }
 
 /** All open flags and the most recent ended ones, newest first. Sent whenever they change, at most ten times a second. */

@@ -29,7 +29,7 @@ export class PastPositions {
 
   draw(view: ViewState, ruler: Ruler, middle: number, pixelsPerM: number, palette: Palette): void {
     const { past } = view;
-    const frequency = view.status?.tailbeat.frequencyHz ?? null;
+    const frequency = view.status?.tailbeat.numbers.frequencyHz.value ?? null;
     const spanS = frequency === null ? SPAN_AT_REST_S : Math.min(LONGEST_SPAN_S, 1 / frequency);
     const spacingS = spanS / LINES;
     const step = Math.floor(past.newestS / spacingS);

@@ -1,16 +1,10 @@
-/** The tailbeat in numbers: frequency large, how long it has been steady, amplitude, and Strouhal number in a flow. */
+/** The tailbeat in numbers: frequency large, how long it has been steady, and every other gait number in a row. */
 import type { FlagKind } from "../../bridge/wire/flag.ts";
 import type { TailbeatView } from "../../bridge/wire/messages.ts";
+import { setGlyph } from "../lanes/glyphs.ts";
 import { isLive, type ViewState } from "../stream/view-state.ts";
-import { count, flagTitle, millimetres, percent, setText } from "./text.ts";
-
-interface Row {
-  readonly name: string;
-  readonly value: string;
-  readonly beside: string;
-  /** What is meant exactly; shown on pointing at the name. */
-  readonly meaning: string;
-}
+import { FREQUENCY_MEANING, type GaitRow, gaitRows } from "./gait-rows.ts";
+import { count, flagTitle, setText } from "./text.ts";
 
 export class TailbeatPanel {
   readonly #frequency: HTMLElement;
@@ -24,8 +18,9 @@ export class TailbeatPanel {
       <div class="beat"><p><span class="large"></span><span class="unit soft">Hz</span></p>
       <p class="steady"><strong></strong><span class="soft"></span></p></div>
       <dl class="numbers"></dl>
-      <p class="against soft">Amplitude against the nose</p>`;
+      <p class="against soft">Amplitude against the nose; ± from beat to beat</p>`;
     this.#frequency = host.querySelector(".large")!;
+    this.#frequency.title = FREQUENCY_MEANING;
     this.#unit = host.querySelector(".unit")!;
     this.#steady = host.querySelector(".steady strong")!;
     this.#steadyFor = host.querySelector(".steady span")!;
@@ -34,67 +29,43 @@ export class TailbeatPanel {
 
   update(view: ViewState): void {
     const beat = view.runFrameCount > 0 ? view.status?.tailbeat : undefined;
-    const frequency = beat?.frequencyHz ?? null;
+    const frequency = beat?.numbers.frequencyHz.value ?? null;
     setText(this.#frequency, frequency === null ? "–" : frequency.toFixed(2));
     this.#unit.hidden = frequency === null;
     const [word, why] = beat === undefined ? ["", ""] : steadiness(view, beat);
     setText(this.#steady, word);
     setText(this.#steadyFor, why);
-    this.#show(rowsFor(view, frequency, beat?.tailAmplitudeM ?? null));
+    this.#show(gaitRows(beat?.numbers, view.welcome?.lengthM ?? Number.NaN));
   }
 
-  /** Three elements a row: what, how much, and beside it. */
-  #show(rows: readonly Row[]): void {
-    const cells = this.#rows.children;
-    while (cells.length > 3 * rows.length) this.#rows.lastElementChild!.remove();
-    while (cells.length < 3 * rows.length) {
-      this.#rows.append(document.createElement(cells.length % 3 === 0 ? "dt" : "dd"));
+  /** Three elements a row: what, how much, and beside it its scatter, or what is against it. */
+  #show(rows: readonly GaitRow[]): void {
+    if (this.#rows.childElementCount === 0) {
+      const cells = "<dt></dt><dd></dd><dd><span class='glyph'></span><span class='words'></span></dd>";
+      this.#rows.innerHTML = cells.repeat(rows.length);
     }
-    rows.forEach(({ name, value, beside, meaning }, i) => {
-      setText(cells[3 * i]!, name);
-      (cells[3 * i] as HTMLElement).title = meaning;
-      setText(cells[3 * i + 1]!, value);
-      setText(cells[3 * i + 2]!, beside);
+    const cells = this.#rows.children;
+    rows.forEach(({ name, value, beside, doubt, meaning }, i) => {
+      const [what, number, more] = [cells[3 * i], cells[3 * i + 1], cells[3 * i + 2]] as HTMLElement[];
+      setText(what, name);
+      what.title = meaning;
+      setText(number, value);
+      number.classList.toggle("doubted", doubt !== "" && value !== "–");
+      setGlyph(more.querySelector(".glyph")!, doubt === "" || value === "–" ? null : "caution");
+      setText(more.querySelector(".words")!, doubt === "" ? beside : doubt);
     });
   }
 }
 
-function rowsFor(view: ViewState, frequencyHz: number | null, amplitudeM: number | null): Row[] {
-  const lengthM = view.welcome?.lengthM ?? Number.NaN;
-  const flow = view.welcome?.flowMPerS ?? null;
-  const rows = [
-    {
-      name: "Tail amplitude",
-      value: amplitudeM === null ? "–" : millimetres(amplitudeM),
-      beside: amplitudeM === null ? "" : `${percent(amplitudeM / lengthM, 1)} L`,
-      meaning: "peak to peak, against the nose; share of the body length L",
-    },
-  ];
-  if (flow === null || flow <= 0) return rows;
-  const known = frequencyHz !== null && amplitudeM !== null;
-  rows.push({
-    name: "Strouhal number",
-    value: known ? ((frequencyHz * amplitudeM) / flow).toFixed(2) : "–",
-    beside: `at ${flow.toFixed(2)} m/s`,
-    meaning: "frequency times tail amplitude over flow speed",
-  });
-  return rows;
-}
-
-/** Beats in a row that agree before the swimming is called steady. */
-const STEADY_BEATS = 3;
-
 /** In a word, what the numbers are worth, and in a few more, why. */
 function steadiness(view: ViewState, beat: TailbeatView): readonly [string, string] {
-  const beating = beat.frequencyHz !== null;
+  const { steadyCycles, steady, numbers } = beat;
+  const beating = numbers.frequencyHz.value !== null;
   if (!isLive(view)) return [beating ? "last seen" : "", ""];
   if (!beating) return ["no beat", ""];
   const doubt = tailDoubt(view);
   if (doubt !== null) return ["doubtful", doubt];
-  const { steadyBeats } = beat;
-  return steadyBeats >= STEADY_BEATS
-    ? ["steady", `for ${count(steadyBeats, "beat", "beats")}`]
-    : ["changing", ""];
+  return steady ? ["steady", `for ${count(steadyCycles, "beat", "beats")}`] : ["changing", ""];
 }
 
 /** Kinds of trouble that bend the tail itself. */

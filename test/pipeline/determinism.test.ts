@@ -44,7 +44,9 @@ beforeAll(async () => {
 
 test("the export has every table, with rows from the faults too", () => {
   expect(Object.keys(exported)).toEqual([
+    "bouts.csv",
     "datapackage.json",
+    "envelope.csv",
     "flags.csv",
     "gait.csv",
     "marks.csv",

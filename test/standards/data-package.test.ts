@@ -67,9 +67,18 @@ test("Data Resource: a unique name, exactly one location, a path below the descr
 });
 
 describe("Tabular Data Resource", () => {
-  test("has the profile and a schema; the six tables are there", () => {
+  test("has the profile and a schema; all tables are there", () => {
     const { tables } = readPackage();
-    expect(tables.map(({ name }) => name)).toEqual(["midline", "sensors", "flags", "gait", "marks", "sync"]);
+    expect(tables.map(({ name }) => name)).toEqual([
+      "midline",
+      "sensors",
+      "flags",
+      "gait",
+      "envelope",
+      "bouts",
+      "marks",
+      "sync",
+    ]);
     for (const { schema } of tables) expect(schema!.fields.length).toBeGreaterThan(0);
   });
 

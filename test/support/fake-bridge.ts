@@ -12,7 +12,7 @@ import { DashboardFiles } from "../../bridge/serve/files.ts";
 import { StreamServer } from "../../bridge/serve/server.ts";
 import { createDisplayFrame, encodeFrame, frameBytes } from "../../bridge/wire/frame.ts";
 import type { BridgeMessage, DashboardMessage } from "../../bridge/wire/messages.ts";
-import { healthyScene, type Scene, tailbeatOf, type Wave, writeMidline } from "./scene.ts";
+import { FLOW_M_PER_S, healthyScene, type Scene, tailbeatOf, type Wave, writeMidline } from "./scene.ts";
 
 const DASHBOARD = join(packageRoot, "dist", "dashboard");
 const POINTS = 41;
@@ -139,7 +139,7 @@ export class FakeBridge {
       pointCount: POINTS,
       source,
       heading,
-      flowMPerS: 0.35,
+      flowMPerS: FLOW_M_PER_S,
       runId: `invented-${this.#run}`,
     } as const;
     return [welcome, this.#status(), this.#flags(), this.#marks(), this.#strip()];

@@ -2,13 +2,18 @@
 import { adviceFor } from "../../bridge/health/advice.ts";
 import { CONDITION, TRUST } from "../../bridge/sweep.ts";
 import type { Flag, FlagKind, Mark, Severity } from "../../bridge/wire/flag.ts";
+import { type DoubtWord, GAIT_NUMBERS, type GaitNumber } from "../../bridge/wire/gait.ts";
 import type {
+  GaitNumberView,
   LinkView,
   SensorView,
   StatusMessage,
   TailbeatView,
   WelcomeMessage,
 } from "../../bridge/wire/messages.ts";
+
+/** Of every scene. */
+export const FLOW_M_PER_S = 0.35;
 
 /** A wave that travels from nose to tail: amplitude grows with the square of the station. */
 export interface Wave {
@@ -103,13 +108,41 @@ export function writeMidline(wave: Wave, lengthM: number, timeS: number, out: Fl
   }
 }
 
-export function tailbeatOf({ frequencyHz, tailShare }: Wave, lengthM: number): TailbeatView {
+/** The numbers of a wave that is just so, as the bridge would give them in a flow of FLOW_M_PER_S. */
+export function tailbeatOf({ frequencyHz, waves, tailShare }: Wave, lengthM: number): TailbeatView {
   const beats = frequencyHz > 0;
-  return {
-    frequencyHz: beats ? frequencyHz : null,
-    tailAmplitudeM: beats ? 2 * tailShare * lengthM : null,
-    steadyBeats: beats ? 12 : 0,
+  const waveSpeed = (frequencyHz * lengthM) / waves;
+  const values: Record<GaitNumber, number> = {
+    frequencyHz,
+    tailAmplitudeM: 2 * tailShare * lengthM,
+    headAmplitudeM: 0.0002,
+    phaseLag: 2 * Math.PI * waves,
+    wavelengthM: lengthM / waves,
+    waveSpeedMPerS: waveSpeed,
+    travellingIndex: 0.74,
+    meanBend: -0.037,
+    strouhal: (2 * tailShare * lengthM * frequencyHz) / FLOW_M_PER_S,
+    slip: FLOW_M_PER_S / waveSpeed,
+    reynolds: Number.NaN,
   };
+  const doubts: Partial<Record<GaitNumber, DoubtWord[]>> = {
+    headAmplitudeM: ["below noise"],
+    phaseLag: ["below noise"],
+    reynolds: ["no temperature"],
+  };
+  const views = GAIT_NUMBERS.map((name): [GaitNumber, GaitNumberView] => {
+    const known = beats && Number.isFinite(values[name]);
+    return [
+      name,
+      {
+        value: known ? values[name] : null,
+        spread: known ? Math.abs(0.012 * values[name]) : null,
+        doubts: beats ? (doubts[name] ?? []) : [],
+      },
+    ];
+  });
+  const numbers = Object.fromEntries(views) as TailbeatView["numbers"];
+  return { numbers, steadyCycles: beats ? 12 : 0, steady: beats };
 }
 
 /** A status of the healthy scene whose link is in some state. */

@@ -24,7 +24,7 @@ export function describePackage(facts: PackageFacts, files: readonly WrittenFile
     name: packageName(facts.trialName),
     title: `${facts.trialName}, ${facts.rigName}`,
     description:
-      "Midline, orientations, tailbeat and flags of one trial. Times are hub time in seconds since the first sweep.",
+      "Midline, orientations, gait numbers and flags of one trial. Times are hub time in seconds since the first sweep.",
     software: `${SOFTWARE_PREFIX}${facts.softwareVersion}`,
     resources: [
       ...files.map(describeTable),
@@ -32,7 +32,7 @@ export function describePackage(facts: PackageFacts, files: readonly WrittenFile
         profile: "data-resource",
         name: "summary",
         path: SUMMARY_FILE,
-        description: "The rig, durations, rates, counts, losses and settings of the trial.",
+        description: "The rig, durations, rates, counts, losses, steady swimming and settings of the trial.",
         format: "json",
         mediatype: "application/json",
         encoding: "utf-8",

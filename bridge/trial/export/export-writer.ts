@@ -12,8 +12,9 @@ import type { Rig } from "../../rig/load.ts";
 import type { Flag, Mark } from "../../wire/flag.ts";
 import { TRUST_WORDS } from "../../wire/trust.ts";
 import { DATA_PACKAGE_FILE, describePackage, SOFTWARE_PREFIX, SUMMARY_FILE } from "./data-package.ts";
+import { type ExportedBout, type ExportedCycle, GAIT_TABLES, GaitTables } from "./gait-tables.ts";
 import { attempt, TableFile } from "./table-file.ts";
-import { DECIMALS, FLAGS, GAIT, MARKS, MIDLINE, SENSORS, STATION_COUNT, SYNC, TABLES } from "./tables.ts";
+import { DECIMALS, FLAGS, MARKS, MIDLINE, SENSORS, STATION_COUNT, SYNC, TABLES } from "./tables.ts";
 
 export interface ExportOptions {
   readonly folder: string;
@@ -22,13 +23,6 @@ export interface ExportOptions {
   readonly softwareVersion: string;
   /** Write into a folder that holds other things; only files of the export's own names are replaced. */
   readonly overwrite?: boolean;
-}
-
-export interface ExportedBeat {
-  readonly startS: number;
-  readonly endS: number;
-  readonly frequencyHz: number;
-  readonly tailAmplitudeM: number;
 }
 
 /** What only the one who ran the pipeline knows. */
@@ -46,7 +40,7 @@ export class ExportWriter {
   readonly #options: ExportOptions;
   readonly #midline: TableFile;
   readonly #sensors: TableFile;
-  readonly #gait: TableFile;
+  readonly #gait: GaitTables;
   readonly #marks: TableFile;
   #sync: TableFile | null = null;
   /** Newest state of each flag, by id. */
@@ -66,7 +60,7 @@ export class ExportWriter {
     prepareFolder(folder, options.overwrite ?? false);
     this.#midline = new TableFile(folder, MIDLINE);
     this.#sensors = new TableFile(folder, SENSORS);
-    this.#gait = new TableFile(folder, GAIT);
+    this.#gait = new GaitTables(folder, options.rig.body.lengthMm / 1000);
     this.#marks = new TableFile(folder, MARKS);
   }
 
@@ -120,14 +114,14 @@ export class ExportWriter {
   }
 
   /** A tailbeat cycle is complete. */
-  beat(beat: ExportedBeat): void {
-    const { cells } = this.#gait;
-    cells.number(++this.#counts.tailbeats, 0);
-    cells.number(beat.startS, DECIMALS.time);
-    cells.number(beat.endS, DECIMALS.time);
-    cells.number(beat.frequencyHz, DECIMALS.frequency);
-    cells.number(beat.tailAmplitudeM * 1000, DECIMALS.mm);
-    this.#gait.endRow();
+  beat(cycle: ExportedCycle): void {
+    this.#counts.tailbeats++;
+    this.#gait.cycle(cycle);
+  }
+
+  /** A steady bout has ended. */
+  bout(bout: ExportedBout): void {
+    this.#gait.bout(bout);
   }
 
   mark(mark: Mark): void {
@@ -156,7 +150,7 @@ export class ExportWriter {
       this.#midline,
       this.#sensors,
       flags,
-      this.#gait,
+      ...this.#gait.files,
       this.#marks,
       ...(this.#sync ? [this.#sync] : []),
     ];
@@ -201,6 +195,7 @@ export class ExportWriter {
       counts: { ...this.#counts, flags: this.#flags.size },
       lostSweeps: summary.lostSweeps,
       lostShare: sent === 0 ? 0 : summary.lostSweeps / sent,
+      gait: this.#gait.summary(),
       flagsByKind,
       packets: summary.counters,
       settings: summary.settings,
@@ -220,7 +215,11 @@ function prepareFolder(folder: string, overwrite: boolean): void {
       expected: "an empty or new folder, an earlier export, or leave to overwrite",
     });
   }
-  const own = [DATA_PACKAGE_FILE, SUMMARY_FILE, ...TABLES.map((table) => `${table.name}.csv`)];
+  const own = [
+    DATA_PACKAGE_FILE,
+    SUMMARY_FILE,
+    ...[...TABLES, ...GAIT_TABLES].map((table) => `${table.name}.csv`),
+  ];
   for (const name of own) attempt(join(folder, name), () => rmSync(join(folder, name), { force: true }));
 }
 

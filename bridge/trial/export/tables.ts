@@ -6,7 +6,6 @@
  *     mm           3   1 µm, far below what the method resolves
  *     quaternion   7   rounding turns an orientation by at most 0.00002 degrees
  *     degrees      3   finer than any sensor's noise
- *     Hz           4   a tailbeat of 10 s timed to 1 ms differs in the fourth place
  */
 import { TRUST_WORDS } from "../../wire/trust.ts";
 
@@ -21,25 +20,29 @@ export interface Column {
   readonly description: string;
 }
 
-export const DECIMALS = { time: 6, mm: 3, quaternion: 7, degrees: 3, frequency: 4 } as const;
+export const DECIMALS = { time: 6, mm: 3, quaternion: 7, degrees: 3 } as const;
 
 /** Stations of the midline table, evenly spaced from nose to tail tip. */
 export const STATION_COUNT = 41;
 
-const seconds = (name: string, description: string): Column => ({
+export const seconds = (name: string, description: string): Column => ({
   name,
   type: "number",
   unit: "s",
   description,
 });
-const number = (name: string, unit: string, description: string): Column => ({
+export const number = (name: string, unit: string, description: string): Column => ({
   name,
   type: "number",
   unit,
   description,
 });
-const text = (name: string, description: string): Column => ({ name, type: "string", description });
-const integer = (name: string, description: string): Column => ({ name, type: "integer", description });
+export const text = (name: string, description: string): Column => ({ name, type: "string", description });
+export const integer = (name: string, description: string): Column => ({
+  name,
+  type: "integer",
+  description,
+});
 
 const hubTime = seconds("time_s", "Hub time since the first sweep.");
 
@@ -110,22 +113,6 @@ export const FLAGS: Table = {
   ],
 };
 
-export const GAIT: Table = {
-  name: "gait",
-  description: "One row a tailbeat cycle.",
-  columns: [
-    integer("cycle", "Counts cycles from 1."),
-    seconds("start_s", "Hub time of the cycle's start."),
-    seconds("end_s", "Hub time of the cycle's end."),
-    number("frequency_hz", "Hz", "Tailbeat frequency."),
-    number(
-      "tail_amplitude_mm",
-      "mm",
-      "Peak to peak, of the tail tip across the travel axis, against the nose.",
-    ),
-  ],
-};
-
 export const MARKS: Table = {
   name: "marks",
   description: "Notes made during the trial.",
@@ -142,4 +129,5 @@ export const SYNC: Table = {
   columns: [hubTime, integer("edge", "The hub's count of pulses.")],
 };
 
-export const TABLES: readonly Table[] = [MIDLINE, SENSORS, FLAGS, GAIT, MARKS, SYNC];
+/** All but those of the gait (gait-tables.ts). */
+export const TABLES: readonly Table[] = [MIDLINE, SENSORS, FLAGS, MARKS, SYNC];

@@ -64,17 +64,63 @@ describe("tables", () => {
     ]);
   });
 
-  test("gait, marks and sync hold what was told", () => {
-    const folder = exported();
-    expect(table(folder, "gait")).toEqual([
+  test("gait has a row a cycle, in the units of the column names", () => {
+    const [good, still] = table(exported(), "gait");
+    expect(good).toEqual({
+      cycle: "1",
+      start_s: "0.020000",
+      end_s: "0.145000",
+      frequency_hz: "8.0000",
+      tail_amplitude_mm: "45.123",
+      head_amplitude_mm: "12.800",
+      phase_lag_deg: "180.000",
+      wavelength_mm: "600.000",
+      wave_speed_m_per_s: "4.8000",
+      travelling_index: "0.7500",
+      mean_bend_deg: "-2.000",
+      strouhal_number: "0.3000",
+      slip_ratio: "0.2500",
+      reynolds_number: "812346",
+      tail_amplitude_percent_of_length: "7.051",
+      head_amplitude_percent_of_length: "2.000",
+      frequency_cv: "0.01000",
+      tail_amplitude_cv: "",
+      wave_speed_cv: "",
+      quality: "",
+    });
+    expect(still).toMatchObject({
+      cycle: "2",
+      phase_lag_deg: "",
+      strouhal_number: "",
+      wavelength_mm: "600.000",
+    });
+    expect(still!.quality).toBe(
+      "bridged: phase_lag_deg; below noise: head_amplitude_mm phase_lag_deg; no flow speed: strouhal_number",
+    );
+  });
+
+  test("envelope has half the amplitude at every station", () => {
+    const rows = table(exported(), "envelope");
+    expect(rows.map(({ cycle }) => cycle)).toEqual(["1", "2"]);
+    expect(rows[0]).toMatchObject({ half_amplitude_mm_000: "0.000", half_amplitude_mm_040: "20.000" });
+  });
+
+  test("bouts has means and scatter; nothing where no number is to be trusted", () => {
+    expect(table(exported(), "bouts")).toMatchObject([
       {
-        cycle: "1",
+        bout: "1",
         start_s: "0.020000",
-        end_s: "0.145000",
-        frequency_hz: "8.0000",
-        tail_amplitude_mm: "45.123",
+        end_s: "0.270000",
+        cycles: "2",
+        frequency_mean_hz: "8.0000",
+        frequency_sd_hz: "0.1414",
+        tail_amplitude_mean_mm: "",
       },
     ]);
+  });
+
+  test("marks and sync hold what was told", () => {
+    const folder = exported();
     expect(table(folder, "marks")).toEqual([{ time_s: "0.100000", text: 'said "go"', from: "operator" }]);
     expect(table(folder, "sync")).toEqual([{ time_s: "0.030000", edge: "17" }]);
   });
@@ -107,7 +153,19 @@ test("the summary tells durations, rates, counts, losses and flags by kind", () 
     softwareVersion: "0.1.0",
     durationS: 0.19,
     nominalRateHz: 100,
-    counts: { sweeps: 20, tailbeats: 1, marks: 1, syncEdges: 1, flags: 2 },
+    gait: {
+      cycles: 2,
+      steady: {
+        bouts: 1,
+        cycles: 2,
+        durationS: 0.25,
+        numbers: {
+          frequency_hz: { mean: 8, cycles: 2 },
+          tail_amplitude_mm: { mean: null, standardDeviation: null, cycles: 0 },
+        },
+      },
+    },
+    counts: { sweeps: 20, tailbeats: 2, marks: 1, syncEdges: 1, flags: 2 },
     lostSweeps: 5,
     lostShare: 0.2,
     flagsByKind: { "low headroom": 1, "link silent": 1 },
@@ -148,7 +206,7 @@ describe("the description", () => {
       expect(schema.fields.map(({ name }: { name: string }) => name)).toEqual(header);
       for (const field of schema.fields) {
         expect(field.description).not.toBe("");
-        if (field.type === "number") expect(["s", "mm", "deg", "Hz", "1"]).toContain(field.unit);
+        if (field.type === "number") expect(["s", "mm", "deg", "Hz", "m/s", "%", "1"]).toContain(field.unit);
       }
     }
   });

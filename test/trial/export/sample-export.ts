@@ -1,11 +1,14 @@
 /** An export of an invented trial, for the tests of its tables and of its description. */
 import { join } from "node:path";
 import { emptyCounters } from "../../../bridge/link/packets.ts";
+import { RunningSpread } from "../../../bridge/numeric/running-spread.ts";
 import { loadRig } from "../../../bridge/rig/load.ts";
 import { TRUST } from "../../../bridge/sweep.ts";
 import { type ExportSummary, ExportWriter } from "../../../bridge/trial/export/export-writer.ts";
+import type { ExportedBout, ExportedCycle } from "../../../bridge/trial/export/gait-tables.ts";
 import { STATION_COUNT } from "../../../bridge/trial/export/tables.ts";
 import type { Flag } from "../../../bridge/wire/flag.ts";
+import { DOUBT, GAIT_NUMBERS, type GaitNumbers, gaitNumbers } from "../../../bridge/wire/gait.ts";
 import { temporaryFolder } from "../fixtures.ts";
 
 export const rig = loadRig("ribbon-foil");
@@ -29,6 +32,44 @@ const flag: Flag = {
   detail: "7 % left on y",
   advice: "Use a wider range.",
 };
+
+/** A good cycle, and one whose nose does not swing, without a known phase lag, in a still tank. */
+function cycles(): [ExportedCycle, ExportedCycle] {
+  const numbers: GaitNumbers = {
+    frequencyHz: 8,
+    tailAmplitudeM: 0.0451234,
+    headAmplitudeM: 0.0128,
+    phaseLag: Math.PI,
+    wavelengthM: 0.6,
+    waveSpeedMPerS: 4.8,
+    travellingIndex: 0.75,
+    meanBend: -Math.PI / 90,
+    strouhal: 0.3,
+    slip: 0.25,
+    reynolds: 812_345.6,
+  };
+  const envelopeM = Float64Array.from({ length: STATION_COUNT }, (_, i) => 0.0005 * i);
+  const good = { startS: 0.02, endS: 0.145, envelopeM, numbers, doubts: gaitNumbers(0) };
+  const still = { ...numbers, phaseLag: Number.NaN, strouhal: Number.NaN };
+  const doubts = {
+    ...gaitNumbers(0),
+    headAmplitudeM: DOUBT.BELOW_NOISE,
+    phaseLag: DOUBT.BELOW_NOISE | DOUBT.BRIDGED,
+    strouhal: DOUBT.NO_FLOW_SPEED,
+  };
+  return [
+    { ...good, spread: { ...gaitNumbers(Number.NaN), frequencyHz: 0.08 } },
+    { ...good, startS: 0.145, endS: 0.27, numbers: still, doubts, spread: gaitNumbers(Number.NaN) },
+  ];
+}
+
+/** Of two cycles at 7.9 and 8.1 beats a second; nothing else to be trusted. */
+function bout(): ExportedBout {
+  const numbers = Object.fromEntries(GAIT_NUMBERS.map((name) => [name, new RunningSpread()]));
+  numbers.frequencyHz!.add(7.9);
+  numbers.frequencyHz!.add(8.1);
+  return { startS: 0.02, endS: 0.27, cycles: 2, numbers: numbers as ExportedBout["numbers"] };
+}
 
 export function createWriter(folder: string, overwrite = false): ExportWriter {
   return new ExportWriter({ folder, trialName: "Trial 7", rig, softwareVersion: "0.1.0", overwrite });
@@ -62,7 +103,8 @@ export function writeAll(folder: string, overwrite = false): void {
   writer.flag(flag);
   writer.flag({ ...flag, id: 1, kind: "link silent", sensor: -1, detail: "=gone, 0.4 s" });
   writer.flag({ ...flag, endS: 0.15, severity: "alarm" });
-  writer.beat({ startS: 0.02, endS: 0.145, frequencyHz: 8, tailAmplitudeM: 0.0451234 });
+  for (const cycle of cycles()) writer.beat(cycle);
+  writer.bout(bout());
   writer.mark({ timeS: 0.1, text: 'said "go"', from: "operator" });
   writer.sync(0.03, 17);
   writer.finish(summary);
