@@ -20,6 +20,7 @@ export const ADVICE = {
   TABLE_INVALID: "Correct the column map or the table at the place named above.",
   EXPORT_FAILED:
     "Check that the folder is writable and has room, then export again; the trial itself is untouched.",
+  FILE_UNWRITABLE: "Check that the folder is there and writable, or choose another file.",
   ACCESS_UNSAFE: "Listening beyond this machine needs a token: pass --token, or leave --host out.",
   ADDRESS_IN_USE: "Another program listens there: stop it, or choose another --http-port.",
   DASHBOARD_MISSING: "Run `npm run build` once; it builds the dashboard into dist/.",

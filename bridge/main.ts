@@ -6,6 +6,7 @@
 import { Command, CommanderError } from "commander";
 import { addExport } from "./commands/export.ts";
 import { addImport } from "./commands/import.ts";
+import { addLayout } from "./commands/layout.ts";
 import { addLive } from "./commands/live.ts";
 import { addPorts } from "./commands/ports.ts";
 import { addRehearse } from "./commands/rehearse.ts";
@@ -23,7 +24,8 @@ const program = new Command("bendwatch")
   .showHelpAfterError("(bendwatch help <command> lists its options)")
   .exitOverride();
 
-for (const add of [addLive, addReplay, addRehearse, addImport, addExport, addVerify, addPorts]) add(program);
+for (const add of [addLive, addReplay, addRehearse, addImport, addExport, addVerify, addLayout, addPorts])
+  add(program);
 
 try {
   await program.parseAsync();

@@ -26,6 +26,14 @@ export function positiveNumber(text: string): number {
   return value;
 }
 
+/** Numbers with commas between them. */
+export function numbers(text: string): number[] {
+  const values = text.split(",").map((part) => (part.trim() === "" ? Number.NaN : Number(part)));
+  if (!values.every(Number.isFinite))
+    throw new InvalidArgumentError("expected numbers, with commas between.");
+  return values;
+}
+
 /** A multiple of real time, or "max". */
 export function replayRate(text: string): number | "max" {
   return text === "max" ? "max" : positiveNumber(text);

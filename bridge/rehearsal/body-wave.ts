@@ -13,32 +13,8 @@
  * y is integrated along the body like X.
  */
 import { BendwatchError } from "../errors.ts";
+import { GAITS, type Gait, type GaitName } from "../numeric/gaits.ts";
 import { clear, type Jet } from "./signal.ts";
-
-/** Amplitude a(s/L) and its derivative, both as a share of body length, and the wavelength likewise. */
-interface Gait {
-  amplitude(x: number): number;
-  slope(x: number): number;
-  readonly wavelength: number;
-}
-
-/** Published envelopes, figures from memory. */
-const GAITS = {
-  /** Borazjani & Sotiropoulos, J. Exp. Biol. 211 (2008) 1541: a mackerel's. */
-  carangiform: {
-    amplitude: (x: number) => 0.02 - 0.08 * x + 0.16 * x * x,
-    slope: (x: number) => -0.08 + 0.32 * x,
-    wavelength: 0.95,
-  },
-  /** Borazjani & Sotiropoulos, J. Exp. Biol. 212 (2009) 576: a lamprey's. */
-  anguilliform: {
-    amplitude: (x: number) => 0.089 * Math.exp(x - 1),
-    slope: (x: number) => 0.089 * Math.exp(x - 1),
-    wavelength: 0.642,
-  },
-} as const satisfies Record<string, Gait>;
-
-export type GaitName = keyof typeof GAITS;
 
 /** Largest slope dy/ds a body may have: beyond it the tangent nears a right angle to the travel axis and the bend sharpens without bound. */
 const MAX_SLOPE = 0.95;

@@ -1,6 +1,7 @@
 /** How a simulated body swims: what can be chosen, and the choice made where nothing else is asked for. */
+
+import type { GaitName } from "../numeric/gaits.ts";
 import { RAD_PER_DEG } from "../numeric/units.ts";
-import type { GaitName } from "./body-wave.ts";
 import type { Wander } from "./signal.ts";
 
 export interface SwimmerOptions {

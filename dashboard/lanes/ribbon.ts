@@ -1,5 +1,6 @@
 /** The body as a ribbon: a smooth line through the midline's points, given a width that tapers as the body does. */
 import type { Graphics } from "pixi.js";
+import { taper } from "../../bridge/wire/taper.ts";
 import { bodyColour } from "../look/palette.ts";
 
 /** Where pieces begin between the first two points of the midline: close together, for the nose is round. */
@@ -8,18 +9,6 @@ const NOSE_PIECES = [0, 0.03, 0.09, 0.18, 0.3, 0.46, 0.7];
 const PIECES = [0, 0.5];
 /** Neighbouring pieces overlap by so much, pixels: edges drawn side by side would let the ground shine through. */
 const OVERLAP = 0.7;
-
-/** Width of the body at a station as a share of its greatest width. */
-export function taper(kind: "animal" | "dummy" | "foil", station: number): number {
-  if (kind === "foil") return rounded(station / 0.05) * (1 - 0.55 * station);
-  const behind = Math.max(0, (station - 0.3) / 0.7);
-  return rounded(station / 0.3) * (1 - 0.87 * behind ** 0.8);
-}
-
-/** A quarter of an ellipse: 0 at the tip, 1 from one on. */
-function rounded(share: number): number {
-  return Math.sqrt(1 - Math.max(0, 1 - share) ** 2);
-}
 
 export class Ribbon {
   #count = 0;

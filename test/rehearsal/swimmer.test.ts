@@ -1,7 +1,7 @@
 import { expect, test } from "vitest";
+import type { GaitName } from "../../bridge/numeric/gaits.ts";
 import { multiply, rotate } from "../../bridge/numeric/quaternion.ts";
 import { STANDARD_GRAVITY } from "../../bridge/numeric/units.ts";
-import type { GaitName } from "../../bridge/rehearsal/body-wave.ts";
 import { newKinematics, Swimmer } from "../../bridge/rehearsal/swimmer.ts";
 import { STEADY_SWIMMER, type SwimmerOptions } from "../../bridge/rehearsal/swimmer-options.ts";
 

@@ -1,5 +1,5 @@
 import { expect, test } from "vitest";
-import { taper } from "../../dashboard/lanes/ribbon.ts";
+import { taper } from "../../bridge/wire/taper.ts";
 
 test.each(["animal", "dummy", "foil"] as const)(
   "the %s begins in a tip, is nowhere wider than its width, and thins to the tail",
