@@ -11,8 +11,8 @@ import { bestPlacement, evenPlacement, type MountableRange, mostSensors } from "
 const COMPARED_TO = 16;
 /** The tail's excursion peaks between two moments: with so many it is off by 0.2 % of itself at most. */
 const REPORTED = { moments: 48, noiseMoments: 4 };
-/** While searching: the shape's mean square over a cycle has no harmonics that eight moments would not average out. */
-const SEARCHED = { moments: 8, noiseMoments: 1 };
+/** While searching. An odd number: half a cycle on, the body is its mirror image and says nothing new. */
+const SEARCHED = { moments: 5, noiseMoments: 1 };
 
 export interface PlanOptions extends Omit<ErrorModelOptions, "moments" | "noiseMoments"> {
   readonly range: MountableRange;

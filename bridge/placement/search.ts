@@ -1,7 +1,8 @@
 /**
  * The best places for a number of sensors: coordinate descent. From nose to tail each sensor is moved to where the cost is
  * least between its neighbours; then all are moved on together as far again as the round has moved them, if that is better
- * still; and so on until a round gains next to nothing. Nothing in it is random.
+ * still; and so on until a round gains next to nothing. The first rounds look everywhere between the neighbours, later
+ * ones nearby. Nothing in it is random.
  */
 
 /** Where sensors can sit, as shares of body length. */
@@ -20,9 +21,17 @@ interface Candidate {
   readonly cost: number;
 }
 
+/**
+ * Looks for the least cost in low..high, knowing that a sensor is now at `place`; `cost` is told every place that is tried
+ * and keeps the best.
+ */
+type Look = (low: number, high: number, place: number, cost: (place: number) => number) => void;
+
 /** Rounds that each start is given before the better goes on. */
 const FIRST_ROUNDS = 2;
-const MOST_ROUNDS = 40;
+const LATER_ROUNDS = 40;
+/** Nearby: so far to either side, as a share of body length. */
+const NEARBY = 0.005;
 /** A round that lowers the cost by less than this share is the last. */
 const ENOUGH = 2e-4;
 /** Pieces that the way between two neighbours is looked at in, before the best of them is narrowed down ... */
@@ -59,23 +68,23 @@ export function bestPlacement(
   const inner = { ...range, from: range.from + margin, to: range.to - margin };
   const starts = [evenPlacement(count, range), evenPlacement(count, inner), ...(known ? [known] : [])]
     .filter((stations) => isPossible(stations, range))
-    .map((stations) => improve({ stations, cost: cost(stations) }, FIRST_ROUNDS, range, cost));
+    .map((stations) => improve({ stations, cost: cost(stations) }, FIRST_ROUNDS, lookBetween, range, cost));
   const better = starts.reduce((a, b) => (b.cost < a.cost ? b : a));
-  return improve(better, MOST_ROUNDS, range, cost).stations;
+  return improve(better, LATER_ROUNDS, lookNearby, range, cost).stations;
 }
 
-function improve(start: Candidate, rounds: number, range: MountableRange, cost: Cost): Candidate {
+function improve(start: Candidate, rounds: number, look: Look, range: MountableRange, cost: Cost): Candidate {
   let best = start;
   for (let i = 0; i < rounds; i++) {
     const before = best;
-    best = round(before, range, cost);
+    best = round(before, look, range, cost);
     if (best.cost > (1 - ENOUGH) * before.cost) break;
   }
   return best;
 }
 
 /** Moves every sensor once, then all together. */
-function round(start: Candidate, range: MountableRange, cost: Cost): Candidate {
+function round(start: Candidate, look: Look, range: MountableRange, cost: Cost): Candidate {
   let best = start;
   const consider = (stations: readonly number[]) => {
     const candidate = { stations, cost: cost(stations) };
@@ -87,7 +96,7 @@ function round(start: Candidate, range: MountableRange, cost: Cost): Candidate {
     const { stations } = best;
     const low = i === 0 ? range.from : stations[i - 1] + range.spacing;
     const high = i === last ? range.to : stations[i + 1] - range.spacing;
-    lookBetween(low, high, (station) => consider(replaced(stations, i, station)));
+    look(low, high, stations[i], (station) => consider(replaced(stations, i, station)));
   }
   const further = best.stations.map((station, i) => 2 * station - start.stations[i]);
   if (isPossible(further, range)) consider(further);
@@ -108,11 +117,8 @@ function isPossible(stations: readonly number[], { from, to, spacing }: Mountabl
   );
 }
 
-/**
- * Looks for the least cost in low..high: at evenly spaced places, then by golden section about the best of them. `cost` is
- * told every place that is tried.
- */
-function lookBetween(low: number, high: number, cost: (place: number) => number): void {
+/** At evenly spaced places, then by golden section about the best of them. */
+function lookBetween(low: number, high: number, _: number, cost: (place: number) => number): void {
   const step = (high - low) / SCANNED;
   const costs = Array.from({ length: SCANNED + 1 }, (_, i) => cost(low + i * step));
   const best = low + costs.indexOf(Math.min(...costs)) * step;
@@ -137,4 +143,17 @@ function lookBetween(low: number, high: number, cost: (place: number) => number)
       atRight = cost(right);
     }
   }
+}
+
+/** Where the parabola through this place and one to either side has its least. */
+function lookNearby(low: number, high: number, place: number, cost: (place: number) => number): void {
+  const ahead = Math.max(low, place - NEARBY);
+  const behind = Math.min(high, place + NEARBY);
+  const here = cost(place);
+  const riseAhead = (cost(ahead) - here) / (ahead - place);
+  const riseBehind = (cost(behind) - here) / (behind - place);
+  const curvature = (riseBehind - riseAhead) / (behind - ahead);
+  if (!(curvature > 0)) return;
+  const slope = riseAhead + curvature * (place - ahead);
+  cost(Math.min(high, Math.max(low, place - slope / (2 * curvature))));
 }
