@@ -55,6 +55,7 @@ function runLayout(options: LayoutOptions): void {
   const range = rangeOf(options, present);
   const count = countOf(options.sensors ?? present.length, range);
   const subject = subjectOf(rig, options, gait, range);
+  const { interpolation } = rig.midline;
   const plan = planPlacement({
     gait,
     noise: {
@@ -62,7 +63,7 @@ function runLayout(options: LayoutOptions): void {
       heading: subject.noiseDeg.heading * RAD_PER_DEG,
     },
     pointCount: POINT_COUNT,
-    rebuilding: (stations) => new Midline({ lengthM: 1, stations, pointCount: POINT_COUNT }),
+    rebuilding: (stations) => new Midline({ lengthM: 1, stations, pointCount: POINT_COUNT, interpolation }),
     range,
     present,
     count,

@@ -1,6 +1,7 @@
 /** A waving body, exact: orientations at the sensors and the true midline at any phase; what a Midline makes of them. */
 import type { Midline } from "../../bridge/body/midline.ts";
-import { type GaitName, type PlaneMotion, WaveDrive, WavePlace } from "../../bridge/rehearsal/body-wave.ts";
+import type { GaitName } from "../../bridge/numeric/gaits.ts";
+import { type PlaneMotion, WaveDrive, WavePlace } from "../../bridge/rehearsal/body-wave.ts";
 import { newJet } from "../../bridge/rehearsal/signal.ts";
 
 /** Sensors from 5 % to 95 % of the body. */

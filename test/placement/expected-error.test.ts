@@ -82,6 +82,14 @@ test("the fewer moments of the search give the same error", () => {
   }
 });
 
+test("the interpolation counts: a smooth midline errs less than half as much in shape, and little more by noise", () => {
+  const stations = evenPlacement(6, RANGE);
+  const smooth = new ErrorModel({ ...swimmerWith("carangiform", "smooth"), ...REPORTED }).expect(stations);
+  const slerp = modelOf("carangiform").expect(stations);
+  expect(smooth.shape).toBeLessThan(0.5 * slerp.shape);
+  expect(smooth.noise).toBeLessThan(1.1 * slerp.noise);
+});
+
 test("with sensors at every piece of the midline, shape and tail amplitude are the true ones", () => {
   const stations = Array.from({ length: 40 }, (_, i) => (i + 0.5) / 40);
   const { shape, tailAmplitude } = modelOf("carangiform").expect(stations);

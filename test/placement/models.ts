@@ -1,5 +1,5 @@
 /** Error models as the command builds them, for the project's own midline. */
-import { Midline } from "../../bridge/body/midline.ts";
+import { type Interpolation, Midline } from "../../bridge/body/midline.ts";
 import { GAITS, type GaitName } from "../../bridge/numeric/gaits.ts";
 import { RAD_PER_DEG } from "../../bridge/numeric/units.ts";
 import type { ErrorModelOptions } from "../../bridge/placement/expected-error.ts";
@@ -10,12 +10,13 @@ export const NOISE = { inclination: 0.7 * RAD_PER_DEG, heading: 1 * RAD_PER_DEG 
 
 export function swimmerWith(
   gait: GaitName,
-  pointCount = 41,
+  interpolation: Interpolation = "slerp",
 ): Omit<ErrorModelOptions, "moments" | "noiseMoments"> {
+  const pointCount = 41;
   return {
     gait: GAITS[gait],
     noise: NOISE,
     pointCount,
-    rebuilding: (stations) => new Midline({ lengthM: 1, stations, pointCount }),
+    rebuilding: (stations) => new Midline({ lengthM: 1, stations, pointCount, interpolation }),
   };
 }
