@@ -2,10 +2,11 @@
  * Orientation errors on real recordings: `npm run check:open-data [-- DIR] [--json]`. DIR is the open-data folder
  * (default ../shared/open-data beside the project). Prints RMSE in degrees of every trial: as recorded, with losses, with
  * jittered sample times, and, of the fast trials, with a clipped gyroscope; next to what the published method's own
- * implementation scores on the same files. Exit code 1, and one line, where there are no recordings: a check that has
+ * implementation scores on the same files. Then, of the pendulum's recordings, the joints' rotations. Exit code 1, and one line, where there are no recordings: a check that has
  * checked nothing has not passed.
  */
 import { resolve } from "node:path";
+import { loadRig } from "../../bridge/rig/load.ts";
 import {
   CLIP_RANGE,
   CLIPPED_TRIALS,
@@ -19,9 +20,18 @@ import {
   trialFolder,
   trialNames,
 } from "./optical-imu.ts";
+import { pendulumFolder, pendulumNames, scorePendulum } from "./pendulum.ts";
 
 /** Sample times displaced by up to this share of the interval. */
 const JITTER = 0.3;
+
+/** What the published method's own implementation scores, fed by linear resampling to 100 Hz. */
+const PENDULUM_PUBLISHED: Readonly<Record<string, string>> = {
+  Pendulum_Test03_Trial1: "2.07 / 2.66",
+  Pendulum_Test05_Trial2: "2.19 / 4.14",
+  Pendulum_Test07_Trial1: "6.46 / 9.40",
+  Pendulum_Test08_Trial1: "2.43 / 2.68",
+};
 
 interface Result {
   readonly complete: Scores;
@@ -63,7 +73,9 @@ const means = {
   },
 };
 
-if (asJson) console.log(JSON.stringify({ trials: results, means }, null, 2));
+const pendulum = await jointErrors();
+
+if (asJson) console.log(JSON.stringify({ trials: results, means, pendulum }, null, 2));
 else {
   console.log("RMSE in degrees; published: the method's own implementation, as in reference.json.");
   console.log("lost: 5.4 % of samples; jitter: sample times displaced by up to 30 % of the interval;");
@@ -81,6 +93,32 @@ else {
       `Mean total of the ${fast.length} clipped trials: ${means.clipped.totalDeg.toFixed(2)}, unclipped ${means.fastUnclipped.totalDeg.toFixed(2)}.`,
     );
   else console.log("None of the trials for clipping (06, 16, 21, 29) is there.");
+  if (pendulum === null) console.log(`${openData} holds no pendulum folder: its joints were not checked.`);
+  else {
+    console.log("\nPendulum, rotation of each joint against the cameras, RMSE in degrees.");
+    console.table(
+      Object.fromEntries(
+        Object.entries(pendulum).map(([name, [upper, lower]]) => [
+          name,
+          {
+            "upper joint": rounded(upper),
+            "lower joint": rounded(lower),
+            "publ.": PENDULUM_PUBLISHED[name] ?? "",
+          },
+        ]),
+      ),
+    );
+  }
+}
+
+/** RMSE of each joint, degrees, by recording; null where there are none. */
+async function jointErrors(): Promise<Record<string, number[]> | null> {
+  const from = pendulumFolder(openData);
+  if (from === null) return null;
+  const rig = loadRig("three-segment-pendulum");
+  const found: Record<string, number[]> = {};
+  for (const name of pendulumNames(from)) found[name] = await scorePendulum(from, name, rig);
+  return found;
 }
 
 function check(from: string, name: string): Result {
@@ -112,11 +150,14 @@ function publishedOf({ published }: Result): typeof means.published | undefined 
   );
 }
 
+function rounded(value: number | undefined): number | string {
+  return value === undefined ? "" : Math.round(value * 1000) / 1000;
+}
+
 function row(
   { complete, withLosses, jittered, clipped }: Omit<Result, "published">,
   published?: typeof means.published,
 ): Record<string, number | string> {
-  const rounded = (value: number | undefined) => (value === undefined ? "" : Math.round(value * 1000) / 1000);
   return {
     total: rounded(complete.totalDeg),
     "publ.": rounded(published?.totalDeg),
