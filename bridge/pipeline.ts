@@ -114,6 +114,7 @@ export class Pipeline {
     this.health = new Health({
       sensors: sensors.map((sensor, i) => ({ ...sensor, model: models[i]! })),
       rateHz,
+      lengthM: body.lengthMm / 1000,
       thresholds,
       expectedField: site ? siteField(site, site.date ? new Date(site.date) : startedAt) : null,
       book: this.flags,

@@ -10,8 +10,8 @@
  * All of it is one affine map a part, value = M (raw - offset), worked out once; a sweep costs nine products a part.
  */
 
-import { conjugate, multiply, normalise, setIdentity } from "../numeric/quaternion.ts";
-import { RAD_PER_DEG } from "../numeric/units.ts";
+import { conjugate, multiply, normalise, setIdentity, toMatrix } from "../numeric/quaternion.ts";
+import { DEG_PER_RAD, RAD_PER_DEG } from "../numeric/units.ts";
 import type { SensorPlace } from "../rig/rig.ts";
 import {
   ACCEL,
@@ -118,6 +118,21 @@ export function mountingMatrix({ yawDeg, pitchDeg, rollDeg }: Mounting): Matrix3
     [0, sr, cr],
   ];
   return product(product(yaw, pitch), roll);
+}
+
+/** Rotation, sensor to body axes, as the rig file writes it. */
+export function mountingAngles(rotation: Float64Array): {
+  yawDeg: number;
+  pitchDeg: number;
+  rollDeg: number;
+} {
+  const m = new Float64Array(9);
+  toMatrix(m, rotation);
+  return {
+    yawDeg: Math.atan2(m[3]!, m[0]!) * DEG_PER_RAD,
+    pitchDeg: -Math.asin(Math.max(-1, Math.min(1, m[6]!))) * DEG_PER_RAD,
+    rollDeg: Math.atan2(m[7]!, m[8]!) * DEG_PER_RAD,
+  };
 }
 
 function applyMap(

@@ -12,26 +12,16 @@
  * Where one sensor moves too little to be seen in a bend, the field in the straight pose, as its neighbours see it, tells
  * its turn about the vertical to some degrees.
  */
-import { toMatrix } from "../numeric/quaternion.ts";
 import { DEG_PER_RAD, RAD_PER_DEG, STANDARD_GRAVITY } from "../numeric/units.ts";
 import type { SensorPlace } from "../rig/rig.ts";
 import type { SensorModel } from "../rig/sensor-model.ts";
 import { ACCEL, CHANNELS, GYRO, HAS_INERTIAL, MAG, type Sweep } from "../sweep.ts";
 import { type AttitudeFit, cross, dot, fitAttitude, type Sighting, turned, unit } from "./attitude-fit.ts";
 import { type BendAxis, bendAxis, type Facing, facings } from "./bend.ts";
-import { Calibration } from "./calibration.ts";
+import { type BodyPose, describePose, eastOf, upOf } from "./body-pose.ts";
+import { Calibration, mountingAngles } from "./calibration.ts";
 import { type Outcome, type Procedure, type Progress, refused } from "./procedure.ts";
 import { StillMeter } from "./still.ts";
-
-/** How the body is held. Level, unless it says otherwise. */
-export interface BodyPose {
-  /** Nose up positive, rad. */
-  readonly pitch: number;
-  /** Right side down positive, rad. */
-  readonly roll: number;
-}
-
-export const LEVEL: BodyPose = { pitch: 0, roll: 0 };
 
 export interface MountingOptions {
   readonly sensors: readonly SensorPlace[];
@@ -316,52 +306,10 @@ export class Mounting implements Procedure<MountingNumbers> {
   }
 }
 
-/** Rotation, sensor to body axes, as the rig file writes it. */
-export function mountingAngles(rotation: Float64Array): {
-  yawDeg: number;
-  pitchDeg: number;
-  rollDeg: number;
-} {
-  const m = new Float64Array(9);
-  toMatrix(m, rotation);
-  return {
-    yawDeg: Math.atan2(m[3]!, m[0]!) * DEG_PER_RAD,
-    pitchDeg: -Math.asin(Math.max(-1, Math.min(1, m[6]!))) * DEG_PER_RAD,
-    rollDeg: Math.atan2(m[7]!, m[8]!) * DEG_PER_RAD,
-  };
-}
-
-/** Up in body axes. */
-function upOf({ pitch, roll }: BodyPose): Float64Array {
-  return Float64Array.of(Math.sin(pitch), Math.cos(pitch) * Math.sin(roll), Math.cos(pitch) * Math.cos(roll));
-}
-
-/** Magnetic east in body axes. */
-function eastOf(pose: BodyPose, bearing: number): Float64Array {
-  // Unrolled, the nose's level direction and left are known; left is square to up and to the nose.
-  const up = upOf(pose);
-  const left = unit(cross(up, [1, 0, 0]));
-  const ahead = cross(left, up);
-  return Float64Array.from([0, 1, 2], (k) => Math.sin(bearing) * ahead[k]! - Math.cos(bearing) * left[k]!);
-}
-
 function conjugated(q: Float64Array): Float64Array {
   return Float64Array.of(q[0]!, -q[1]!, -q[2]!, -q[3]!);
 }
 
 function forceOf(mean: Float64Array, i: number): Float64Array {
   return mean.slice(i * CHANNELS + ACCEL, i * CHANNELS + ACCEL + 3);
-}
-
-function describePose({ pitch, roll }: BodyPose): string {
-  const parts = [
-    [pitch, "nose up", "nose down"],
-    [roll, "right side down", "left side down"],
-  ] as const;
-  const words = parts.flatMap(([angle, positive, negative]) =>
-    Math.abs(angle) < 1e-6
-      ? []
-      : [`${Math.round(Math.abs(angle) * DEG_PER_RAD)}° ${angle > 0 ? positive : negative}`],
-  );
-  return words.length === 0 ? "level" : words.join(" and ");
 }

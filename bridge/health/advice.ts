@@ -31,6 +31,10 @@ export const FLAG_ADVICE: Readonly<Record<AdviceKey, string>> = {
     "Power {name} off and on; if the axis stays still, replace the sensor and rely on {neighbours} until then.",
   "sensor read errors":
     "The hub cannot read {name}: check its plug at {place} and the cable from {neighbours}.",
+  "sensor flipped":
+    "{name} reads as if turned by half: check how it sits at {place} and its mounting in the rig file.",
+  "sensors swapped":
+    "Two sensors read as if they had changed places: check their plugs from {place} on, and their order in the rig file.",
   "on-board fusion differs":
     "{name}'s own orientation is not ours, which is shown: check its mounting in the rig file, and its frame and axes in the packet layout.",
   "recording trouble": "Free disk space or choose another folder now: what arrives is not being kept.",

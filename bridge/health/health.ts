@@ -9,6 +9,7 @@
 import type { Sweep } from "../sweep.ts";
 import { CorruptPackets } from "./corrupt-packets.ts";
 import { Delivery } from "./delivery.ts";
+import { FlippedSensors } from "./flipped.ts";
 import { Headroom } from "./headroom.ts";
 import { MagneticInterference } from "./magnetic.ts";
 import { OnBoardDifference } from "./on-board.ts";
@@ -17,6 +18,7 @@ import { Saturation } from "./saturation.ts";
 import type { HealthSetup } from "./setup.ts";
 import { Silence } from "./silence.ts";
 import { StuckAxes } from "./stuck.ts";
+import { SwappedSensors } from "./swapped.ts";
 
 export class Health {
   readonly #silence: Silence;
@@ -28,7 +30,8 @@ export class Health {
   readonly #headroom: Headroom;
   readonly #stuck: StuckAxes;
   readonly #magnetic: MagneticInterference;
-
+  readonly #flipped: FlippedSensors;
+  readonly #swapped: SwappedSensors;
   readonly #onBoard: OnBoardDifference;
 
   constructor(setup: HealthSetup) {
@@ -41,6 +44,8 @@ export class Health {
     this.#headroom = new Headroom(setup);
     this.#stuck = new StuckAxes(setup);
     this.#magnetic = new MagneticInterference(setup);
+    this.#flipped = new FlippedSensors(setup);
+    this.#swapped = new SwappedSensors(setup);
     this.#onBoard = new OnBoardDifference(setup);
   }
 
@@ -60,6 +65,8 @@ export class Health {
     this.#headroom.observe(sweep);
     this.#stuck.observe(sweep);
     this.#magnetic.observe(sweep, orientations);
+    this.#swapped.observe(sweep);
+    this.#flipped.observe(sweep, this.#swapped.outOfOrder);
   }
 
   /**

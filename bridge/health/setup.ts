@@ -24,6 +24,8 @@ export interface HealthSetup {
   readonly sensors: readonly HealthSensor[];
   /** Nominal sweeps a second. */
   readonly rateHz: number;
+  /** Of the body, nose to tail tip. */
+  readonly lengthM: number;
   readonly thresholds: Thresholds;
   /** From the World Magnetic Model (site-field.ts); null where the rig file names no site. */
   readonly expectedField: ExpectedField | null;

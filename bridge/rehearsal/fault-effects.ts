@@ -21,6 +21,8 @@ export interface FaultEffect {
   disturb?(timeS: number, felt: Float64Array): void;
   /** Changes the unit's reading: 9 numbers at `at`, its own axes. */
   spoil?(timeS: number, raw: Float64Array, at: number): void;
+  /** Whether the unit's place in the packets is exchanged with the next one's. */
+  isSwapped?(timeS: number): boolean;
   /** What the hub gets from the unit. */
   delivery?(timeS: number): number;
   /** Whether this sweep is lost on the way. */
@@ -119,6 +121,12 @@ const EFFECTS: Record<FaultKind, Make> = {
     };
   },
 
+  upended: (fault) => ({ disturb: (timeS, felt) => turnedByHalf(fault, timeS, felt, [1, -1, -1]) }),
+
+  backward: (fault) => ({ disturb: (timeS, felt) => turnedByHalf(fault, timeS, felt, [-1, -1, 1]) }),
+
+  swapped: (fault) => ({ isSwapped: (timeS) => during(fault, timeS) }),
+
   loose: (fault, { random }) => {
     let held = true;
     let changesS = fault.startS + random.between(...LOOSE_HELD_S);
@@ -183,6 +191,12 @@ function ramp({ startS, endS }: Fault, rampS: number) {
     signal.addTo(jet, timeS);
     return jet;
   };
+}
+
+/** Half a turn about a body axis changes the sign of the other two. */
+function turnedByHalf(fault: Fault, timeS: number, felt: Float64Array, signs: readonly number[]): void {
+  if (!during(fault, timeS)) return;
+  for (let k = 0; k < felt.length; k++) felt[k] *= signs[k % 3];
 }
 
 function addScaled(out: Float64Array, at: number, vector: readonly number[], factor: number): void {

@@ -14,6 +14,9 @@ export const FAULT_KINDS = {
   saturation: { of: "sensor", does: "the unit rattles in its mount, faster than its gyro can measure" },
   flattop: { of: "sensor", does: "the gyro limits well below its full scale" },
   stuck: { of: "axis", does: "the axis repeats one value" },
+  upended: { of: "sensor", does: "the unit sits upside down: half a turn about the body's long axis" },
+  backward: { of: "sensor", does: "the unit faces the tail: half a turn about its vertical axis" },
+  swapped: { of: "sensor", does: "the unit's plug and that of the next one are exchanged" },
   loose: { of: "sensor", does: "a loose connector: the unit's readings are absent in short runs" },
   unreadable: { of: "sensor", does: "the hub cannot read the unit and says so" },
   loss: { of: "rig", does: "one sweep in ten is lost on the way" },
@@ -63,6 +66,10 @@ export function parseFault(text: string, sensorNames: readonly string[]): Fault 
     throw refuse({ where: `--fault ${text}`, found: "a duration of 0 s", expected: "a duration above 0 s" });
   }
   const place = parseTarget(text, FAULT_KINDS[kind as FaultKind].of, target, sensorNames);
+  if (kind === "swapped" && place.sensor === sensorNames.length - 1) {
+    const found = `the last sensor, "${target}"`;
+    throw refuse({ where: `--fault ${text}`, found, expected: "a sensor that another one follows" });
+  }
   const startS = Number(start);
   return { kind: kind as FaultKind, ...place, startS, endS: startS + Number(duration) };
 }

@@ -61,6 +61,8 @@ export class SimulatedRig {
   readonly #truthPlaces: readonly WavePlace[];
   /** Effects on each sensor. */
   readonly #effectsOn: readonly (readonly FaultEffect[])[];
+  /** Sensors whose plug may be exchanged with the next one's. */
+  readonly #swaps: readonly { readonly sensor: number; readonly effect: FaultEffect }[];
   readonly #earthFieldUT: readonly number[];
 
   readonly #sweep: Sweep;
@@ -91,6 +93,9 @@ export class SimulatedRig {
         peakRate: (sensor, fromS, toS) => this.#peakRate(sensor, fromS, toS),
       }),
     );
+    this.#swaps = this.effects.flatMap((effect, i) =>
+      effect.isSwapped ? [{ sensor: faults[i].sensor, effect }] : [],
+    );
     this.#effectsOn = sensors.map((_, sensor) => {
       const own = this.effects.filter((_, i) => faults[i].sensor === sensor);
       if (unrest === undefined) return own;
@@ -114,6 +119,7 @@ export class SimulatedRig {
   sweep(index: number): Sweep {
     const timeS = index / this.#rig.hub.rateHz;
     for (let sensor = 0; sensor < this.#sensors.length; sensor++) this.#read(sensor, index, timeS);
+    for (const { sensor, effect } of this.#swaps) if (effect.isSwapped?.(timeS)) this.#exchange(sensor);
     return this.#sweep;
   }
 
@@ -149,6 +155,22 @@ export class SimulatedRig {
     }
     sweep.readStatus[sensor] = delivery === DELIVERY.UNREADABLE ? NO_ANSWER : 0;
     sweep.present[sensor] = delivery === DELIVERY.WHOLE ? this.#dueParts(sensor, index) : 0;
+  }
+
+  /** Exchanges what came from sensor `i` with what came from the next. */
+  #exchange(i: number): void {
+    const { raw, present, readStatus } = this.#sweep;
+    for (const [slots, width] of [
+      [raw, CHANNELS],
+      [present, 1],
+      [readStatus, 1],
+    ] as const) {
+      for (let at = i * width; at < (i + 1) * width; at++) {
+        const kept = slots[at];
+        slots[at] = slots[at + width];
+        slots[at + width] = kept;
+      }
+    }
   }
 
   /** Leaves in #felt what an ideal unit would read, body axes. */

@@ -54,6 +54,20 @@ export const thresholdsSchema = z.strictObject({
     .describe(
       "A flag when a sensor's own orientation differs by this much RMS from ours, in inclination or (less its slow mean) heading: 20 ms of delay at a fast beat of 8 rad/s make 6°, a wrong mounting or frame mostly tens.",
     ),
+  flippedDeg: z
+    .number()
+    .min(90)
+    .max(180)
+    .describe(
+      "A sensor is flipped when its mean gravity looks this far away from that of the others: a flip makes 180°, a body twisted along its length hardly 60° (common practice, no source).",
+    ),
+  reversedLagDeg: z
+    .number()
+    .min(1)
+    .max(90)
+    .describe(
+      "Two sensors are swapped when the wave runs backwards between neighbours by this lag or more: neighbours lag by 6° where they lag least (sixteen on a carangiform body), and windows of 4 s measure lags to about 1°.",
+    ),
   stuckAxisS: z
     .number()
     .min(0.1)

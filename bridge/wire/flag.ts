@@ -16,6 +16,8 @@ export type FlagKind =
   | "link silent"
   | "stuck axis"
   | "sensor read errors"
+  | "sensor flipped"
+  | "sensors swapped"
   | "on-board fusion differs"
   | "recording trouble"
   | "hub restarted";

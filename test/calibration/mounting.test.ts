@@ -1,13 +1,8 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
-import {
-  type BodyPose,
-  LEVEL,
-  Mounting,
-  type MountingNumbers,
-  type MountingOptions,
-  mountingAngles,
-} from "../../bridge/calibration/mounting.ts";
+import { type BodyPose, LEVEL } from "../../bridge/calibration/body-pose.ts";
+import { mountingAngles } from "../../bridge/calibration/calibration.ts";
+import { Mounting, type MountingNumbers, type MountingOptions } from "../../bridge/calibration/mounting.ts";
 import type { Outcome } from "../../bridge/calibration/procedure.ts";
 import { RAD_PER_DEG } from "../../bridge/numeric/units.ts";
 import { Random } from "../../bridge/rehearsal/random.ts";

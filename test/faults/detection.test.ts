@@ -67,6 +67,26 @@ describe.each([
     expect(pipeline.flags.open).toEqual([]);
   });
 
+  test.each([
+    { fault: "upended:S3", kind: "sensor flipped", sensor: 2 },
+    { fault: "backward:S2", kind: "sensor flipped", sensor: 1 },
+    { fault: "backward:S6", kind: "sensor flipped", sensor: 5 },
+    { fault: "swapped:S4", kind: "sensors swapped", sensor: 3 },
+  ])("$fault, wrong from the start, raises its flag and no other", async ({ fault, kind, sensor }) => {
+    const durationS = 18;
+    const { flags, seenAtS } = await rehearse({
+      rig,
+      seed: 3,
+      durationS,
+      faults: [`${fault}@0+${durationS}`],
+      swimmer: { frequencyHz: 1.1 },
+    });
+    expect(flags.map((flag) => [flag.kind, flag.sensor])).toEqual([[kind, sensor]]);
+    // Two windows of 4 s after the first, in which the body begins to swim.
+    expect(seenAtS.get(flags[0]!.id)!).toBeLessThanOrEqual(12.1);
+    expect(flags[0]!.advice).not.toBe("");
+  });
+
   test("a hub that restarts is silent first, then said to have restarted", async () => {
     const { flags, pipeline } = await rehearse({
       rig,

@@ -13,6 +13,7 @@ function bench() {
   const book = new FlagBook(sensors);
   const detector = new OnBoardDifference({
     sensors,
+    lengthM: 1,
     rateHz: 100,
     thresholds: THRESHOLDS,
     expectedField: null,

@@ -41,6 +41,8 @@ export class HealthBench {
     this.health = new Health({
       sensors,
       rateHz: this.rig.rateHz,
+      // All but a point: the synthetic sway obeys no midline, so no length must be read into it.
+      lengthM: 0.01,
       thresholds: { ...THRESHOLDS, ...options.thresholds },
       expectedField: options.expectedField === undefined ? SITE : options.expectedField,
       book: this.book,
