@@ -1,7 +1,7 @@
 /**
  * The stages joined: bytes in, flags and midline out. Read it top to bottom.
  *
- *     bytes -> link -> clock -> calibration -> health -> fusion -> body -> wave -> ring buffer
+ *     bytes -> link -> clock -> calibration -> health -> fusion -> body -> wave -> drive -> ring buffer
  *
  * Everything is computed from the hub's own ticks, so the same bytes give the same results at any speed and cut into any
  * chunks. Arrival times, as recorded, serve three things only: noticing a silent link, bridging a restart of the hub, and
@@ -13,6 +13,7 @@ import { Calibration, mountingMatrix } from "./calibration/calibration.ts";
 import { DriftMeter } from "./clock/drift.ts";
 import { Admission, HubClock } from "./clock/hub-clock.ts";
 import { SilenceWatch } from "./clock/silence.ts";
+import { DriveComparison } from "./drive/drive-comparison.ts";
 import { ChainFusion } from "./fusion/chain-fusion.ts";
 import { FlagBook } from "./health/flag-book.ts";
 import { HeadingFallback } from "./health/heading-fallback.ts";
@@ -22,6 +23,7 @@ import { createDecoder } from "./link/decoder.ts";
 import type { LinkCounters, PacketDecoder } from "./link/packets.ts";
 import { RAD_PER_DEG } from "./numeric/units.ts";
 import type { Rig } from "./rig/load.ts";
+import type { SensorPlace } from "./rig/rig.ts";
 import type { Sweep } from "./sweep.ts";
 import { TrialRing } from "./trial/ring.ts";
 import { GaitMeter } from "./wave/gait.ts";
@@ -36,6 +38,8 @@ import type { Flag, Mark } from "./wire/flag.ts";
 export const POINT_COUNT = 41;
 /** No sweep for this long is a silent link, be it that nothing comes or that nothing can be read. */
 const SILENCE_MS = 300;
+/** The drive's readings belong to the sweeps about them: one further off has a damaged tick, or its hub has restarted, s. */
+const REFERENCE_STRAY_S = 2;
 /** The ring buffer's span. */
 const RING_SECONDS = 600;
 
@@ -49,6 +53,8 @@ export interface PipelineObserver {
   /** A bout of steady swimming has ended. */
   bout?(bout: Bout): void;
   mark?(mark: Mark): void;
+  /** What the drive did at a sweep's time, some sweeps later: rad and m, as the rig file puts them right. */
+  reference?(timeS: number, yaw: number, sway: number): void;
   /** A camera frame's time, hub s. */
   sync?(timeS: number, edge: number): void;
 }
@@ -74,6 +80,10 @@ export class Pipeline {
   readonly travel: TravelAxis;
   readonly gait: GaitMeter;
   readonly tailbeat: TailbeatMeter;
+  /** null where the rig file names no drive. */
+  readonly drive: DriveComparison | null;
+  /** The drive's newest reading as it came, rad and m; NaN before the first. */
+  readonly newestReference = { yaw: Number.NaN, sway: Number.NaN };
   readonly ring: TrialRing | null;
   /** Sweeps that went through all stages. */
   sweepCount = 0;
@@ -100,7 +110,7 @@ export class Pipeline {
       sweep: (sweep) => this.#sweep(sweep),
       hello: () => {},
       status: () => {},
-      reference: () => {},
+      reference: ({ tickUs, yaw, sway }) => this.#reference(tickUs, yaw, sway),
       sync: ({ tickUs, edge }) => observer.sync?.(this.clock.timeOf(tickUs), edge),
       button: ({ tickUs, button }) => this.#button(tickUs, button),
     });
@@ -128,7 +138,7 @@ export class Pipeline {
         lengthM: body.lengthMm / 1000,
         meanBend: rig.midline.meanBendDeg * RAD_PER_DEG,
       },
-      samplingOffsetsS: sensors.map((sensor) => sensor.samplingOffsetUs / 1e6),
+      samplingOffsetsS: sensors.map((sensor, i) => turnEndS(sensor, models[i].delayMs, rateHz)),
       sensorRatesHz: sensors.map((sensor) => sensor.rateHz),
       gyroRanges: models.map((model) => model.gyro.rangeDegPerS * RAD_PER_DEG),
       gyroAxes: sensors.map((sensor) => mountingMatrix(sensor.mounting).flat()),
@@ -159,6 +169,14 @@ export class Pipeline {
       onBout: (bout) => observer.bout?.(bout),
     });
     this.tailbeat = this.gait.tailbeat;
+    this.drive = rig.reference
+      ? new DriveComparison({
+          reference: rig.reference,
+          stations: sensors.map((sensor) => sensor.station),
+          rateHz,
+          onReference: (timeS, yaw, sway) => observer.reference?.(timeS, yaw, sway),
+        })
+      : null;
     this.ring = ring
       ? new TrialRing({ sensorCount, pointCount: POINT_COUNT, rateHz, seconds: RING_SECONDS })
       : null;
@@ -220,11 +238,21 @@ export class Pipeline {
     this.midline.step(this.fusion.orientations, this.fusion.trust);
     this.travel.step(sweep.stepS, this.midline.positions, this.tailbeat.periodS);
     this.gait.step(sweep.timeS, this.midline.positions, this.travel.direction, this.fusion.trust);
+    const { orientations, trust } = this.fusion;
+    this.drive?.sweep(sweep.timeS, orientations, trust, this.midline.positions, this.travel.heading);
     this.ring?.push(sweep, this.fusion.orientations, this.fusion.trust, this.midline.positions);
     this.timeS = sweep.timeS;
     this.hostTimeMs = sweep.hostTimeMs;
     this.sweepCount++;
     this.#observer.sweep?.(sweep);
+  }
+
+  #reference(tickUs: number, yaw: number, sway: number): void {
+    this.newestReference.yaw = yaw;
+    this.newestReference.sway = sway;
+    const timeS = this.clock.timeOf(tickUs);
+    if (this.sweepCount === 0 || Math.abs(timeS - this.timeS) > REFERENCE_STRAY_S) return;
+    this.drive?.reference(timeS, yaw, sway);
   }
 
   #button(tickUs: number, button: number): void {
@@ -246,4 +274,12 @@ function viscosityOf({ water }: Rig): number {
   if (water.temperatureC === undefined) return Number.NaN;
   const salinity = water.kind === "sea" ? water.salinityGPerKg : 0;
   return kinematicViscosityOf(water.temperatureC, salinity);
+}
+
+/**
+ * How much later than its sweep's tick the turn ends that a reading stands for, s. A reading tells the rate at a moment,
+ * the turn made of it reaches half an interval to either side: without this the orientation would lead by that half.
+ */
+function turnEndS({ samplingOffsetUs, rateHz }: SensorPlace, delayMs: number, hubRateHz: number): number {
+  return samplingOffsetUs / 1e6 - delayMs / 1000 + 0.5 / (rateHz ?? hubRateHz);
 }

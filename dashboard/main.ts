@@ -13,6 +13,7 @@ import { Stage } from "./lanes/stage.ts";
 import { Strip } from "./lanes/strip.ts";
 import { initialLight, switchLight } from "./look/light.ts";
 import { readPalette } from "./look/palette.ts";
+import { DrivePanel } from "./panels/drive.ts";
 import { FlagsPanel } from "./panels/flags.ts";
 import { Header } from "./panels/header.ts";
 import { Keys } from "./panels/keys.ts";
@@ -65,6 +66,7 @@ const strip = new Stage(stripHost, stripRenderer, [{ element: stripHost, lane: n
 const header = new Header();
 const sensors = new SensorColumns(element("sensors"));
 const tailbeat = new TailbeatPanel(element("tailbeat"));
+const drive = new DrivePanel(element("drive"));
 const flags = new FlagsPanel();
 const notice = new Notice();
 
@@ -148,6 +150,7 @@ function updateText(nowMs: number): void {
   drawnText = view.textRevision;
   header.update(view);
   tailbeat.update(view);
+  drive.update(view);
   flags.update(view, nowMs);
   notice.update(view, nowMs);
   sensors.update(view);

@@ -18,7 +18,7 @@ export function addExport(program: Command): void {
   program
     .command("export")
     .description(
-      "Write a trial's midline, sensors, flags, gait numbers and marks as CSV with datapackage.json.",
+      "Write a trial's midline, sensors, flags, gait numbers, marks, camera frames and drive as CSV with datapackage.json.",
     )
     .argument("<trial>", "by name under recordings/ or by path")
     .requiredOption("--to <folder>", "folder for the tables")
@@ -66,11 +66,13 @@ export function exportTrial(
       beat: (cycle) => writer.beat(cycle),
       bout: (bout) => writer.bout(bout),
       mark: (mark) => writer.mark(mark),
+      reference: (timeS, yaw, sway) => writer.reference(timeS, yaw, sway),
       sync: (timeS, edge) => writer.sync(timeS, edge),
     },
   });
   const { end, marks } = runThrough(folder, pipeline);
   for (const mark of marks) writer.mark(mark);
-  writer.finish({ startedAt, notes, lostSweeps, counters: pipeline.counters, settings });
+  const drive = pipeline.drive?.trial() ?? [];
+  writer.finish({ startedAt, notes, lostSweeps, counters: pipeline.counters, drive, settings });
   return { sweeps: pipeline.sweepCount, end };
 }

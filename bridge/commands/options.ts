@@ -34,6 +34,12 @@ export function numbers(text: string): number[] {
   return values;
 }
 
+export function finiteNumber(text: string): number {
+  const value = Number(text);
+  if (text.trim() === "" || !Number.isFinite(value)) throw new InvalidArgumentError("expected a number.");
+  return value;
+}
+
 /** A multiple of real time, or "max". */
 export function replayRate(text: string): number | "max" {
   return text === "max" ? "max" : positiveNumber(text);

@@ -8,6 +8,7 @@ import { TrialRecorder } from "../trial/recorder.ts";
 import { softwareVersion } from "../version.ts";
 import {
   collect,
+  finiteNumber,
   positiveNumber,
   replayRate,
   type ServeOptions,
@@ -23,6 +24,8 @@ interface RehearseOptions extends ServeOptions {
   fault: string[];
   gait: "carangiform" | "anguilliform";
   frequency: number;
+  driveLag: number;
+  cameraRate?: number;
   seed: number;
   seconds?: number;
   rate: number | "max";
@@ -47,6 +50,13 @@ export function addRehearse(program: Command): void {
           .default("carangiform"),
       )
       .option("--frequency <hz>", "tailbeats a second", positiveNumber, 1.1)
+      .option(
+        "--drive-lag <ms>",
+        "how long the body follows after its drive, ms; may be negative",
+        finiteNumber,
+        0,
+      )
+      .option("--camera-rate <hz>", "camera frame pulses a second; none if left out", positiveNumber)
       .option("--seed <number>", "of the noise; the same seed gives the same bytes", wholeNumber, 1)
       .option("--seconds <number>", "end after this long", positiveNumber)
       .option("--rate <times>", "1 real time, 4 four times as fast, max as fast as it goes", replayRate, 1)
@@ -66,6 +76,8 @@ async function runRehearse(options: RehearseOptions): Promise<void> {
     seed: options.seed,
     faults: options.fault,
     swimmer: { gait: options.gait, frequencyHz: options.frequency },
+    driveLagS: options.driveLag / 1000,
+    ...(options.cameraRate === undefined ? {} : { syncHz: options.cameraRate }),
     rate: options.rate,
     startMs: startedAt.getTime(),
     ...(options.seconds === undefined ? {} : { durationS: options.seconds }),
@@ -83,6 +95,7 @@ async function runRehearse(options: RehearseOptions): Promise<void> {
           settings: {
             gait: options.gait,
             frequencyHz: options.frequency,
+            driveLagMs: options.driveLag,
             seed: options.seed,
             faults: options.fault,
           },

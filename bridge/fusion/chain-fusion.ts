@@ -275,10 +275,12 @@ export class ChainFusion {
       composeEarth(r, this.orientations, at);
       const aheadS = ageS - this.#offsetsS[sensor]!;
       if (aheadS !== 0) extrapolate(r, this.orientations, at, aheadS, this.#parameters.slopeFadeS);
+      // Going back within what was read predicts nothing.
+      const predictedS = Math.max(0, aheadS);
       // Nothing passing: at the end of a span is often enough.
-      if (aheadS !== 0 || r[Slot.CLIP_COUNT] !== 0 || r[Slot.SPAN] === 0) {
-        this.inclinationSigma[sensor] = inclinationSigma(r, aheadS, this.#parameters);
-        this.headingSigma[sensor] = headingSigma(r, aheadS, this.#parameters);
+      if (predictedS !== 0 || r[Slot.CLIP_COUNT] !== 0 || r[Slot.SPAN] === 0) {
+        this.inclinationSigma[sensor] = inclinationSigma(r, predictedS, this.#parameters);
+        this.headingSigma[sensor] = headingSigma(r, predictedS, this.#parameters);
       }
     } else {
       this.inclinationSigma[sensor] = ANY_SIGMA;

@@ -79,7 +79,8 @@ function addConing(r: Float64Array): void {
 
 /**
  * Carries the quaternion at `outAt` (body -> any frame) on by `aheadS` seconds, or back: with the newest rate and its
- * slope, which fades, so that a long prediction ends in an even turn.
+ * slope, which fades, so that a long prediction ends in an even turn. Going back, the newest rate is that of the middle of
+ * the newest turn.
  */
 export function extrapolate(
   r: Float64Array,
@@ -89,7 +90,8 @@ export function extrapolate(
   fadeS: number,
 ): void {
   const spanS = r[Slot.TRUE_RATE + 3]! - r[Slot.RATE_BEFORE + 3]!;
-  const faded = fadeS * (aheadS + fadeS * Math.expm1(-aheadS / fadeS));
+  const faded =
+    aheadS < 0 ? 0.5 * aheadS * (aheadS + spanS) : fadeS * (aheadS + fadeS * Math.expm1(-aheadS / fadeS));
   const slope = r[Slot.RATES_KNOWN]! < 2 ? 0 : faded / spanS;
   for (let i = 0; i < 3; i++) {
     const newest = r[Slot.TRUE_RATE + i]!;

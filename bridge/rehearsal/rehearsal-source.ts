@@ -53,6 +53,8 @@ export interface RehearsalOptions {
   readonly firstTickUs?: number;
   /** Camera frame pulses a second; none unless given. */
   readonly syncHz?: number;
+  /** How long the body follows after the drive, s; not at all unless given. */
+  readonly driveLagS?: number;
   /** µT, earth axes. */
   readonly earthFieldUT?: readonly number[];
 }
@@ -102,8 +104,14 @@ export class RehearsalSource implements ByteSource {
   }
 
   async #deliver(sink: ByteSink): Promise<void> {
-    const { rig, durationS = Number.POSITIVE_INFINITY, firstTickUs = 0, syncHz = 0 } = this.#options;
-    const hub = new SimulatedHub({ rig, simulated: this.#simulate(), firstTickUs, syncHz });
+    const {
+      rig,
+      durationS = Number.POSITIVE_INFINITY,
+      firstTickUs = 0,
+      syncHz = 0,
+      driveLagS = 0,
+    } = this.#options;
+    const hub = new SimulatedHub({ rig, simulated: this.#simulate(), firstTickUs, syncHz, driveLagS });
     const clock = this.#clock;
     const live = Number.isFinite(this.#rate);
     const beganMs = clock.now();

@@ -4,6 +4,7 @@
  */
 import { NativeEncoder } from "../link/native-encoder.ts";
 import type { HubHello } from "../link/packets.ts";
+import { RAD_PER_DEG } from "../numeric/units.ts";
 import type { Rig } from "../rig/load.ts";
 import { OutPort } from "./out-port.ts";
 import type { SimulatedRig } from "./simulated-rig.ts";
@@ -25,6 +26,8 @@ export interface SimulatedHubOptions {
   readonly firstTickUs: number;
   /** Camera frame pulses a second; 0 for none. */
   readonly syncHz: number;
+  /** How long the body follows after the drive, s. */
+  readonly driveLagS: number;
 }
 
 /** Something the hub does at even intervals. */
@@ -41,6 +44,7 @@ export class SimulatedHub {
   readonly #hello: HubHello;
   readonly #routines: readonly Routine[];
   readonly #restartsS: number[];
+  readonly #driveLagS: number;
 
   #encoder: NativeEncoder;
   #tickOriginS = 0;
@@ -49,10 +53,11 @@ export class SimulatedHub {
   #overrun = false;
   readonly #port: OutPort;
 
-  constructor({ rig, simulated, firstTickUs, syncHz }: SimulatedHubOptions) {
+  constructor({ rig, simulated, firstTickUs, syncHz, driveLagS }: SimulatedHubOptions) {
     this.#rig = rig;
     this.#port = new OutPort(rig.hub.baudRate);
     this.#simulated = simulated;
+    this.#driveLagS = driveLagS;
     this.#tickAtOriginUs = firstTickUs;
     this.#restartsS = simulated.effects.flatMap(({ restartS }) => restartS ?? []).sort((a, b) => a - b);
     this.#hello = {
@@ -67,7 +72,9 @@ export class SimulatedHub {
       every(HELLO_PERIOD_S, (timeS) => this.#queue(timeS, this.#encoder.hello(this.#tickUs(timeS)))),
       every(STATUS_PERIOD_S, (timeS) => this.#sendStatus(timeS)),
       every(1 / rig.hub.rateHz, (timeS) => this.#sendSweep(timeS)),
-      ...(rig.body.kind === "foil" ? [every(REFERENCE_PERIOD_S, (timeS) => this.#sendReference(timeS))] : []),
+      ...(rig.reference !== undefined || rig.body.kind === "foil"
+        ? [every(REFERENCE_PERIOD_S, (timeS) => this.#sendReference(timeS))]
+        : []),
       ...(syncHz > 0 ? [every(1 / syncHz, (timeS) => this.#sendSync(timeS))] : []),
     ];
   }
@@ -129,8 +136,13 @@ export class SimulatedHub {
     this.#queue(timeS, this.#encoder.status(status));
   }
 
+  /** As the drive's own counter has it: the inverse of what the rig file puts right. */
   #sendReference(timeS: number): void {
-    const { yaw, sway } = this.#simulated.driveAt(timeS);
+    const { reference } = this.#rig;
+    const takenS = timeS - (reference?.delayMs ?? 0) / 1000;
+    const drive = this.#simulated.driveAt(takenS + this.#driveLagS);
+    const yaw = drive.yaw * (reference?.yawReversed ? -1 : 1) + (reference?.yawZeroDeg ?? 0) * RAD_PER_DEG;
+    const sway = drive.sway * (reference?.swayReversed ? -1 : 1) + (reference?.swayZeroMm ?? 0) / 1000;
     this.#queue(timeS, this.#encoder.reference({ tickUs: this.#tickUs(timeS), yaw, sway }));
   }
 

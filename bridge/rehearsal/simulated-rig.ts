@@ -67,7 +67,8 @@ export class SimulatedRig {
 
   readonly #sweep: Sweep;
   readonly #kinematics = newKinematics();
-  readonly #noseMotion: PlaneMotion = { behind: newJet(), lateral: newJet(), angle: newJet() };
+  readonly #drivenPlace: WavePlace;
+  readonly #drivenMotion: PlaneMotion = { behind: newJet(), lateral: newJet(), angle: newJet() };
   readonly #felt = new Float64Array(CHANNELS);
   readonly #field = new Float64Array(3);
   readonly #toBody = new Float64Array(4);
@@ -78,6 +79,7 @@ export class SimulatedRig {
     this.#earthFieldUT = earthFieldUT;
     this.#sweep = createSweep(rig.sensors.length);
     this.#places = rig.sensors.map((sensor) => this.swimmer.place(sensor.station));
+    this.#drivenPlace = this.swimmer.place(rig.reference?.station ?? 0);
     this.#truthPlaces = Array.from({ length: TRUTH_POINTS }, (_, i) =>
       this.swimmer.place(i / (TRUTH_POINTS - 1)),
     );
@@ -123,10 +125,10 @@ export class SimulatedRig {
     return this.#sweep;
   }
 
-  /** The drive at the nose: yaw, rad, and sway, m, against the travel axis. */
+  /** The drive, at its place along the body: yaw, rad, and sway, m, against the travel axis. */
   driveAt(timeS: number): { yaw: number; sway: number } {
-    this.swimmer.planeMotion(timeS, this.#truthPlaces[0], this.#noseMotion);
-    return { yaw: this.#noseMotion.angle.value, sway: this.#noseMotion.lateral.value };
+    this.swimmer.planeMotion(timeS, this.#drivenPlace, this.#drivenMotion);
+    return { yaw: this.#drivenMotion.angle.value, sway: this.#drivenMotion.lateral.value };
   }
 
   /** What really happens `timeS` after the start. */
@@ -144,7 +146,7 @@ export class SimulatedRig {
   #read(sensor: number, index: number, sweepS: number): void {
     const sweep = this.#sweep;
     const place = this.#rig.sensors[sensor];
-    const timeS = sweepS + place.samplingOffsetUs * 1e-6;
+    const timeS = sweepS + place.samplingOffsetUs * 1e-6 - this.#rig.models[sensor].delayMs * 1e-3;
     this.#feel(timeS, sensor);
     const at = sensor * CHANNELS;
     this.#sensors[sensor].read(this.#felt, sweep.raw, at);

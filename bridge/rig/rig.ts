@@ -104,6 +104,34 @@ function checkPlaces(sensors: readonly Partial<z.infer<typeof sensorSchema>>[], 
   });
 }
 
+const referenceSchema = z
+  .strictObject({
+    station: z.number().min(0).max(1).default(0).describe("Place along the body that the drive moves."),
+    yawReversed: z.boolean().default(false).describe("The drive counts turns to the right as positive."),
+    yawZeroDeg: z
+      .number()
+      .min(-360)
+      .max(360)
+      .default(0)
+      .describe("The drive's yaw with the body straight ahead; taken off first."),
+    swayReversed: z.boolean().default(false).describe("The drive counts sway to the right as positive."),
+    swayZeroMm: z
+      .number()
+      .min(-100_000)
+      .max(100_000)
+      .default(0)
+      .describe("The drive's sway in the middle; taken off first."),
+    delayMs: z
+      .number()
+      .min(-1000)
+      .max(1000)
+      .default(0)
+      .describe("How long before its tick the drive's reading was taken, where that is known."),
+  })
+  .describe(
+    "The drive that moves the body, where the hub sends its yaw and sway: what is measured is compared with it.",
+  );
+
 export const rigSchema = z.strictObject({
   name: z.string().min(1).max(60).describe("Shown on screen and in exports."),
   notes: z.string().max(2000).default("").describe("Free text."),
@@ -231,6 +259,7 @@ export const rigSchema = z.strictObject({
     })
     .prefault({})
     .describe("How tailbeats are summed up."),
+  reference: referenceSchema.optional(),
   flags: thresholdsSchema
     .partial()
     .prefault({})

@@ -8,6 +8,12 @@ const axisTriple = {
 export const sensorModelSchema = z.strictObject({
   name: z.string().min(1).max(60).describe("In plain words."),
   notes: z.string().max(2000).default("").describe("Where the figures come from."),
+  delayMs: z
+    .number()
+    .min(0)
+    .max(1000)
+    .default(0)
+    .describe("How long after a movement its reading shows it: the delay of the unit's own filter."),
   gyro: z
     .strictObject({
       rangeDegPerS: z.number().positive().describe("Plus and minus this."),

@@ -21,6 +21,7 @@ import type {
   WelcomeMessage,
 } from "../wire/messages.ts";
 import { FrameWriter, Strip } from "./display.ts";
+import { driveMessage } from "./drive-view.ts";
 import { every } from "./every.ts";
 import { StreamServer } from "./server.ts";
 import { tailbeatView } from "./tailbeat-view.ts";
@@ -193,6 +194,8 @@ export class Monitor implements ByteSink {
       const all = merge(interval(STATUS_INTERVAL_MS), this.#link).subscribe(() => {
         this.#watchRecorder();
         out.next(this.#status());
+        const drive = driveMessage(this.#pipeline);
+        if (drive !== null) out.next(drive);
       });
       all.add(this.#flagChanges.pipe(soon).subscribe(() => out.next(this.#flagsMessage())));
       all.add(this.#marks.subscribe(() => out.next(this.#marksMessage())));
@@ -203,7 +206,8 @@ export class Monitor implements ByteSink {
 
   #greeting(): BridgeMessage[] {
     const messages = [this.#welcome(), this.#status(), this.#flagsMessage(), this.#marksMessage()];
-    return [...messages, this.#strip.message()];
+    const drive = driveMessage(this.#pipeline);
+    return [...messages, this.#strip.message(), ...(drive === null ? [] : [drive])];
   }
 
   #welcome(): WelcomeMessage {

@@ -117,6 +117,43 @@ export interface StripMessage {
   readonly highM: readonly (number | null)[];
 }
 
+/** A signal beside the drive's: of the newest window. */
+export interface BesideView {
+  readonly gain: number;
+  /** s, positive when it follows the drive. */
+  readonly lagS: number;
+  /** rad, mean and straight drift taken off. */
+  readonly rmse: number;
+  /** With the lag taken off. */
+  readonly r2: number;
+}
+
+/** The drive's own readings, and the sensors' yaw beside its yaw. With each status, once the drive has given a reading. */
+export interface DriveMessage {
+  readonly type: "drive";
+  /** The newest reading as it came, rad and m; null where the drive gives none. */
+  readonly yaw: number | null;
+  readonly sway: number | null;
+  /** Whether the rig file names the drive: without, there are its raw readings alone. */
+  readonly named: boolean;
+  /** The sensor next to the drive. */
+  readonly nearest: number;
+  /** How gain and lag were found; null while the drive does not move. */
+  readonly method: "whole cycles" | "least squares" | null;
+  /** Cycles in the window; 0 where nothing repeats itself. */
+  readonly cycles: number;
+  /** Length of the window, s. */
+  readonly windowS: number;
+  /** By sensor; null where there is none. */
+  readonly sensors: readonly (BesideView | null)[];
+  /** Over the newest cycle, about its means, rad: the drive's yaw and that of the sensor next to it; area in rad². */
+  readonly loop: {
+    readonly reference: readonly number[];
+    readonly measured: readonly number[];
+    readonly area: number;
+  } | null;
+}
+
 /** A client's message was refused. */
 export interface RefusalMessage {
   readonly type: "refusal";
@@ -129,6 +166,7 @@ export type BridgeMessage =
   | FlagsMessage
   | MarksMessage
   | StripMessage
+  | DriveMessage
   | RefusalMessage;
 
 export interface AddMarkMessage {

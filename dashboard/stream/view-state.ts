@@ -5,6 +5,7 @@
 import { createDisplayFrame, type DisplayFrame, decodeFrame } from "../../bridge/wire/frame.ts";
 import type {
   BridgeMessage,
+  DriveMessage,
   FlagsMessage,
   LinkView,
   MarksMessage,
@@ -25,6 +26,8 @@ export interface ViewState {
   flags: FlagsMessage | null;
   marks: MarksMessage | null;
   strip: StripMessage | null;
+  /** null until the drive has given a reading. */
+  drive: DriveMessage | null;
   /** The bridge's last refusal of a mark that this page sent. Every refusal is an object of its own. */
   refusal: RefusalMessage | null;
   readonly frame: DisplayFrame;
@@ -46,6 +49,7 @@ export function createViewState(): ViewState {
     flags: null,
     marks: null,
     strip: null,
+    drive: null,
     refusal: null,
     frame: createDisplayFrame(0, 0),
     past: new PastMidlines(0),
@@ -93,6 +97,9 @@ export function takeMessage(view: ViewState, message: BridgeMessage): void {
     case "strip":
       view.strip = message;
       break;
+    case "drive":
+      view.drive = message;
+      break;
     case "refusal":
       view.refusal = message;
       break;
@@ -123,6 +130,7 @@ function clearRun(view: ViewState): void {
   view.flags = null;
   view.marks = null;
   view.strip = null;
+  view.drive = null;
   view.past.clear();
   view.runFrameCount = 0;
 }

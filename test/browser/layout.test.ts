@@ -2,7 +2,7 @@
 import type { Page } from "playwright-core";
 import { expect, onTestFinished, test } from "vitest";
 import { FakeBridge } from "../support/fake-bridge.ts";
-import { longNamesScene, type Scene, troubledScene } from "../support/scene.ts";
+import { drivenScene, longNamesScene, type Scene, troubledScene } from "../support/scene.ts";
 import { untilDrawn } from "./page.ts";
 import { useBrowser } from "./use-browser.ts";
 
@@ -92,6 +92,7 @@ const SCENES: readonly [string, () => Scene][] = [
   ["16 sensors", () => troubledScene(16)],
   ["64 sensors", () => troubledScene(64)],
   ["long names", longNamesScene],
+  ["beside its drive, in trouble", () => drivenScene(troubledScene(6))],
 ];
 
 for (const [title, scene] of SCENES) {

@@ -4,7 +4,14 @@ import { join, resolve } from "node:path";
 import type { Browser, Page } from "playwright-core";
 import { launchChromium } from "../support/chromium.ts";
 import { FakeBridge, startPageWithoutStream } from "../support/fake-bridge.ts";
-import { healthyScene, longNamesScene, type Scene, sixAxisScene, troubledScene } from "../support/scene.ts";
+import {
+  drivenScene,
+  healthyScene,
+  longNamesScene,
+  type Scene,
+  sixAxisScene,
+  troubledScene,
+} from "../support/scene.ts";
 import { type Light, newPage, openAddress, untilDrawn, untilLink } from "./page.ts";
 
 const SIZES = [
@@ -39,6 +46,8 @@ const SHOTS: readonly Shot[] = [
   { title: "64-sensors", scene: () => ({ ...troubledScene(64), rigName: "Long chain", lengthM: 2.4 }) },
   { title: "long-names", scene: longNamesScene },
   { title: "six-axis-heading-free", scene: () => sixAxisScene() },
+  { title: "driven", scene: drivenScene },
+  { title: "driven-trouble", scene: () => drivenScene(troubledScene(6)) },
   { title: "connecting" },
   { title: "silent", next: afterwards("silent", "No bytes from the hub.") },
   { title: "closed", next: afterwards("closed", "The port /dev/ttyUSB0 was unplugged.") },

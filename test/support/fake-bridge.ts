@@ -142,7 +142,8 @@ export class FakeBridge {
       flowMPerS: FLOW_M_PER_S,
       runId: `invented-${this.#run}`,
     } as const;
-    return [welcome, this.#status(), this.#flags(), this.#marks(), this.#strip()];
+    const messages = [welcome, this.#status(), this.#flags(), this.#marks(), this.#strip()];
+    return this.#scene.drive === null ? messages : [...messages, this.#scene.drive];
   }
 
   #status(): BridgeMessage {

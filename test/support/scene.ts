@@ -4,6 +4,7 @@ import { CONDITION, TRUST } from "../../bridge/sweep.ts";
 import type { Flag, FlagKind, Mark, Severity } from "../../bridge/wire/flag.ts";
 import { type DoubtWord, GAIT_NUMBERS, type GaitNumber } from "../../bridge/wire/gait.ts";
 import type {
+  DriveMessage,
   GaitNumberView,
   LinkView,
   SensorView,
@@ -47,6 +48,8 @@ export interface Scene
   readonly open: readonly Flag[];
   readonly ended: readonly Flag[];
   readonly marks: readonly Mark[];
+  /** null where the hub sends nothing of a drive. */
+  readonly drive: DriveMessage | null;
   /** Sensor `i` at a hub time. */
   readonly reading: (i: number, timeS: number) => Reading;
 }
@@ -80,6 +83,7 @@ export function healthyScene(count = 6): Scene {
     open: [],
     ended: [],
     marks: [],
+    drive: null,
     reading: healthyReading,
   };
 }
@@ -228,6 +232,38 @@ export function troubledScene(count = 6): Scene {
       if (i === 4) return { ...healthy, gyro: 0, trust: TRUST.CLIPPED, conditions: CONDITION.GYRO_CLIPPED };
       if (i !== 3) return healthy;
       return { ...healthy, field: 0.31, trust: TRUST.HEADING_UNAIDED, conditions: CONDITION.MAG_DISTURBED };
+    },
+  };
+}
+
+/** A drive at the leading edge, that the first sensor follows by 31 ms. */
+export function drivenScene(scene: Scene = healthyScene()): Scene {
+  const angles = Array.from({ length: 46 }, (_, i) => (2 * Math.PI * i) / 46);
+  const amplitude = 0.157;
+  const gain = 0.93;
+  const lagAngle = 2 * Math.PI * scene.wave.frequencyHz * 0.031;
+  return {
+    ...scene,
+    drive: {
+      type: "drive",
+      yaw: 0.12,
+      sway: -0.0043,
+      named: true,
+      nearest: 0,
+      method: "whole cycles",
+      cycles: 4,
+      windowS: 2.67,
+      sensors: scene.sensors.map((_, i) => ({
+        gain: gain + i / 4,
+        lagS: 0.031 + 0.1 * i,
+        rmse: 0.032,
+        r2: 0.998,
+      })),
+      loop: {
+        reference: angles.map((angle) => amplitude * Math.sin(angle)),
+        measured: angles.map((angle) => gain * amplitude * Math.sin(angle - lagAngle)),
+        area: Math.PI * gain * amplitude ** 2 * Math.sin(lagAngle),
+      },
     },
   };
 }

@@ -12,6 +12,7 @@ const G = 9.80665;
 export const NINE_AXIS: SensorModel = {
   name: "nine-axis",
   notes: "",
+  delayMs: 0,
   gyro: { rangeDegPerS: 1000, bits: 16, noiseDegPerSPerSqrtHz: 0.006, biasDegPerS: 1 },
   accel: { rangeG: 8, bits: 16, noiseMicroGPerSqrtHz: 150, biasMilliG: 20 },
   mag: { rangeUT: 1200, bits: 16, noiseUT: 0.4, rateHz: 100 },

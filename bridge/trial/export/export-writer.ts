@@ -4,6 +4,7 @@
  */
 import { existsSync, mkdirSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
+import type { Compared } from "../../drive/drive-comparison.ts";
 import { BendwatchError } from "../../errors.ts";
 import type { LinkCounters } from "../../link/packets.ts";
 import { toAngles } from "../../numeric/angles.ts";
@@ -12,9 +13,23 @@ import type { Rig } from "../../rig/load.ts";
 import type { Flag, Mark } from "../../wire/flag.ts";
 import { TRUST_WORDS } from "../../wire/trust.ts";
 import { DATA_PACKAGE_FILE, describePackage, SOFTWARE_PREFIX, SUMMARY_FILE } from "./data-package.ts";
+import { FrameMidlines } from "./frames.ts";
 import { type ExportedBout, type ExportedCycle, GAIT_TABLES, GaitTables } from "./gait-tables.ts";
 import { attempt, TableFile } from "./table-file.ts";
-import { DECIMALS, FLAGS, MARKS, MIDLINE, SENSORS, STATION_COUNT, SYNC, TABLES } from "./tables.ts";
+import {
+  DECIMALS,
+  DRIVE,
+  FLAGS,
+  FRAMES,
+  MARKS,
+  MIDLINE,
+  REFERENCE,
+  SENSORS,
+  STATION_COUNT,
+  SYNC,
+  TABLES,
+  type Table,
+} from "./tables.ts";
 
 export interface ExportOptions {
   readonly folder: string;
@@ -32,6 +47,8 @@ export interface ExportSummary {
   readonly notes: string;
   readonly lostSweeps: number;
   readonly counters: Readonly<LinkCounters>;
+  /** Sensors and stations against the drive; none where the rig file names no drive. */
+  readonly drive?: readonly Compared[];
   /** Settings of the recording and of the export. */
   readonly settings: Record<string, unknown>;
 }
@@ -42,11 +59,13 @@ export class ExportWriter {
   readonly #sensors: TableFile;
   readonly #gait: GaitTables;
   readonly #marks: TableFile;
-  #sync: TableFile | null = null;
+  /** Tables that are there only when they have rows. */
+  readonly #occasional = new Map<Table, TableFile>();
+  readonly #frames: FrameMidlines;
   /** Newest state of each flag, by id. */
   readonly #flags = new Map<number, Flag>();
   readonly #angles = new Float64Array(3);
-  readonly #counts = { sweeps: 0, tailbeats: 0, marks: 0, syncEdges: 0 };
+  readonly #counts = { sweeps: 0, tailbeats: 0, marks: 0, syncEdges: 0, referenceSweeps: 0 };
   #firstS = Number.NaN;
   #lastS = Number.NaN;
 
@@ -62,6 +81,9 @@ export class ExportWriter {
     this.#sensors = new TableFile(folder, SENSORS);
     this.#gait = new GaitTables(folder, options.rig.body.lengthMm / 1000);
     this.#marks = new TableFile(folder, MARKS);
+    this.#frames = new FrameMidlines(options.rig.hub.rateHz, 3 * STATION_COUNT, (timeS, edge, midlineM) =>
+      this.#frameRow(timeS, edge, midlineM),
+    );
   }
 
   /**
@@ -85,6 +107,7 @@ export class ExportWriter {
     cells.number(timeS, DECIMALS.time);
     for (let i = 0; i < STATION_COUNT * 3; i++) cells.number(midlineM[i]! * 1000, DECIMALS.mm);
     this.#midline.endRow();
+    this.#frames.sweep(timeS, midlineM);
     for (let sensor = 0; sensor < trust.length; sensor++) {
       this.#sensorRow(timeS, sensor, orientations, trust[sensor]!, bridged[sensor]!);
     }
@@ -133,18 +156,64 @@ export class ExportWriter {
     this.#marks.endRow();
   }
 
-  /** A camera frame pulse; the table is there only when one came. */
+  /** A camera frame pulse. */
   sync(timeS: number, edge: number): void {
     this.#counts.syncEdges++;
-    this.#sync ??= new TableFile(this.#options.folder, SYNC);
-    this.#sync.cells.number(timeS, DECIMALS.time);
-    this.#sync.cells.number(edge, 0);
-    this.#sync.endRow();
+    const file = this.#table(SYNC);
+    file.cells.number(timeS, DECIMALS.time);
+    file.cells.number(edge, 0);
+    file.endRow();
+    this.#frames.sync(timeS, edge);
+  }
+
+  #frameRow(timeS: number, edge: number, midlineM: Float64Array | null): void {
+    const file = this.#table(FRAMES);
+    file.cells.number(timeS, DECIMALS.time);
+    file.cells.number(edge, 0);
+    for (let i = 0; i < 3 * STATION_COUNT; i++)
+      file.cells.number((midlineM?.[i] ?? Number.NaN) * 1000, DECIMALS.mm);
+    file.endRow();
+  }
+
+  /** What the drive did at a sweep's time: rad and m, NaN where it gives none. */
+  reference(timeS: number, yaw: number, sway: number): void {
+    this.#counts.referenceSweeps++;
+    const file = this.#table(REFERENCE);
+    file.cells.number(timeS, DECIMALS.time);
+    file.cells.number(yaw * DEG_PER_RAD, DECIMALS.degrees);
+    file.cells.number(sway * 1000, DECIMALS.mm);
+    file.endRow();
+  }
+
+  #driveRow({ sensor, station, against, gain, lagS, rmse, rmseLagRemoved, r2 }: Compared): void {
+    const file = this.#table(DRIVE);
+    const { cells } = file;
+    const degrees = against === "yaw" ? DEG_PER_RAD : Number.NaN;
+    const mm = against === "sway" ? 1000 : Number.NaN;
+    cells.text(sensor < 0 ? "" : this.#options.rig.sensors[sensor]!.name);
+    cells.number(station, DECIMALS.ratio);
+    cells.text(against);
+    cells.number(gain, DECIMALS.ratio);
+    cells.number(lagS * 1000, DECIMALS.ms);
+    cells.number(rmse * degrees, DECIMALS.degrees);
+    cells.number(rmseLagRemoved * degrees, DECIMALS.degrees);
+    cells.number(rmse * mm, DECIMALS.mm);
+    cells.number(rmseLagRemoved * mm, DECIMALS.mm);
+    cells.number(r2, DECIMALS.ratio);
+    file.endRow();
+  }
+
+  #table(table: Table): TableFile {
+    const file = this.#occasional.get(table) ?? new TableFile(this.#options.folder, table);
+    this.#occasional.set(table, file);
+    return file;
   }
 
   /** Writes the flags, the summary and the description; the export is complete. @throws BendwatchError EXPORT_FAILED */
   finish(summary: ExportSummary): void {
     const { folder, trialName, rig, softwareVersion } = this.#options;
+    this.#frames.finish();
+    for (const row of summary.drive ?? []) this.#driveRow(row);
     const flags = this.#writeFlags();
     const files = [
       this.#midline,
@@ -152,7 +221,7 @@ export class ExportWriter {
       flags,
       ...this.#gait.files,
       this.#marks,
-      ...(this.#sync ? [this.#sync] : []),
+      ...TABLES.flatMap((table) => this.#occasional.get(table) ?? []),
     ];
     const written = files.map((file) => file.finish());
     writeJson(join(folder, SUMMARY_FILE), this.#summary(summary));
@@ -198,10 +267,28 @@ export class ExportWriter {
       gait: this.#gait.summary(),
       flagsByKind,
       packets: summary.counters,
+      drive: driveSummary(summary.drive ?? []),
       settings: summary.settings,
       rig,
     };
   }
+}
+
+/** The trial's figures by sensor, for who reads no tables; null where there is nothing to compare. */
+function driveSummary(drive: readonly Compared[]): object | null {
+  if (drive.length === 0) return null;
+  const known = (value: number) => (Number.isFinite(value) ? value : null);
+  return {
+    sensors: drive
+      .filter(({ sensor }) => sensor >= 0)
+      .map(({ station, gain, lagS, rmse, r2 }) => ({
+        station,
+        gain: known(gain),
+        lagMs: known(lagS * 1000),
+        rmseDeg: known(rmse * DEG_PER_RAD),
+        r2: known(r2),
+      })),
+  };
 }
 
 /** Makes the folder fit to write into, and takes out what an earlier export left. */

@@ -6,6 +6,8 @@
  *     mm           3   1 µm, far below what the method resolves
  *     quaternion   7   rounding turns an orientation by at most 0.00002 degrees
  *     degrees      3   finer than any sensor's noise
+ *     ratio        4   gains and correlations of real trials differ in the second
+ *     ms           3   1 µs, the hub's tick
  */
 import { TRUST_WORDS } from "../../wire/trust.ts";
 
@@ -20,7 +22,7 @@ export interface Column {
   readonly description: string;
 }
 
-export const DECIMALS = { time: 6, mm: 3, quaternion: 7, degrees: 3 } as const;
+export const DECIMALS = { time: 6, mm: 3, quaternion: 7, degrees: 3, ratio: 4, ms: 3 } as const;
 
 /** Stations of the midline table, evenly spaced from nose to tail tip. */
 export const STATION_COUNT = 41;
@@ -58,21 +60,20 @@ export interface Table {
   readonly columns: readonly Column[];
 }
 
+const midlineColumns: readonly Column[] = Array.from({ length: STATION_COUNT }, (_, i) =>
+  AXES.map(([axis, direction]) =>
+    number(
+      `${axis}_${String(i).padStart(3, "0")}`,
+      "mm",
+      `How far ${direction} of the nose the midline is at ${((100 * i) / (STATION_COUNT - 1)).toFixed(1)} % of body length.`,
+    ),
+  ),
+).flat();
+
 export const MIDLINE: Table = {
   name: "midline",
   description: "Where the midline is, one row a sweep: earth axes, the nose at the origin.",
-  columns: [
-    hubTime,
-    ...Array.from({ length: STATION_COUNT }, (_, i) =>
-      AXES.map(([axis, direction]) =>
-        number(
-          `${axis}_${String(i).padStart(3, "0")}`,
-          "mm",
-          `How far ${direction} of the nose the midline is at ${((100 * i) / (STATION_COUNT - 1)).toFixed(1)} % of body length.`,
-        ),
-      ),
-    ).flat(),
-  ],
+  columns: [hubTime, ...midlineColumns],
 };
 
 export const SENSORS: Table = {
@@ -129,5 +130,41 @@ export const SYNC: Table = {
   columns: [hubTime, integer("edge", "The hub's count of pulses.")],
 };
 
+export const FRAMES: Table = {
+  name: "frames",
+  description:
+    "The midline at each camera frame pulse, interpolated between sweeps (cubic); cells are empty where sweeps are missing around the pulse.",
+  columns: [hubTime, integer("edge", "The hub's count of pulses."), ...midlineColumns],
+};
+
+export const REFERENCE: Table = {
+  name: "reference",
+  description:
+    "What the drive did at each sweep's time, interpolated between its readings (cubic), with the rig file's signs, zeros and delay put right; sweeps where its readings are missing are left out.",
+  columns: [
+    hubTime,
+    number("yaw_deg", "deg", "The drive's yaw; left positive."),
+    number("sway_mm", "mm", "The drive's sway; left positive."),
+  ],
+};
+
+export const DRIVE: Table = {
+  name: "drive",
+  description:
+    "The body beside its drive over the whole trial: each sensor's yaw against the drive's yaw, and the midline's displacement across the travel axis, at stations, against the drive's sway. Mean and straight drift of each window are taken off.",
+  columns: [
+    text("sensor", "Name of the sensor; empty for the midline."),
+    number("station", "1", "Place along the body, 0 nose to 1 tail tip."),
+    text("against", "What of the drive: yaw or sway."),
+    number("gain", "1", "Amplitude over the drive's."),
+    number("lag_ms", "ms", "How long after the drive; negative before it."),
+    number("rmse_deg", "deg", "Root mean square of the sensor's yaw minus the drive's."),
+    number("rmse_lag_removed_deg", "deg", "The same with the lag taken off."),
+    number("rmse_mm", "mm", "Root mean square of the displacement minus the drive's sway."),
+    number("rmse_lag_removed_mm", "mm", "The same with the lag taken off."),
+    number("r2", "1", "Square of the correlation coefficient, with the lag taken off."),
+  ],
+};
+
 /** All but those of the gait (gait-tables.ts). */
-export const TABLES: readonly Table[] = [MIDLINE, SENSORS, FLAGS, MARKS, SYNC];
+export const TABLES: readonly Table[] = [MIDLINE, SENSORS, FLAGS, MARKS, SYNC, FRAMES, REFERENCE, DRIVE];
