@@ -78,6 +78,9 @@ describe("Tabular Data Resource", () => {
       "bouts",
       "marks",
       "sync",
+      "frames",
+      "reference",
+      "drive",
     ]);
     for (const { schema } of tables) expect(schema!.fields.length).toBeGreaterThan(0);
   });

@@ -122,7 +122,54 @@ describe("tables", () => {
   test("marks and sync hold what was told", () => {
     const folder = exported();
     expect(table(folder, "marks")).toEqual([{ time_s: "0.100000", text: 'said "go"', from: "operator" }]);
-    expect(table(folder, "sync")).toEqual([{ time_s: "0.030000", edge: "17" }]);
+    expect(table(folder, "sync")).toEqual([
+      { time_s: "0.030000", edge: "17" },
+      { time_s: "0.500000", edge: "18" },
+    ]);
+  });
+
+  test("frames has the midline of each pulse, empty where no sweeps are around", () => {
+    const rows = table(exported(), "frames");
+    expect(rows).toHaveLength(2);
+    expect(rows[0]).toMatchObject({ edge: "17", x_mm_040: "-640.000", y_mm_040: "12.000" });
+    expect(rows[1]).toMatchObject({ time_s: "0.500000", edge: "18", x_mm_000: "", z_mm_040: "" });
+  });
+
+  test("reference and drive are in degrees, mm and ms, with empty cells for what is not known", () => {
+    const folder = exported();
+    expect(table(folder, "reference")).toEqual([
+      { time_s: "0.020000", yaw_deg: "30.000", sway_mm: "-4.100" },
+      { time_s: "0.030000", yaw_deg: "", sway_mm: "0.000" },
+    ]);
+    expect(table(folder, "drive")).toEqual([
+      {
+        sensor: "S2",
+        station: "0.2400",
+        against: "yaw",
+        gain: "0.9877",
+        lag_ms: "12.346",
+        rmse_deg: "0.573",
+        rmse_lag_removed_deg: "0.115",
+        rmse_mm: "",
+        rmse_lag_removed_mm: "",
+        r2: "0.9900",
+      },
+      {
+        sensor: "",
+        station: "1.0000",
+        against: "sway",
+        gain: "",
+        lag_ms: "",
+        rmse_deg: "",
+        rmse_lag_removed_deg: "",
+        rmse_mm: "10.000",
+        rmse_lag_removed_mm: "2.000",
+        r2: "0.9900",
+      },
+    ]);
+    const { sensors } = json(folder, "summary.json").drive;
+    expect(sensors).toHaveLength(1);
+    expect(sensors[0]).toMatchObject({ station: 0.24, gain: 0.98765, r2: 0.99 });
   });
 
   test("a long trial is whole although it is written in pieces", () => {

@@ -14,11 +14,17 @@ import { temporaryFolder } from "../fixtures.ts";
 export const rig = loadRig("ribbon-foil");
 export const SENSORS = rig.sensors.length;
 
+const BESIDE = { rmse: 0.01, rmseLagRemoved: 0.002, r2: 0.99 };
+
 export const summary: ExportSummary = {
   startedAt: "2026-06-01T09:30:00.000Z",
   notes: "",
   lostSweeps: 5,
   counters: { ...emptyCounters(), good: 20 },
+  drive: [
+    { ...BESIDE, sensor: 1, station: 0.24, against: "yaw", gain: 0.98765, lagS: 0.0123456 },
+    { ...BESIDE, sensor: -1, station: 1, against: "sway", gain: Number.NaN, lagS: Number.NaN },
+  ],
   settings: { heading: "magnetic" },
 };
 
@@ -99,6 +105,8 @@ export function writeSweeps(writer: ExportWriter, count: number): void {
 /** All tables, some of them with awkward texts. */
 export function writeAll(folder: string, overwrite = false): void {
   const writer = createWriter(folder, overwrite);
+  writer.sync(0.03, 17);
+  writer.sync(0.5, 18);
   writeSweeps(writer, 20);
   writer.flag(flag);
   writer.flag({ ...flag, id: 1, kind: "link silent", sensor: -1, detail: "=gone, 0.4 s" });
@@ -106,7 +114,8 @@ export function writeAll(folder: string, overwrite = false): void {
   for (const cycle of cycles()) writer.beat(cycle);
   writer.bout(bout());
   writer.mark({ timeS: 0.1, text: 'said "go"', from: "operator" });
-  writer.sync(0.03, 17);
+  writer.reference(0.02, Math.PI / 6, -0.0041);
+  writer.reference(0.03, Number.NaN, 0);
   writer.finish(summary);
 }
 
