@@ -212,7 +212,7 @@ test("the summary tells durations, rates, counts, losses and flags by kind", () 
         },
       },
     },
-    counts: { sweeps: 20, tailbeats: 2, marks: 1, syncEdges: 1, flags: 2 },
+    counts: { sweeps: 20, tailbeats: 2, marks: 1, syncEdges: 2, referenceSweeps: 2, flags: 2 },
     lostSweeps: 5,
     lostShare: 0.2,
     flagsByKind: { "low headroom": 1, "link silent": 1 },
@@ -253,7 +253,8 @@ describe("the description", () => {
       expect(schema.fields.map(({ name }: { name: string }) => name)).toEqual(header);
       for (const field of schema.fields) {
         expect(field.description).not.toBe("");
-        if (field.type === "number") expect(["s", "mm", "deg", "Hz", "m/s", "%", "1"]).toContain(field.unit);
+        if (field.type === "number")
+          expect(["s", "mm", "deg", "Hz", "m/s", "ms", "%", "1"]).toContain(field.unit);
       }
     }
   });
