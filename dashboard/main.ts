@@ -63,6 +63,7 @@ const lanes = new Stage(element("lanes"), lanesRenderer, [
 const stripHost = element("lane-strip");
 const strip = new Stage(stripHost, stripRenderer, [{ element: stripHost, lane: new Strip(stripHost) }]);
 
+const sidePanel = document.querySelector<HTMLElement>(".side-panel")!;
 const header = new Header();
 const sensors = new SensorColumns(element("sensors"));
 const tailbeat = new TailbeatPanel(element("tailbeat"));
@@ -156,7 +157,14 @@ function updateText(nowMs: number): void {
   sensors.update(view);
   markField.update(view);
   showHeading();
+  letKeysScroll();
   document.body.dataset.live = String(isLive(view));
+}
+
+/** A panel longer than the page scrolls, by keyboard too; one that is not needs no stop of the Tab key. */
+function letKeysScroll(): void {
+  if (sidePanel.scrollHeight > sidePanel.clientHeight) sidePanel.tabIndex = 0;
+  else sidePanel.removeAttribute("tabindex");
 }
 
 function showHeading(): void {

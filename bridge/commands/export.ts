@@ -6,30 +6,34 @@ import { ExportWriter } from "../trial/export/export-writer.ts";
 import { type Manifest, readManifest } from "../trial/manifest.ts";
 import type { ReadEnd } from "../trial/reader.ts";
 import { softwareVersion } from "../version.ts";
+import { inWater, type WaterOptions, withWaterOptions } from "./options.ts";
 import { trialFolder } from "./places.ts";
 import { runThrough } from "./run-through.ts";
 
-interface ExportCommandOptions {
+interface ExportCommandOptions extends WaterOptions {
   to: string;
   overwrite: boolean;
 }
 
 export function addExport(program: Command): void {
-  program
-    .command("export")
-    .description(
-      "Write a trial's midline, sensors, flags, gait numbers, marks, camera frames and drive as CSV with datapackage.json.",
-    )
-    .argument("<trial>", "by name under recordings/ or by path")
-    .requiredOption("--to <folder>", "folder for the tables")
-    .option("--overwrite", "write into a folder that holds other files too", false)
-    .action(runExport);
+  withWaterOptions(
+    program
+      .command("export")
+      .description(
+        "Write a trial's midline, sensors, flags, gait numbers, marks, camera frames and drive as CSV with datapackage.json.",
+      )
+      .argument("<trial>", "by name under recordings/ or by path")
+      .requiredOption("--to <folder>", "folder for the tables")
+      .option("--overwrite", "write into a folder that holds other files too", false),
+  ).action(runExport);
 }
 
-function runExport(trial: string, { to, overwrite }: ExportCommandOptions): void {
+function runExport(trial: string, options: ExportCommandOptions): void {
+  const { to, overwrite } = options;
   const folder = trialFolder(trial);
   const manifest = readManifest(folder);
-  const { sweeps, end } = exportTrial(folder, manifest, to, overwrite);
+  const rig = inWater(manifest.rig, options);
+  const { sweeps, end } = exportTrial(folder, { ...manifest, rig }, to, overwrite);
   console.log(`${sweeps} sweeps written to ${to}`);
   if (end !== null && end.kind !== "complete") {
     console.error(

@@ -7,11 +7,17 @@ import { loadRig, type Rig } from "../rig/load.ts";
 import { nextTrialName } from "../trial/names.ts";
 import { TrialRecorder } from "../trial/recorder.ts";
 import { softwareVersion } from "../version.ts";
-import { type ServeOptions, withServeOptions } from "./options.ts";
+import {
+  inWater,
+  type ServeOptions,
+  type WaterOptions,
+  withServeOptions,
+  withWaterOptions,
+} from "./options.ts";
 import { recordingsFolder, trialFolder } from "./places.ts";
 import { watch } from "./watch.ts";
 
-interface LiveOptions extends ServeOptions {
+interface LiveOptions extends ServeOptions, WaterOptions {
   rig: string;
   port?: string;
   usbSerial?: string;
@@ -22,20 +28,22 @@ interface LiveOptions extends ServeOptions {
 
 export function addLive(program: Command): void {
   withServeOptions(
-    program
-      .command("live")
-      .description("Watch the hub on a serial port, and record from the first byte.")
-      .requiredOption("--rig <name>", "rig file, by name under config/rigs or by path")
-      .option("--port <path>", "serial port, instead of the rig file's")
-      .option("--usb-serial <number>", "serial port by its adapter's USB serial number")
-      .option("--record <trial>", "name of the trial; made from the date if left out")
-      .option("--no-record", "watch without recording")
-      .option("--notes <text>", "kept with the trial", ""),
+    withWaterOptions(
+      program
+        .command("live")
+        .description("Watch the hub on a serial port, and record from the first byte.")
+        .requiredOption("--rig <name>", "rig file, by name under config/rigs or by path")
+        .option("--port <path>", "serial port, instead of the rig file's")
+        .option("--usb-serial <number>", "serial port by its adapter's USB serial number")
+        .option("--record <trial>", "name of the trial; made from the date if left out")
+        .option("--no-record", "watch without recording")
+        .option("--notes <text>", "kept with the trial", ""),
+    ),
   ).action(runLive);
 }
 
 async function runLive(options: LiveOptions): Promise<void> {
-  const rig = loadRig(options.rig);
+  const rig = inWater(loadRig(options.rig), options);
   const startedAt = new Date();
   const source = new SerialSource({ port: portOf(options, rig), baudRate: rig.hub.baudRate });
   const recorder = options.record === false ? null : await record(options, rig, startedAt, source.label);

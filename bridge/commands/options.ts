@@ -1,5 +1,6 @@
 /** Options that several commands share, and how their text becomes values. */
 import { type Command, InvalidArgumentError } from "commander";
+import type { Rig } from "../rig/load.ts";
 
 export interface ServeOptions {
   host: string;
@@ -13,6 +14,35 @@ export function withServeOptions(command: Command): Command {
     .option("--host <address>", "address to listen on; beyond this machine a token is needed", "127.0.0.1")
     .option("--http-port <number>", "port of the dashboard; 0 takes a free one", wholeNumber, 4270)
     .option("--token <text>", "what viewers must show, at least 12 characters");
+}
+
+/** What is measured on the day, and may differ from the rig file. */
+export interface WaterOptions {
+  flow?: number;
+  waterTemperature?: number;
+}
+
+/** Adds the water's speed and temperature. */
+export function withWaterOptions(command: Command): Command {
+  return command
+    .option("--flow <m/s>", "speed of the water past the body, instead of the rig's", within(0, 30))
+    .option("--water-temperature <°C>", "instead of the rig's", within(-2, 45));
+}
+
+/** The rig in the water that the options tell of. */
+export function inWater(rig: Rig, { flow, waterTemperature }: WaterOptions): Rig {
+  const water = { ...rig.water };
+  if (flow !== undefined) water.flowMPerS = flow;
+  if (waterTemperature !== undefined) water.temperatureC = waterTemperature;
+  return { ...rig, water };
+}
+
+function within(least: number, most: number): (text: string) => number {
+  return (text) => {
+    const value = text.trim() === "" ? Number.NaN : Number(text);
+    if (value >= least && value <= most) return value;
+    throw new InvalidArgumentError(`expected a number from ${least} to ${most}.`);
+  };
 }
 
 export function wholeNumber(text: string): number {

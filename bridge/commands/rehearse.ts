@@ -9,17 +9,20 @@ import { softwareVersion } from "../version.ts";
 import {
   collect,
   finiteNumber,
+  inWater,
   positiveNumber,
   replayRate,
   type ServeOptions,
+  type WaterOptions,
   wholeNumber,
   withServeOptions,
+  withWaterOptions,
 } from "./options.ts";
 import { trialFolder } from "./places.ts";
 import { recordOnly } from "./record-only.ts";
 import { watch } from "./watch.ts";
 
-interface RehearseOptions extends ServeOptions {
+interface RehearseOptions extends ServeOptions, WaterOptions {
   rig: string;
   fault: string[];
   gait: "carangiform" | "anguilliform";
@@ -39,37 +42,39 @@ export function addRehearse(program: Command): void {
     ([kind, { of, does }]) => `  ${faultForm(kind, of)}  ${does}`,
   );
   withServeOptions(
-    program
-      .command("rehearse")
-      .description("Watch a simulated swimmer through real packets, with faults on request.")
-      .requiredOption("--rig <name>", "rig file, by name under config/rigs or by path")
-      .option("--fault <fault>", "a fault, see below; may be given several times", collect, [])
-      .addOption(
-        new Option("--gait <name>", "how the body swims")
-          .choices(["carangiform", "anguilliform"])
-          .default("carangiform"),
-      )
-      .option("--frequency <hz>", "tailbeats a second", positiveNumber, 1.1)
-      .option(
-        "--drive-lag <ms>",
-        "how long the body follows after its drive, ms; may be negative",
-        finiteNumber,
-        0,
-      )
-      .option("--camera-rate <hz>", "camera frame pulses a second; none if left out", positiveNumber)
-      .option("--seed <number>", "of the noise; the same seed gives the same bytes", wholeNumber, 1)
-      .option("--seconds <number>", "end after this long", positiveNumber)
-      .option("--rate <times>", "1 real time, 4 four times as fast, max as fast as it goes", replayRate, 1)
-      .option("--record <trial>", "keep it as a trial")
-      .option("--notes <text>", "kept with the trial", "")
-      .option("--no-dashboard", "only record; needs --record and --seconds"),
+    withWaterOptions(
+      program
+        .command("rehearse")
+        .description("Watch a simulated swimmer through real packets, with faults on request.")
+        .requiredOption("--rig <name>", "rig file, by name under config/rigs or by path")
+        .option("--fault <fault>", "a fault, see below; may be given several times", collect, [])
+        .addOption(
+          new Option("--gait <name>", "how the body swims")
+            .choices(["carangiform", "anguilliform"])
+            .default("carangiform"),
+        )
+        .option("--frequency <hz>", "tailbeats a second", positiveNumber, 1.1)
+        .option(
+          "--drive-lag <ms>",
+          "how long the body follows after its drive, ms; may be negative",
+          finiteNumber,
+          0,
+        )
+        .option("--camera-rate <hz>", "camera frame pulses a second; none if left out", positiveNumber)
+        .option("--seed <number>", "of the noise; the same seed gives the same bytes", wholeNumber, 1)
+        .option("--seconds <number>", "end after this long", positiveNumber)
+        .option("--rate <times>", "1 real time, 4 four times as fast, max as fast as it goes", replayRate, 1)
+        .option("--record <trial>", "keep it as a trial")
+        .option("--notes <text>", "kept with the trial", "")
+        .option("--no-dashboard", "only record; needs --record and --seconds"),
+    ),
   )
     .addHelpText("after", `\nFaults (start and duration in seconds):\n${faults.join("\n")}`)
     .action(runRehearse);
 }
 
 async function runRehearse(options: RehearseOptions): Promise<void> {
-  const rig = loadRig(options.rig);
+  const rig = inWater(loadRig(options.rig), options);
   const startedAt = new Date();
   const source = new RehearsalSource({
     rig,

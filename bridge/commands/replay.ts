@@ -2,23 +2,37 @@
 import type { Command } from "commander";
 import { readManifest } from "../trial/manifest.ts";
 import { TrialSource } from "../trial/trial-source.ts";
-import { replayRate, type ServeOptions, withServeOptions } from "./options.ts";
+import {
+  inWater,
+  replayRate,
+  type ServeOptions,
+  type WaterOptions,
+  withServeOptions,
+  withWaterOptions,
+} from "./options.ts";
 import { trialFolder } from "./places.ts";
 import { watch } from "./watch.ts";
 
-interface ReplayCommandOptions extends ServeOptions {
+interface ReplayCommandOptions extends ServeOptions, WaterOptions {
   rate: number | "max";
   loop: boolean;
 }
 
 export function addReplay(program: Command): void {
   withServeOptions(
-    program
-      .command("replay")
-      .description("Watch a recorded trial.")
-      .argument("<trial>", "by name under recordings/ or by path")
-      .option("--rate <times>", "1 as recorded, 4 four times as fast, max as fast as it goes", replayRate, 1)
-      .option("--loop", "start over at the end", false),
+    withWaterOptions(
+      program
+        .command("replay")
+        .description("Watch a recorded trial.")
+        .argument("<trial>", "by name under recordings/ or by path")
+        .option(
+          "--rate <times>",
+          "1 as recorded, 4 four times as fast, max as fast as it goes",
+          replayRate,
+          1,
+        )
+        .option("--loop", "start over at the end", false),
+    ),
   ).action(runReplay);
 }
 
@@ -32,7 +46,11 @@ async function runReplay(trial: string, options: ReplayCommandOptions): Promise<
     onLoop: () => startOver(),
   });
   const startedAt = new Date(manifest.startedAt);
-  await watch({ rig: manifest.rig, source, recorder: null, startedAt }, options, (monitor) => {
-    startOver = () => monitor.startOver();
-  });
+  await watch(
+    { rig: inWater(manifest.rig, options), source, recorder: null, startedAt },
+    options,
+    (monitor) => {
+      startOver = () => monitor.startOver();
+    },
+  );
 }

@@ -100,7 +100,7 @@ const SHAPES: readonly RowShape[] = [
 
 /** Of a frequency, for the large number. */
 export const FREQUENCY_MEANING =
-  "beats a second. A steady fish swims about 0.75 of frequency times 1 - 4/3 body lengths a second (Bainbridge 1958)";
+  "beats a second; a steady fish at more than 5 Hz swims about 0.75 times that, less 1, body lengths a second (Bainbridge 1958)";
 
 /** The rows of a beat; "–" where a number is not known. */
 export function gaitRows(numbers: TailbeatView["numbers"] | undefined, lengthM: number): GaitRow[] {
