@@ -17,7 +17,7 @@ export const ADVICE = {
   TRIAL_UNREADABLE: "Run `bendwatch verify` on the trial; what lies before the damage can still be replayed.",
   TRIAL_EXISTS: "Choose another name, or move the existing trial away: a trial is never overwritten.",
   TRIAL_UNWRITABLE: "Check that the recordings folder is writable and has room, or choose another folder.",
-  TABLE_INVALID: "Correct the column map or the table at the place named above.",
+  TABLE_INVALID: "Correct the table, or its column map, at the place named above.",
   EXPORT_FAILED:
     "Check that the folder is writable and has room, then export again; the trial itself is untouched.",
   FILE_UNWRITABLE: "Check that the folder is there and writable, or choose another file.",

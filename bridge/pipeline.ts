@@ -13,6 +13,8 @@ import { Calibration, mountingMatrix } from "./calibration/calibration.ts";
 import { DriftMeter } from "./clock/drift.ts";
 import { Admission, HubClock } from "./clock/hub-clock.ts";
 import { SilenceWatch } from "./clock/silence.ts";
+import { CameraComparison } from "./drive/camera-comparison.ts";
+import type { CameraTrack } from "./drive/camera-track.ts";
 import { DriveComparison } from "./drive/drive-comparison.ts";
 import { ChainFusion } from "./fusion/chain-fusion.ts";
 import { FlagBook } from "./health/flag-book.ts";
@@ -65,6 +67,8 @@ export interface PipelineOptions {
   readonly observer?: PipelineObserver;
   /** false leaves the ring buffer out: an export needs no looking back. */
   readonly ring?: boolean;
+  /** Midlines that a camera saw in this trial, laid upon ours. */
+  readonly camera?: CameraTrack | undefined;
 }
 
 export class Pipeline {
@@ -82,6 +86,8 @@ export class Pipeline {
   readonly tailbeat: TailbeatMeter;
   /** null where the rig file names no drive. */
   readonly drive: DriveComparison | null;
+  /** null where no table of a camera's midlines was loaded. */
+  readonly camera: CameraComparison | null;
   /** The drive's newest reading as it came, rad and m; NaN before the first. */
   readonly newestReference = { yaw: Number.NaN, sway: Number.NaN };
   readonly ring: TrialRing | null;
@@ -100,7 +106,7 @@ export class Pipeline {
   readonly #silence = new SilenceWatch(SILENCE_MS);
   #badPackets = 0;
 
-  constructor(rig: Rig, { startedAt, observer = {}, ring = true }: PipelineOptions) {
+  constructor(rig: Rig, { startedAt, observer = {}, ring = true, camera }: PipelineOptions) {
     const { sensors, models, thresholds, hub, site, body } = rig;
     const sensorCount = sensors.length;
     const rateHz = hub.rateHz;
@@ -177,6 +183,7 @@ export class Pipeline {
           onReference: (timeS, yaw, sway) => observer.reference?.(timeS, yaw, sway),
         })
       : null;
+    this.camera = camera ? new CameraComparison(camera, rateHz) : null;
     this.ring = ring
       ? new TrialRing({ sensorCount, pointCount: POINT_COUNT, rateHz, seconds: RING_SECONDS })
       : null;
@@ -240,6 +247,7 @@ export class Pipeline {
     this.gait.step(sweep.timeS, this.midline.positions, this.travel.direction, this.fusion.trust);
     const { orientations, trust } = this.fusion;
     this.drive?.sweep(sweep.timeS, orientations, trust, this.midline.positions, this.travel.heading);
+    this.camera?.sweep(sweep.timeS, this.midline.positions, this.travel.heading);
     this.ring?.push(sweep, this.fusion.orientations, this.fusion.trust, this.midline.positions);
     this.timeS = sweep.timeS;
     this.hostTimeMs = sweep.hostTimeMs;

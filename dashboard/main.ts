@@ -13,6 +13,7 @@ import { Stage } from "./lanes/stage.ts";
 import { Strip } from "./lanes/strip.ts";
 import { initialLight, switchLight } from "./look/light.ts";
 import { readPalette } from "./look/palette.ts";
+import { CameraPanel } from "./panels/camera.ts";
 import { DrivePanel } from "./panels/drive.ts";
 import { FlagsPanel } from "./panels/flags.ts";
 import { Header } from "./panels/header.ts";
@@ -68,6 +69,7 @@ const header = new Header();
 const sensors = new SensorColumns(element("sensors"));
 const tailbeat = new TailbeatPanel(element("tailbeat"));
 const drive = new DrivePanel(element("drive"));
+const camera = new CameraPanel(element("camera"));
 const flags = new FlagsPanel();
 const notice = new Notice();
 
@@ -152,6 +154,7 @@ function updateText(nowMs: number): void {
   header.update(view);
   tailbeat.update(view);
   drive.update(view);
+  camera.update(view);
   flags.update(view, nowMs);
   notice.update(view, nowMs);
   sensors.update(view);

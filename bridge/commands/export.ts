@@ -2,10 +2,12 @@
 import { basename } from "node:path";
 import type { Command } from "commander";
 import { Pipeline } from "../pipeline.ts";
+import type { CameraSummary } from "../trial/export/beside-tables.ts";
 import { ExportWriter } from "../trial/export/export-writer.ts";
 import { type Manifest, readManifest } from "../trial/manifest.ts";
 import type { ReadEnd } from "../trial/reader.ts";
 import { softwareVersion } from "../version.ts";
+import { type Camera, loadCamera } from "./camera.ts";
 import { inWater, type WaterOptions, withWaterOptions } from "./options.ts";
 import { trialFolder } from "./places.ts";
 import { runThrough } from "./run-through.ts";
@@ -13,6 +15,7 @@ import { runThrough } from "./run-through.ts";
 interface ExportCommandOptions extends WaterOptions {
   to: string;
   overwrite: boolean;
+  camera?: string;
 }
 
 export function addExport(program: Command): void {
@@ -24,16 +27,18 @@ export function addExport(program: Command): void {
       )
       .argument("<trial>", "by name under recordings/ or by path")
       .requiredOption("--to <folder>", "folder for the tables")
+      .option("--camera <file>", "table of a camera's midlines to compare with; see recordings/README.md")
       .option("--overwrite", "write into a folder that holds other files too", false),
   ).action(runExport);
 }
 
-function runExport(trial: string, options: ExportCommandOptions): void {
-  const { to, overwrite } = options;
+async function runExport(trial: string, options: ExportCommandOptions): Promise<void> {
+  const { to, overwrite, camera } = options;
   const folder = trialFolder(trial);
   const manifest = readManifest(folder);
   const rig = inWater(manifest.rig, options);
-  const { sweeps, end } = exportTrial(folder, { ...manifest, rig }, to, overwrite);
+  const seen = camera === undefined ? null : await loadCamera(camera, folder, manifest);
+  const { sweeps, end } = exportTrial(folder, { ...manifest, rig }, to, overwrite, seen);
   console.log(`${sweeps} sweeps written to ${to}`);
   if (end !== null && end.kind !== "complete") {
     console.error(
@@ -48,6 +53,7 @@ export function exportTrial(
   { rig, startedAt, notes, settings }: Manifest,
   to: string,
   overwrite = false,
+  camera: Camera | null = null,
 ): { sweeps: number; end: ReadEnd | null } {
   const writer = new ExportWriter({
     folder: to,
@@ -60,6 +66,7 @@ export function exportTrial(
   const pipeline: Pipeline = new Pipeline(rig, {
     startedAt: new Date(startedAt),
     ring: false,
+    camera: camera?.track,
     observer: {
       sweep({ timeS, lostBefore }) {
         lostSweeps += lostBefore;
@@ -77,6 +84,17 @@ export function exportTrial(
   const { end, marks } = runThrough(folder, pipeline);
   for (const mark of marks) writer.mark(mark);
   const drive = pipeline.drive?.trial() ?? [];
-  writer.finish({ startedAt, notes, lostSweeps, counters: pipeline.counters, drive, settings });
+  const { counters } = pipeline;
+  const beside = camera === null ? null : besideCamera(camera, pipeline);
+  writer.finish({ startedAt, notes, lostSweeps, counters, drive, camera: beside, settings });
   return { sweeps: pipeline.sweepCount, end };
+}
+
+function besideCamera(
+  { alignment, track, frames, leftOut }: Camera,
+  { camera }: Pipeline,
+): CameraSummary | null {
+  if (camera === null) return null;
+  const { scale } = track;
+  return { stations: camera.stations(), overall: camera.overall(), alignment, scale, frames, leftOut };
 }

@@ -2,6 +2,7 @@
 import type { Command } from "commander";
 import { readManifest } from "../trial/manifest.ts";
 import { TrialSource } from "../trial/trial-source.ts";
+import { loadCamera } from "./camera.ts";
 import {
   inWater,
   replayRate,
@@ -16,6 +17,7 @@ import { watch } from "./watch.ts";
 interface ReplayCommandOptions extends ServeOptions, WaterOptions {
   rate: number | "max";
   loop: boolean;
+  camera?: string;
 }
 
 export function addReplay(program: Command): void {
@@ -31,7 +33,8 @@ export function addReplay(program: Command): void {
           replayRate,
           1,
         )
-        .option("--loop", "start over at the end", false),
+        .option("--loop", "start over at the end", false)
+        .option("--camera <file>", "table of a camera's midlines to compare with; see recordings/README.md"),
     ),
   ).action(runReplay);
 }
@@ -46,8 +49,10 @@ async function runReplay(trial: string, options: ReplayCommandOptions): Promise<
     onLoop: () => startOver(),
   });
   const startedAt = new Date(manifest.startedAt);
+  const camera =
+    options.camera === undefined ? undefined : (await loadCamera(options.camera, folder, manifest)).track;
   await watch(
-    { rig: inWater(manifest.rig, options), source, recorder: null, startedAt },
+    { rig: inWater(manifest.rig, options), source, recorder: null, startedAt, camera },
     options,
     (monitor) => {
       startOver = () => monitor.startOver();

@@ -14,10 +14,8 @@ import { TRUST } from "../sweep.ts";
 import { Comparison } from "./comparison.ts";
 import { type Loop, loopOf } from "./loop.ts";
 import { ReferenceTrack } from "./reference-track.ts";
+import { COMPARED_PLACES, COMPARED_STATIONS, lateralsInto, stationsInto } from "./stations.ts";
 
-/** Stations of the midline that are compared, evenly spaced from nose to tail tip. */
-const COMPARED_STATIONS = 11;
-const COMPARED_PLACES = Array.from({ length: COMPARED_STATIONS }, (_, k) => k / (COMPARED_STATIONS - 1));
 /** The drive moves when half its range is at least this. */
 const LEAST_YAW = 0.5 * RAD_PER_DEG;
 const LEAST_SWAY_M = 0.0005;
@@ -69,6 +67,7 @@ export class DriveComparison {
 
   readonly #references = new Float64Array(REFERENCES);
   readonly #angles = new Float64Array(3);
+  readonly #stationPoints = new Float64Array(2 * COMPARED_STATIONS);
   /** Each sensor's last yaw, without the jump at half a turn. */
   readonly #unbrokenYaw: Float64Array;
 
@@ -132,7 +131,8 @@ export class DriveComparison {
     const signals = this.#waiting[at];
     for (let i = 0; i < this.#sensorCount; i++)
       signals[i] = trust[i] === TRUST.LOST ? Number.NaN : this.#yawOf(i, orientations);
-    lateralsInto(signals, this.#sensorCount, positions, heading);
+    stationsInto(this.#stationPoints, positions);
+    lateralsInto(signals, this.#stationPoints, heading, this.#sensorCount);
   }
 
   /** The drive's yaw against a sensor's over the newest whole cycle; null while there is none. */
@@ -192,18 +192,4 @@ function nearest(places: readonly number[], station: number): number {
     if (Math.abs(place - station) < Math.abs(places[best] - station)) best = i;
   });
   return best;
-}
-
-/**
- * Displacement to the left of the travel axis through the origin, at COMPARED_STATIONS of the midline's points, which must
- * be so many that the stations fall on points.
- */
-function lateralsInto(out: Float64Array, outAt: number, positions: Float64Array, heading: number): void {
-  const cos = Math.cos(heading);
-  const sin = Math.sin(heading);
-  const every = (positions.length / 3 - 1) / (COMPARED_STATIONS - 1);
-  for (let k = 0; k < COMPARED_STATIONS; k++) {
-    const at = 3 * every * k;
-    out[outAt + k] = cos * positions[at + 1] - sin * positions[at];
-  }
 }

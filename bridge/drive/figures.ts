@@ -130,9 +130,15 @@ export class TrialFigures {
     return figures;
   }
 
-  /** RMSE over all signals together, as they are; NaN before the first window. */
-  get overallRmse(): number {
-    return Math.sqrt(sum(this.#squares) / sum(this.#n));
+  /** All signals together, as if they were one. */
+  overall(): { gain: number; lagS: number; rmse: number; r2: number } {
+    const weight = sum(this.#weight);
+    return {
+      gain: sum(this.#gain) / weight,
+      lagS: sum(this.#lag) / weight,
+      rmse: Math.sqrt(sum(this.#squares) / sum(this.#n)),
+      r2: sum(this.#yr) ** 2 / (sum(this.#yy) * sum(this.#rr)),
+    };
   }
 }
 

@@ -1,6 +1,6 @@
-/** What the dashboard shows of the drive and the body beside it. */
+/** What the dashboard shows of the body beside its drive and beside a camera. */
 import type { Pipeline } from "../pipeline.ts";
-import type { BesideView, DriveMessage } from "../wire/messages.ts";
+import type { BesideView, CameraMessage, DriveMessage } from "../wire/messages.ts";
 
 /** Digits sent: more than any reading has. */
 const DIGITS = 5;
@@ -31,6 +31,14 @@ export function driveMessage({ drive, newestReference, rig }: Pipeline): DriveMe
       area: short(loop.area),
     },
   };
+}
+
+/** @returns null where no camera's midlines were loaded */
+export function cameraMessage({ camera }: Pipeline): CameraMessage | null {
+  if (camera === null) return null;
+  const { gain, lagS, rmseM, r2 } = camera.overall();
+  const overall = { gain: short(gain), lagS: short(lagS), rmseM: short(rmseM), r2: short(r2) };
+  return { type: "camera", overall: Number.isFinite(gain + lagS + rmseM + r2) ? overall : null };
 }
 
 function viewOf(gain: number, lagS: number, rmse: number, r2: number): BesideView | null {

@@ -4,6 +4,7 @@
  * the display.
  */
 import { BehaviorSubject, interval, merge, Observable, Subject, type Subscription, throttleTime } from "rxjs";
+import type { CameraTrack } from "../drive/camera-track.ts";
 import type { ByteSink, ByteSource, LinkState } from "../link/source.ts";
 import { Pipeline, type PipelineObserver, POINT_COUNT } from "../pipeline.ts";
 import type { Rig } from "../rig/load.ts";
@@ -21,7 +22,7 @@ import type {
   WelcomeMessage,
 } from "../wire/messages.ts";
 import { FrameWriter, Strip } from "./display.ts";
-import { driveMessage } from "./drive-view.ts";
+import { cameraMessage, driveMessage } from "./drive-view.ts";
 import { every } from "./every.ts";
 import { StreamServer } from "./server.ts";
 import { tailbeatView } from "./tailbeat-view.ts";
@@ -42,6 +43,8 @@ export interface MonitorOptions {
   /** null when the run is not recorded. */
   readonly recorder: TrialRecorder | null;
   readonly startedAt: Date;
+  /** Midlines that a camera saw in the replayed trial. */
+  readonly camera?: CameraTrack | undefined;
   readonly dashboardFolder: string;
   readonly host: string;
   readonly port: number;
@@ -140,7 +143,7 @@ export class Monitor implements ByteSink {
   }
 
   #newPipeline(): Pipeline {
-    const { rig, startedAt, recorder } = this.#options;
+    const { rig, startedAt, recorder, camera } = this.#options;
     const observer: PipelineObserver = {
       sweep: (sweep) => this.#noteSweep(sweep),
       flag: (flag) => {
@@ -149,7 +152,7 @@ export class Monitor implements ByteSink {
       },
       mark: (mark) => this.#marks.next([mark, ...this.#marks.value].slice(0, MARKS_SHOWN)),
     };
-    return new Pipeline(rig, { startedAt, observer });
+    return new Pipeline(rig, { startedAt, observer, camera });
   }
 
   #noteSweep(sweep: Sweep): void {
@@ -194,8 +197,7 @@ export class Monitor implements ByteSink {
       const all = merge(interval(STATUS_INTERVAL_MS), this.#link).subscribe(() => {
         this.#watchRecorder();
         out.next(this.#status());
-        const drive = driveMessage(this.#pipeline);
-        if (drive !== null) out.next(drive);
+        for (const message of this.#beside()) out.next(message);
       });
       all.add(this.#flagChanges.pipe(soon).subscribe(() => out.next(this.#flagsMessage())));
       all.add(this.#marks.subscribe(() => out.next(this.#marksMessage())));
@@ -206,8 +208,13 @@ export class Monitor implements ByteSink {
 
   #greeting(): BridgeMessage[] {
     const messages = [this.#welcome(), this.#status(), this.#flagsMessage(), this.#marksMessage()];
-    const drive = driveMessage(this.#pipeline);
-    return [...messages, this.#strip.message(), ...(drive === null ? [] : [drive])];
+    return [...messages, this.#strip.message(), ...this.#beside()];
+  }
+
+  /** What there is to compare the body with. */
+  #beside(): BridgeMessage[] {
+    const messages = [driveMessage(this.#pipeline), cameraMessage(this.#pipeline)];
+    return messages.filter((message) => message !== null);
   }
 
   #welcome(): WelcomeMessage {

@@ -154,6 +154,19 @@ export interface DriveMessage {
   } | null;
 }
 
+/** The midline's displacement beside a camera's, over the trial so far. With each status, where a camera's was loaded. */
+export interface CameraMessage {
+  readonly type: "camera";
+  /** All stations together; null while nothing has moved. */
+  readonly overall: {
+    readonly gain: number;
+    /** s, positive when the bridge's follows the camera's. */
+    readonly lagS: number;
+    readonly rmseM: number;
+    readonly r2: number;
+  } | null;
+}
+
 /** A client's message was refused. */
 export interface RefusalMessage {
   readonly type: "refusal";
@@ -167,6 +180,7 @@ export type BridgeMessage =
   | MarksMessage
   | StripMessage
   | DriveMessage
+  | CameraMessage
   | RefusalMessage;
 
 export interface AddMarkMessage {

@@ -5,6 +5,7 @@
 import { createDisplayFrame, type DisplayFrame, decodeFrame } from "../../bridge/wire/frame.ts";
 import type {
   BridgeMessage,
+  CameraMessage,
   DriveMessage,
   FlagsMessage,
   LinkView,
@@ -28,6 +29,8 @@ export interface ViewState {
   strip: StripMessage | null;
   /** null until the drive has given a reading. */
   drive: DriveMessage | null;
+  /** null unless a camera's midlines were loaded. */
+  camera: CameraMessage | null;
   /** The bridge's last refusal of a mark that this page sent. Every refusal is an object of its own. */
   refusal: RefusalMessage | null;
   readonly frame: DisplayFrame;
@@ -50,6 +53,7 @@ export function createViewState(): ViewState {
     marks: null,
     strip: null,
     drive: null,
+    camera: null,
     refusal: null,
     frame: createDisplayFrame(0, 0),
     past: new PastMidlines(0),
@@ -100,6 +104,9 @@ export function takeMessage(view: ViewState, message: BridgeMessage): void {
     case "drive":
       view.drive = message;
       break;
+    case "camera":
+      view.camera = message;
+      break;
     case "refusal":
       view.refusal = message;
       break;
@@ -131,6 +138,7 @@ function clearRun(view: ViewState): void {
   view.marks = null;
   view.strip = null;
   view.drive = null;
+  view.camera = null;
   view.past.clear();
   view.runFrameCount = 0;
 }

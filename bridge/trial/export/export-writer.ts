@@ -12,24 +12,12 @@ import { DEG_PER_RAD } from "../../numeric/units.ts";
 import type { Rig } from "../../rig/load.ts";
 import type { Flag, Mark } from "../../wire/flag.ts";
 import { TRUST_WORDS } from "../../wire/trust.ts";
+import { BesideTables, type CameraSummary, cameraSummary, driveSummary } from "./beside-tables.ts";
 import { DATA_PACKAGE_FILE, describePackage, SOFTWARE_PREFIX, SUMMARY_FILE } from "./data-package.ts";
 import { FrameMidlines } from "./frames.ts";
 import { type ExportedBout, type ExportedCycle, GAIT_TABLES, GaitTables } from "./gait-tables.ts";
 import { attempt, TableFile } from "./table-file.ts";
-import {
-  DECIMALS,
-  DRIVE,
-  FLAGS,
-  FRAMES,
-  MARKS,
-  MIDLINE,
-  REFERENCE,
-  SENSORS,
-  STATION_COUNT,
-  SYNC,
-  TABLES,
-  type Table,
-} from "./tables.ts";
+import { DECIMALS, FLAGS, FRAMES, MARKS, MIDLINE, SENSORS, STATION_COUNT, SYNC, TABLES } from "./tables.ts";
 
 export interface ExportOptions {
   readonly folder: string;
@@ -49,6 +37,8 @@ export interface ExportSummary {
   readonly counters: Readonly<LinkCounters>;
   /** Sensors and stations against the drive; none where the rig file names no drive. */
   readonly drive?: readonly Compared[];
+  /** null where no camera's midlines were given. */
+  readonly camera?: CameraSummary | null;
   /** Settings of the recording and of the export. */
   readonly settings: Record<string, unknown>;
 }
@@ -59,13 +49,15 @@ export class ExportWriter {
   readonly #sensors: TableFile;
   readonly #gait: GaitTables;
   readonly #marks: TableFile;
-  /** Tables that are there only when they have rows. */
-  readonly #occasional = new Map<Table, TableFile>();
+  readonly #beside: BesideTables;
+  /** There only when a pulse came. */
+  #sync: TableFile | null = null;
+  #frameTable: TableFile | null = null;
   readonly #frames: FrameMidlines;
   /** Newest state of each flag, by id. */
   readonly #flags = new Map<number, Flag>();
   readonly #angles = new Float64Array(3);
-  readonly #counts = { sweeps: 0, tailbeats: 0, marks: 0, syncEdges: 0, referenceSweeps: 0 };
+  readonly #counts = { sweeps: 0, tailbeats: 0, marks: 0, syncEdges: 0 };
   #firstS = Number.NaN;
   #lastS = Number.NaN;
 
@@ -81,6 +73,7 @@ export class ExportWriter {
     this.#sensors = new TableFile(folder, SENSORS);
     this.#gait = new GaitTables(folder, options.rig.body.lengthMm / 1000);
     this.#marks = new TableFile(folder, MARKS);
+    this.#beside = new BesideTables(folder, options.rig);
     this.#frames = new FrameMidlines(options.rig.hub.rateHz, 3 * STATION_COUNT, (timeS, edge, midlineM) =>
       this.#frameRow(timeS, edge, midlineM),
     );
@@ -159,7 +152,8 @@ export class ExportWriter {
   /** A camera frame pulse. */
   sync(timeS: number, edge: number): void {
     this.#counts.syncEdges++;
-    const file = this.#table(SYNC);
+    this.#sync ??= new TableFile(this.#options.folder, SYNC);
+    const file = this.#sync;
     file.cells.number(timeS, DECIMALS.time);
     file.cells.number(edge, 0);
     file.endRow();
@@ -167,7 +161,8 @@ export class ExportWriter {
   }
 
   #frameRow(timeS: number, edge: number, midlineM: Float64Array | null): void {
-    const file = this.#table(FRAMES);
+    this.#frameTable ??= new TableFile(this.#options.folder, FRAMES);
+    const file = this.#frameTable;
     file.cells.number(timeS, DECIMALS.time);
     file.cells.number(edge, 0);
     for (let i = 0; i < 3 * STATION_COUNT; i++)
@@ -177,43 +172,14 @@ export class ExportWriter {
 
   /** What the drive did at a sweep's time: rad and m, NaN where it gives none. */
   reference(timeS: number, yaw: number, sway: number): void {
-    this.#counts.referenceSweeps++;
-    const file = this.#table(REFERENCE);
-    file.cells.number(timeS, DECIMALS.time);
-    file.cells.number(yaw * DEG_PER_RAD, DECIMALS.degrees);
-    file.cells.number(sway * 1000, DECIMALS.mm);
-    file.endRow();
-  }
-
-  #driveRow({ sensor, station, against, gain, lagS, rmse, rmseLagRemoved, r2 }: Compared): void {
-    const file = this.#table(DRIVE);
-    const { cells } = file;
-    const degrees = against === "yaw" ? DEG_PER_RAD : Number.NaN;
-    const mm = against === "sway" ? 1000 : Number.NaN;
-    cells.text(sensor < 0 ? "" : this.#options.rig.sensors[sensor]!.name);
-    cells.number(station, DECIMALS.ratio);
-    cells.text(against);
-    cells.number(gain, DECIMALS.ratio);
-    cells.number(lagS * 1000, DECIMALS.ms);
-    cells.number(rmse * degrees, DECIMALS.degrees);
-    cells.number(rmseLagRemoved * degrees, DECIMALS.degrees);
-    cells.number(rmse * mm, DECIMALS.mm);
-    cells.number(rmseLagRemoved * mm, DECIMALS.mm);
-    cells.number(r2, DECIMALS.ratio);
-    file.endRow();
-  }
-
-  #table(table: Table): TableFile {
-    const file = this.#occasional.get(table) ?? new TableFile(this.#options.folder, table);
-    this.#occasional.set(table, file);
-    return file;
+    this.#beside.reference(timeS, yaw, sway);
   }
 
   /** Writes the flags, the summary and the description; the export is complete. @throws BendwatchError EXPORT_FAILED */
   finish(summary: ExportSummary): void {
     const { folder, trialName, rig, softwareVersion } = this.#options;
     this.#frames.finish();
-    for (const row of summary.drive ?? []) this.#driveRow(row);
+    this.#beside.compared(summary.drive ?? [], summary.camera ?? null);
     const flags = this.#writeFlags();
     const files = [
       this.#midline,
@@ -221,7 +187,8 @@ export class ExportWriter {
       flags,
       ...this.#gait.files,
       this.#marks,
-      ...TABLES.flatMap((table) => this.#occasional.get(table) ?? []),
+      ...[this.#sync, this.#frameTable].filter((file) => file !== null),
+      ...this.#beside.files,
     ];
     const written = files.map((file) => file.finish());
     writeJson(join(folder, SUMMARY_FILE), this.#summary(summary));
@@ -261,34 +228,22 @@ export class ExportWriter {
       durationS,
       nominalRateHz: rig.hub.rateHz,
       meanRateHz: durationS > 0 ? (sweeps - 1) / durationS : null,
-      counts: { ...this.#counts, flags: this.#flags.size },
+      counts: {
+        ...this.#counts,
+        referenceSweeps: this.#beside.referenceSweeps,
+        flags: this.#flags.size,
+      },
       lostSweeps: summary.lostSweeps,
       lostShare: sent === 0 ? 0 : summary.lostSweeps / sent,
       gait: this.#gait.summary(),
       flagsByKind,
       packets: summary.counters,
       drive: driveSummary(summary.drive ?? []),
+      camera: summary.camera ? cameraSummary(summary.camera, rig.body.lengthMm) : null,
       settings: summary.settings,
       rig,
     };
   }
-}
-
-/** The trial's figures by sensor, for who reads no tables; null where there is nothing to compare. */
-function driveSummary(drive: readonly Compared[]): object | null {
-  if (drive.length === 0) return null;
-  const known = (value: number) => (Number.isFinite(value) ? value : null);
-  return {
-    sensors: drive
-      .filter(({ sensor }) => sensor >= 0)
-      .map(({ station, gain, lagS, rmse, r2 }) => ({
-        station,
-        gain: known(gain),
-        lagMs: known(lagS * 1000),
-        rmseDeg: known(rmse * DEG_PER_RAD),
-        r2: known(r2),
-      })),
-  };
 }
 
 /** Makes the folder fit to write into, and takes out what an earlier export left. */

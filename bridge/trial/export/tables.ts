@@ -166,5 +166,29 @@ export const DRIVE: Table = {
   ],
 };
 
+export const CAMERA: Table = {
+  name: "camera",
+  description:
+    "The midline beside a camera's over the whole trial: displacement across the travel axis, at stations. The camera's is scaled to the body's length, taken against its own nose, and laid upon the midline by one turn and one shift.",
+  columns: [
+    number("station", "1", "Place along the body, 0 nose to 1 tail tip; empty for all stations together."),
+    number("gain", "1", "Amplitude over the camera's."),
+    number("lag_ms", "ms", "How long after the camera's; negative before it."),
+    number("rmse_mm", "mm", "Root mean square of the displacement minus the camera's."),
+    number("rmse_percent_length", "%", "The same as percent of the body's length."),
+    number("r2", "1", "Square of the correlation coefficient, with the lag taken off."),
+  ],
+};
+
 /** All but those of the gait (gait-tables.ts). */
-export const TABLES: readonly Table[] = [MIDLINE, SENSORS, FLAGS, MARKS, SYNC, FRAMES, REFERENCE, DRIVE];
+export const TABLES: readonly Table[] = [
+  MIDLINE,
+  SENSORS,
+  FLAGS,
+  MARKS,
+  SYNC,
+  FRAMES,
+  REFERENCE,
+  DRIVE,
+  CAMERA,
+];
