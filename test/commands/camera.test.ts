@@ -78,8 +78,9 @@ describe("a camera that sees the truth", () => {
     const tail = rows[10]!;
     const overall = rows[11]!;
     for (const row of [tail, overall]) {
-      expect(Math.abs(Number(row.lag_ms))).toBeLessThan(5);
-      // What six sensors leave of the tail's amplitude, twice over; the comparison itself is held in test/drive.
+      // What interpolating between six sensors leaves of the tail's phase (5.6 ms, 2.2° of a beat) and amplitude (6 %),
+      // twice over: of the midline, not of the comparison, which test/drive holds to 0.1 ms and 0.2 %.
+      expect(Math.abs(Number(row.lag_ms))).toBeLessThan(11);
       expect(Math.abs(Number(row.gain) - 1)).toBeLessThan(0.12);
       expect(Number(row.r2)).toBeGreaterThan(0.98);
     }
