@@ -2,7 +2,8 @@
  * From orientations at the stations to the body's midline.
  *
  * The orientation anywhere along the body is interpolated between the sensors on the sphere: `slerp` (slerp.ts), straight
- * beyond the first and last sensor, or `smooth` (smooth.ts), which goes on bending there. The midline is a chain of equal
+ * beyond the first and last sensor; `smooth` (smooth.ts), which goes on bending there; or `wave` (wave.ts), which knows how
+ * the body beats. The midline is a chain of equal
  * straight segments from the nose, each along the body's x axis as interpolated at the segment's middle: whatever the
  * orientations, its length is the body's. Sensors that are lost drop out and their neighbours carry on.
  */
@@ -10,8 +11,9 @@ import { TRUST } from "../sweep.ts";
 import type { Between } from "./between.ts";
 import { Slerp } from "./slerp.ts";
 import { Smooth } from "./smooth.ts";
+import { type Beating, Wave, type WhySmooth } from "./wave.ts";
 
-export type Interpolation = "slerp" | "smooth";
+export type Interpolation = "slerp" | "smooth" | "wave";
 
 export interface MidlineOptions {
   readonly lengthM: number;
@@ -26,10 +28,13 @@ export interface MidlineOptions {
 export class Midline {
   /** 3 per point, m, earth axes, nose at the origin. Borrowed: rewritten by each step. A straight body facing east at first. */
   readonly positions: Float64Array;
+  readonly #chosen: Interpolation;
   readonly #segmentM: number;
   /** Places are points and segment middles in turn, nose to tail: place 2k is point k, 2k + 1 the middle of the segment behind it. */
   readonly #placeCount: number;
   readonly #between: Between;
+  /** #between, if that is a wave. */
+  readonly #wave: Wave | null;
   /** Which sensors are lost, and the indices of those left. */
   readonly #lost: Uint8Array;
   readonly #left: Uint16Array;
@@ -41,23 +46,41 @@ export class Midline {
     this.positions = new Float64Array(pointCount * 3);
     this.#segmentM = lengthM / (pointCount - 1);
     this.#placeCount = 2 * pointCount - 1;
-    this.#between = new { slerp: Slerp, smooth: Smooth }[interpolation](stations, this.#placeCount);
+    this.#between = new { slerp: Slerp, smooth: Smooth, wave: Wave }[interpolation](
+      stations,
+      this.#placeCount,
+    );
+    this.#wave = this.#between instanceof Wave ? this.#between : null;
+    this.#chosen = interpolation;
     this.#lost = new Uint8Array(stations.length);
     this.#left = new Uint16Array(stations.length);
     this.#placeSensors();
     for (let point = 1; point < pointCount; point++) this.positions[3 * point] = -point * this.#segmentM;
   }
 
+  /** What the midline is made by at present: where a wave was asked for, it may be `smooth` for a while. */
+  get inUse(): Interpolation {
+    return this.whySmooth === null ? this.#chosen : "smooth";
+  }
+
+  /** Why a wave that was asked for is not in use; null where it is, or none was asked for. */
+  get whySmooth(): WhySmooth | null {
+    return this.#wave?.whySmooth ?? null;
+  }
+
   /**
    * Rebuilds `positions`. With every sensor lost, the last shape stays.
    * @param orientations 4 per sensor, body axes to earth
    * @param trust per sensor, as in sweep.ts
+   * @param stepS time since the sweep before, s; a wave fades in and out over time
+   * @param beating the body's beat at this sweep, for a wave; null where it is not known
    */
-  step(orientations: Float64Array, trust: Uint8Array): void {
+  step(orientations: Float64Array, trust: Uint8Array, stepS = 0, beating: Beating | null = null): void {
     if (this.#lossChanged(trust)) this.#placeSensors();
     if (this.#leftCount === 0) return;
     this.#stepped = true;
     this.#between.take(orientations);
+    this.#wave?.beat(orientations, this.#lost, stepS, beating);
     const { positions } = this;
     const q = this.#orientation;
     for (let place = 1, at = 0; place < this.#placeCount; place += 2, at += 3) {

@@ -2,7 +2,7 @@
  * Orientation between the sensors on the sphere, once continuously differentiable along the body.
  *
  * How the body turns along itself (bend about y and z, twist about x, in its own axes there) is the slope of a natural
- * cubic spline (spline.ts) through the turns from sensor to sensor. Between two sensors the orientation is the first one's
+ * cubic spline (spline.ts) through the turns from sensor to sensor; it goes on evenly beyond the ends. Between two sensors the orientation is the first one's
  * times exp of a cubic in that one's tangent space (Hermite), which ends at the second sensor's orientation with the second
  * sensor's slope: for that the slope is carried into the first one's tangent space by the inverse right Jacobian of the
  * rotation group (Chirikjian, Stochastic Models, Information Theory, and Lie Groups 2, 2012, sec. 10.8; from memory). Turns
@@ -11,10 +11,8 @@
  */
 import { conjugate, multiply, toRotationVector, turnBy } from "../numeric/quaternion.ts";
 import type { Between } from "./between.ts";
-import { Spline } from "./spline.ts";
+import { NATURAL, Spline } from "./spline.ts";
 
-/** The natural spline: the bend goes on evenly beyond the ends. Of the end conditions tried, the nearest to short waves. */
-const NATURAL = 0.5;
 /** Below this squared angle (rad²) the Jacobian's last factor is taken from its series to the fourth power: rounding. */
 const SERIES_BELOW = 1e-3;
 

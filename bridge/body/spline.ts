@@ -12,6 +12,9 @@
  */
 import { stationOf } from "./between.ts";
 
+/** End weight of the natural spline. */
+export const NATURAL = 0.5;
+
 export interface SplineOptions {
   /** 0 nose, 1 tail tip, ascending. */
   readonly stations: readonly number[];

@@ -1,0 +1,125 @@
+/**
+ * Orientation between the sensors of a body that beats: smooth (smooth.ts), and on top of it what a travelling wave does
+ * between the sensors (wave-shape.ts), learned over the last beats (wave-fit.ts). Sensors' own orientations are met
+ * exactly, and what is not periodic is interpolated smoothly.
+ *
+ * The wave counts as far as the motion is periodic and the wave can be followed from sensor to sensor. It fades in and
+ * out, so that the midline never jumps; without it, this is `smooth`.
+ */
+import { turnBy } from "../numeric/quaternion.ts";
+import type { Between } from "./between.ts";
+import { Smooth } from "./smooth.ts";
+import { HARMONICS, WaveFit } from "./wave-fit.ts";
+import { WaveShape } from "./wave-shape.ts";
+
+/** The body's beat at a sweep. */
+export interface Beating {
+  /** rad, growing by 2π a beat without a jump. */
+  readonly phase: number;
+  /** Share of the body's motion that is periodic, 0..1. */
+  readonly periodicShare: number;
+}
+
+export type WhySmooth = "not beating" | "learning the wave" | "sensors too far apart";
+
+/** Below this periodic share nothing is learned and the wave does not count; at the upper one it counts whole. */
+const APERIODIC = 0.6;
+const PERIODIC = 0.85;
+/** Every sensor left must have been heard for so long, beats. */
+const LEARNED_BEATS = 1.5;
+/** From none to whole, s: some frames of a display, so that it is seen to glide. */
+const FADE_S = 0.5;
+/** Places whose wave is renewed at each reading of the fit: all of 81 in the course of a beat. */
+const PLACES_A_READING = 4;
+
+export class Wave implements Between {
+  readonly #smooth: Smooth;
+  readonly #fit: WaveFit;
+  readonly #shape: WaveShape;
+  /** How much the wave counts, 0..1. */
+  #weight = 0;
+  #why: WhySmooth = "not beating";
+  #learning = false;
+  /** Newest that was learned from, rad. */
+  #phase = 0;
+  /** Cosine and sine of the phase and its multiples, times #weight. */
+  readonly #phasors = new Float64Array(2 * HARMONICS);
+  readonly #turn = new Float64Array(3);
+
+  constructor(stations: readonly number[], placeCount: number) {
+    this.#smooth = new Smooth(stations, placeCount);
+    this.#fit = new WaveFit(stations.length);
+    this.#shape = new WaveShape(stations, placeCount);
+  }
+
+  /** null while the wave counts for more than half. */
+  get whySmooth(): WhySmooth | null {
+    return this.#weight > 0.5 ? null : this.#why;
+  }
+
+  place(left: Uint16Array, count: number): void {
+    this.#smooth.place(left, count);
+    this.#shape.place(left, count);
+    this.#shape.renew(this.#fit.amplitudes);
+  }
+
+  take(orientations: Float64Array): void {
+    this.#smooth.take(orientations);
+  }
+
+  /**
+   * Learns from the sweep that was taken, and sets how much the wave counts in it.
+   * @param orientations 4 per sensor, body axes to earth
+   * @param lost per sensor, 1 where it is
+   * @param stepS time since the sweep before, s
+   */
+  beat(orientations: Float64Array, lost: Uint8Array, stepS: number, beating: Beating | null): void {
+    const periodic = beating === null ? 0 : ramp(beating.periodicShare, APERIODIC, PERIODIC);
+    if (beating !== null && periodic + this.#weight > 0) this.#learn(beating.phase, orientations, lost);
+    else if (this.#learning) this.#forget();
+    const learned = this.#learned(lost);
+    const counts = learned ? Math.min(periodic, this.#shape.followed) : 0;
+    const most = stepS / FADE_S;
+    this.#weight += Math.max(-most, Math.min(most, counts - this.#weight));
+    this.#setPhasors();
+    if (periodic < 0.5) this.#why = "not beating";
+    else if (learned && this.#shape.followed < 0.5) this.#why = "sensors too far apart";
+    else this.#why = "learning the wave";
+  }
+
+  at(place: number, out: Float64Array): void {
+    this.#smooth.at(place, out);
+    if (this.#weight === 0) return;
+    this.#shape.at(place, this.#phasors, this.#turn);
+    turnBy(out, out, this.#turn);
+  }
+
+  #learn(phase: number, orientations: Float64Array, lost: Uint8Array): void {
+    this.#learning = true;
+    this.#phase = phase;
+    if (this.#fit.step(phase, orientations, lost))
+      this.#shape.renewSome(this.#fit.amplitudes, PLACES_A_READING);
+  }
+
+  #forget(): void {
+    this.#learning = false;
+    this.#fit.reset();
+  }
+
+  #learned(lost: Uint8Array): boolean {
+    const { heardBeats } = this.#fit;
+    for (let i = 0; i < lost.length; i++) if (lost[i] === 0 && heardBeats[i] < LEARNED_BEATS) return false;
+    return true;
+  }
+
+  #setPhasors(): void {
+    for (let harmonic = 1; harmonic <= HARMONICS; harmonic++) {
+      this.#phasors[2 * harmonic - 2] = this.#weight * Math.cos(harmonic * this.#phase);
+      this.#phasors[2 * harmonic - 1] = this.#weight * Math.sin(harmonic * this.#phase);
+    }
+  }
+}
+
+function ramp(value: number, from: number, to: number): number {
+  return Math.max(0, Math.min(1, (value - from) / (to - from)));
+}
