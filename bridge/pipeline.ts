@@ -35,6 +35,7 @@ import type { Bout } from "./wave/steady-bout.ts";
 import type { TailbeatMeter } from "./wave/tailbeat.ts";
 import { kinematicViscosityOf } from "./wave/water.ts";
 import type { Flag, Mark } from "./wire/flag.ts";
+import type { Choice, HeadingView } from "./wire/messages.ts";
 
 /** Points of the midline, nose and tail tip included. */
 export const POINT_COUNT = 41;
@@ -44,6 +45,12 @@ const SILENCE_MS = 300;
 const REFERENCE_STRAY_S = 2;
 /** The ring buffer's span. */
 const RING_SECONDS = 600;
+
+const HEADING_MARKS: Record<HeadingView, string> = {
+  magnetic: "Heading held by the magnetometers",
+  relative: "Heading held by the body",
+  free: "Heading free: gyroscopes only",
+};
 
 /** What a run tells whoever watches it. Records are borrowed. */
 export interface PipelineObserver {
@@ -91,6 +98,8 @@ export class Pipeline {
   /** The drive's newest reading as it came, rad and m; NaN before the first. */
   readonly newestReference = { yaw: Number.NaN, sway: Number.NaN };
   readonly ring: TrialRing | null;
+  /** What is to hold the headings: the rig file's word until the operator chooses. */
+  chosenHeading: HeadingView;
   /** Sweeps that went through all stages. */
   sweepCount = 0;
   /** Hub time of the newest sweep, s. */
@@ -101,8 +110,7 @@ export class Pipeline {
   readonly #observer: PipelineObserver;
   readonly #calibration: Calibration;
   readonly #decoder: PacketDecoder;
-  /** null where headings are not magnetic anyway. */
-  readonly #fallback: HeadingFallback | null;
+  readonly #fallback: HeadingFallback;
   readonly #silence = new SilenceWatch(SILENCE_MS);
   #badPackets = 0;
 
@@ -111,6 +119,7 @@ export class Pipeline {
     const sensorCount = sensors.length;
     const rateHz = hub.rateHz;
     this.rig = rig;
+    this.chosenHeading = rig.heading;
     this.#observer = observer;
     this.#decoder = createDecoder(rig, {
       sweep: (sweep) => this.#sweep(sweep),
@@ -149,7 +158,7 @@ export class Pipeline {
       gyroRanges: models.map((model) => model.gyro.rangeDegPerS * RAD_PER_DEG),
       gyroAxes: sensors.map((sensor) => mountingMatrix(sensor.mounting).flat()),
     });
-    this.#fallback = rig.heading === "magnetic" ? new HeadingFallback(this.flags) : null;
+    this.#fallback = new HeadingFallback(this.flags);
     this.rhythm = new Rhythm(sensors.map((sensor) => sensor.station));
     this.midline = new Midline({
       lengthM: body.lengthMm / 1000,
@@ -214,6 +223,15 @@ export class Pipeline {
     return mark;
   }
 
+  /** The operator's choice. It takes effect gradually, so nothing jumps; a mark tells of it. */
+  choose({ heading }: Choice): void {
+    if (heading === this.chosenHeading) return;
+    this.chosenHeading = heading;
+    this.#fallback.leave(this.timeS);
+    this.fusion.setHeading(heading);
+    this.mark(HEADING_MARKS[heading], "operator");
+  }
+
   /** The run is over: open flags and a steady bout end with it. */
   finish(): void {
     this.gait.finish();
@@ -237,7 +255,7 @@ export class Pipeline {
     if (admission === Admission.RESTARTED) this.health.hubRestarted(sweep.timeS);
     this.#calibration.apply(sweep);
     this.health.observe(sweep, this.fusion.orientations);
-    if (this.#fallback !== null)
+    if (this.chosenHeading === "magnetic")
       this.fusion.setHeading(this.#fallback.observe(sweep.timeS) ? "relative" : "magnetic");
     this.fusion.step(sweep);
     this.health.compareOnBoard(sweep.timeS, this.fusion.onBoard.tilt, this.fusion.onBoard.turn);

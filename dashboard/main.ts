@@ -2,7 +2,6 @@
  * The dashboard: a connection fills the view state; one animation-frame callback draws the newest of it, lanes at display
  * rate, text a few times a second.
  */
-import type { HeadingView } from "../bridge/wire/messages.ts";
 import { DrawLog } from "./draw-log.ts";
 import { BodyWave } from "./lanes/body-wave.ts";
 import { FromAbove } from "./lanes/from-above.ts";
@@ -17,12 +16,12 @@ import { CameraPanel } from "./panels/camera.ts";
 import { DrivePanel } from "./panels/drive.ts";
 import { FlagsPanel } from "./panels/flags.ts";
 import { Header } from "./panels/header.ts";
+import { HeadingChoice } from "./panels/heading-choice.ts";
 import { Keys } from "./panels/keys.ts";
 import { MarkField } from "./panels/mark-field.ts";
 import { Notice } from "./panels/notice.ts";
 import { SensorColumns } from "./panels/sensors.ts";
 import { TailbeatPanel } from "./panels/tailbeat.ts";
-import { setText } from "./panels/text.ts";
 import { Connection } from "./stream/connection.ts";
 import { createViewState, isLive } from "./stream/view-state.ts";
 
@@ -31,13 +30,6 @@ const TEXT_MS = 250;
 /** Where the ruler begins and ends within the page, CSS pixels. As in the style sheet. */
 const RULER_LEFT = 176;
 const RULER_RIGHT = 28;
-
-/** What there is to say of headings that no magnetometer holds. */
-const HEADING_WORDS: Record<HeadingView, string> = {
-  magnetic: "",
-  relative: "Heading: held by the body",
-  free: "Heading drifts: gyroscopes only",
-};
 
 const element = (id: string) => document.getElementById(id)!;
 
@@ -82,9 +74,11 @@ let waiting = false;
 const connection = new Connection(view, page, requestDraw);
 connection.open();
 const markField = new MarkField((message) => connection.send(message));
+const headingChoice = new HeadingChoice((message) => connection.send(message));
 new Keys(
   [
     { key: "M", does: "Mark this moment", run: () => markField.open() },
+    { key: "H", does: "Choose what holds the headings", run: () => headingChoice.focus() },
     { key: "L", does: "Dark room or daylight", run: toggleLight },
   ],
   () => markField.close(),
@@ -159,7 +153,7 @@ function updateText(nowMs: number): void {
   notice.update(view, nowMs);
   sensors.update(view);
   markField.update(view);
-  showHeading();
+  headingChoice.update(view);
   letKeysScroll();
   document.body.dataset.live = String(isLive(view));
 }
@@ -168,11 +162,4 @@ function updateText(nowMs: number): void {
 function letKeysScroll(): void {
   if (sidePanel.scrollHeight > sidePanel.clientHeight) sidePanel.tabIndex = 0;
   else sidePanel.removeAttribute("tabindex");
-}
-
-function showHeading(): void {
-  const heading = view.status?.heading ?? view.welcome?.heading ?? "magnetic";
-  const note = element("heading-note");
-  note.dataset.heading = heading;
-  setText(note, HEADING_WORDS[heading]);
 }

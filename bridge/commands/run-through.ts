@@ -20,6 +20,7 @@ export function runThrough(
   try {
     for (let record = reader.next(); record !== null; record = reader.next()) {
       if (record.kind === "bytes") pipeline.bytes(record.chunk, record.hostTimeMs);
+      else if (record.kind === "choice") pipeline.choose(record.choice);
       else pipeline.hostTime(record.hostTimeMs);
     }
     pipeline.finish();

@@ -39,6 +39,14 @@ export class HeadingFallback {
     return this.#held;
   }
 
+  /** Headings are no longer to be magnetic: nothing is held, nothing is told. */
+  leave(timeS: number): void {
+    this.#held = false;
+    this.#sinceS = Number.NaN;
+    this.#flagEndsS = Number.NaN;
+    this.#book.clear(KIND, -1, timeS);
+  }
+
   #change(timeS: number): void {
     this.#held = !this.#held;
     this.#sinceS = Number.NaN;

@@ -3,6 +3,8 @@
  * apart.
  */
 
+import type { Choice } from "../wire/messages.ts";
+
 /** opening: trying to open the port. open: bytes may come. closed: unplugged or shut, trying again. ended: no more will come. */
 export type LinkState = "opening" | "open" | "closed" | "ended";
 
@@ -14,6 +16,8 @@ export interface ByteSink {
   bytes(chunk: Uint8Array, hostTimeMs: number): void;
   /** The link's state changed; `detail` is one sentence for the operator. */
   linkState(state: LinkState, detail: string, hostTimeMs: number): void;
+  /** What the operator chose at this place of the trial that is replayed; of no use to a sink that only keeps bytes. */
+  choice?(choice: Choice, hostTimeMs: number): void;
   /** A mark stored in the trial that is replayed. */
   mark(text: string, hostTimeMs: number): void;
 }

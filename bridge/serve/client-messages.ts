@@ -1,13 +1,20 @@
 /** What dashboards send: checked here, before anything acts on it. */
 import { z } from "zod";
-import { type DashboardMessage, MAX_CLIENT_MESSAGE_BYTES, MAX_MARK_LENGTH } from "../wire/messages.ts";
+import {
+  type DashboardMessage,
+  HEADINGS,
+  MAX_CLIENT_MESSAGE_BYTES,
+  MAX_MARK_LENGTH,
+} from "../wire/messages.ts";
 
 const addMark = z.strictObject({
   type: z.literal("add mark"),
   text: z.string().trim().min(1).max(MAX_MARK_LENGTH),
 });
 
-const anyMessage = z.discriminatedUnion("type", [addMark]);
+const choose = z.strictObject({ type: z.literal("choose"), heading: z.enum(HEADINGS) });
+
+const anyMessage = z.discriminatedUnion("type", [addMark, choose]);
 
 /** @returns the message, or one sentence on why it is refused */
 export function readClientMessage(data: Buffer, isBinary: boolean): DashboardMessage | string {

@@ -14,6 +14,7 @@ import { softwareVersion } from "../version.ts";
 import type { Flag, Mark } from "../wire/flag.ts";
 import type {
   BridgeMessage,
+  Choice,
   DashboardMessage,
   FlagsMessage,
   LinkView,
@@ -138,6 +139,10 @@ export class Monitor implements ByteSink {
     this.#link.next({ state, detail });
   }
 
+  choice(choice: Choice): void {
+    this.#pipeline.choose(choice);
+  }
+
   mark(text: string): void {
     this.#pipeline.mark(text, "trial");
   }
@@ -175,8 +180,12 @@ export class Monitor implements ByteSink {
   }
 
   #act(message: DashboardMessage): void {
-    const mark = this.#pipeline.mark(message.text, "operator");
-    this.#options.recorder?.mark(mark, Date.now());
+    const { recorder } = this.#options;
+    if (message.type === "choose") {
+      const choice: Choice = { heading: message.heading };
+      recorder?.choice(choice, Date.now());
+      this.#pipeline.choose(choice);
+    } else recorder?.mark(this.#pipeline.mark(message.text, "operator"), Date.now());
   }
 
   #sendFrame(): void {
@@ -242,7 +251,8 @@ export class Monitor implements ByteSink {
 
   #status(): StatusMessage {
     const { recorder, source } = this.#options;
-    const { health, gait, drift, counters, timeS, hostTimeMs, sweepCount, fusion } = this.#pipeline;
+    const { health, gait, drift, counters, timeS, hostTimeMs, sweepCount, fusion, chosenHeading } =
+      this.#pipeline;
     const { good, badChecksum, discardedBytes } = counters;
     return {
       type: "status",
@@ -256,6 +266,7 @@ export class Monitor implements ByteSink {
       counters: { good, badChecksum, discardedBytes },
       tailbeat: tailbeatView(gait),
       heading: fusion.heading,
+      chosenHeading,
     };
   }
 

@@ -8,7 +8,7 @@ import { basename, join } from "node:path";
 import type { ByteSink, LinkState } from "../link/source.ts";
 import type { Rig } from "../rig/load.ts";
 import type { Flag, Mark } from "../wire/flag.ts";
-import type { StatusMessage } from "../wire/messages.ts";
+import type { Choice, StatusMessage } from "../wire/messages.ts";
 import { AppendFile, type OpenAppend, openAppend } from "./append-file.ts";
 import { FLAGS_FILE, MARKS_FILE, type Manifest, type Origin, PACKETS_FILE, SEALS_FILE } from "./manifest.ts";
 import { encodeRecord, type Gap, MAX_CHUNK_BYTES, type TrialRecord } from "./records.ts";
@@ -126,6 +126,11 @@ export class TrialRecorder implements Pick<ByteSink, "bytes" | "linkState"> {
 
   linkState(state: LinkState, detail: string, hostTimeMs: number): void {
     this.#record({ kind: "link", hostTimeMs, state, detail }, 0);
+  }
+
+  /** Keeps what the operator chose, between the bytes where it took effect. */
+  choice(choice: Choice, hostTimeMs: number): void {
+    this.#record({ kind: "choice", hostTimeMs, choice }, 0);
   }
 
   /** Keeps a mark. @param hostTimeMs when it was made, for replaying */

@@ -3,11 +3,13 @@
  *
  *     "bytes"  byte string        a chunk as it arrived
  *     "link"   text               "<state>: <detail>", a change of the link
+ *     "choice" map                what the operator chose here: heading
  *     "gap"    map                what could not be recorded here: records, bytes, fromMs, toMs, reason
  *     "end"    text               why the recording ended; the last record of a complete trial
  */
 import { decode, encode } from "cborg";
 import type { LinkState } from "../link/source.ts";
+import { type Choice, HEADINGS } from "../wire/messages.ts";
 
 /** Longer chunks are split over several records, so that a reader's window can be small. */
 export const MAX_CHUNK_BYTES = 65_536;
@@ -28,6 +30,7 @@ export interface Gap {
 export type TrialRecord =
   | { readonly kind: "bytes"; readonly hostTimeMs: number; readonly chunk: Uint8Array }
   | { readonly kind: "link"; readonly hostTimeMs: number; readonly state: LinkState; readonly detail: string }
+  | { readonly kind: "choice"; readonly hostTimeMs: number; readonly choice: Choice }
   | { readonly kind: "gap"; readonly hostTimeMs: number; readonly gap: Gap }
   | { readonly kind: "end"; readonly hostTimeMs: number; readonly detail: string };
 
@@ -38,12 +41,14 @@ export function encodeRecord(record: TrialRecord): Uint8Array {
   return encode([record.kind, record.hostTimeMs, payloadOf(record)]);
 }
 
-function payloadOf(record: TrialRecord): Uint8Array | string | Gap {
+function payloadOf(record: TrialRecord): Uint8Array | string | Gap | Choice {
   switch (record.kind) {
     case "bytes":
       return record.chunk;
     case "link":
       return `${record.state}: ${record.detail}`.slice(0, MAX_TEXT);
+    case "choice":
+      return record.choice;
     case "gap":
       return { ...record.gap, reason: record.gap.reason.slice(0, MAX_TEXT) };
     case "end":
@@ -65,6 +70,7 @@ export function decodeRecord(bytes: Uint8Array): TrialRecord | null {
   if (kind === "bytes" && payload instanceof Uint8Array) return { kind, hostTimeMs, chunk: payload };
   if (kind === "end" && typeof payload === "string") return { kind, hostTimeMs, detail: payload };
   if (kind === "link" && typeof payload === "string") return linkRecord(hostTimeMs, payload);
+  if (kind === "choice" && isChoice(payload)) return { kind, hostTimeMs, choice: payload };
   if (kind === "gap" && isGap(payload)) return { kind, hostTimeMs, gap: payload };
   return null;
 }
@@ -74,6 +80,11 @@ function linkRecord(hostTimeMs: number, text: string): TrialRecord | null {
   const state = text.slice(0, colon);
   if (!LINK_STATES.includes(state)) return null;
   return { kind: "link", hostTimeMs, state: state as LinkState, detail: text.slice(colon + 2) };
+}
+
+function isChoice(value: unknown): value is Choice {
+  const heading = (value as Partial<Choice> | null)?.heading;
+  return heading !== undefined && HEADINGS.includes(heading);
 }
 
 function isGap(value: unknown): value is Gap {

@@ -156,6 +156,7 @@ class Pace {
 
 function deliver(record: TrialRecord, hostTimeMs: number, sink: ByteSink): void {
   if (record.kind === "bytes") sink.bytes(record.chunk, hostTimeMs);
+  else if (record.kind === "choice") sink.choice?.(record.choice, hostTimeMs);
   else if (record.kind === "gap") sink.linkState("open", gapDetail(record.gap), hostTimeMs);
   // The recorded link's end is not this source's end: a loop may follow.
   else if (record.kind === "link" && record.state !== "ended") {

@@ -38,7 +38,8 @@ export interface WelcomeMessage {
 }
 
 /** What holds the headings: the magnetometers, the body, or nothing but the gyroscopes. */
-export type HeadingView = "magnetic" | "relative" | "free";
+export const HEADINGS = ["magnetic", "relative", "free"] as const;
+export type HeadingView = (typeof HEADINGS)[number];
 
 /** silent: the port is open but nothing comes. */
 export type LinkView = "opening" | "flowing" | "silent" | "closed" | "ended";
@@ -73,6 +74,8 @@ export interface StatusMessage {
   readonly tailbeat: TailbeatView;
   /** At present. */
   readonly heading: HeadingView;
+  /** As chosen by the rig file or the operator: while the field is off, the body may hold what magnetometers should. */
+  readonly chosenHeading: HeadingView;
 }
 
 /** Of the newest cycle; all null while the body does not beat. */
@@ -188,4 +191,14 @@ export interface AddMarkMessage {
   readonly text: string;
 }
 
-export type DashboardMessage = AddMarkMessage;
+/** What the operator may choose while a trial runs. */
+export interface Choice {
+  /** What holds the headings from now on. */
+  readonly heading: HeadingView;
+}
+
+export interface ChooseMessage extends Choice {
+  readonly type: "choose";
+}
+
+export type DashboardMessage = AddMarkMessage | ChooseMessage;

@@ -29,7 +29,7 @@ export class Keys {
     addEventListener("keydown", (event) => {
       if (event.ctrlKey || event.metaKey || event.altKey || event.isComposing) return;
       if (event.key === "Escape") closeOpen();
-      else if (!(event.target instanceof HTMLInputElement)) {
+      else if (!(event.target instanceof HTMLInputElement || event.target instanceof HTMLSelectElement)) {
         const action = all.find(({ key }) => key.toLowerCase() === event.key.toLowerCase());
         if (action === undefined || (this.#dialog.open && action.key !== "?")) return;
         event.preventDefault();

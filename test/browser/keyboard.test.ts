@@ -75,7 +75,7 @@ test("Esc drops the mark: nothing is sent, and the focus returns to the button",
   await page.keyboard.type("this");
   await page.keyboard.press("Enter");
   await page.locator("#marks li").waitFor();
-  expect(bridge.received.map(({ text }) => text)).toEqual(["this"]);
+  expect(bridge.received).toEqual([{ type: "add mark", text: "this" }]);
 });
 
 test("no mark is longer than the bridge takes", async () => {
@@ -84,7 +84,7 @@ test("no mark is longer than the bridge takes", async () => {
   await page.keyboard.insertText("x".repeat(MAX_MARK_LENGTH + 50));
   await page.keyboard.press("Enter");
   await page.locator("#marks li").waitFor();
-  expect(bridge.received[0]!.text).toHaveLength(MAX_MARK_LENGTH);
+  expect(bridge.received).toEqual([{ type: "add mark", text: "x".repeat(MAX_MARK_LENGTH) }]);
 });
 
 test("a mark that cannot be delivered is kept in its field, and said not to have been kept", async () => {
@@ -155,5 +155,17 @@ test("a mark that the bridge refuses comes back into its field with the reason, 
   bridge.refusing = null;
   await page.keyboard.press("Enter");
   await page.locator("#marks li", { hasText: "flow raised" }).waitFor();
+  expect(await page.locator("#mark-text").isVisible()).toBe(false);
+});
+
+test("H leads to the choice of what holds the headings; what is chosen reaches the bridge and is told", async () => {
+  const { bridge, page } = await start();
+  await page.keyboard.press("h");
+  expect(await focused(page)).toBe("heading");
+  await page.keyboard.press("ArrowDown");
+  await page.getByText("Heading: held by the body").waitFor();
+  expect(bridge.received).toEqual([{ type: "choose", heading: "relative" }]);
+  // Letters that are keys elsewhere choose here.
+  await page.keyboard.type("m");
   expect(await page.locator("#mark-text").isVisible()).toBe(false);
 });

@@ -7,6 +7,7 @@ import { encodeTextLine } from "../../bridge/link/text.ts";
 import { RehearsalSource } from "../../bridge/rehearsal/rehearsal-source.ts";
 import { loadRig, type Rig } from "../../bridge/rig/load.ts";
 import { TrialReader } from "../../bridge/trial/reader.ts";
+import type { Choice } from "../../bridge/wire/messages.ts";
 import { bendwatch, startBridge, viewStream } from "../support/bridge-process.ts";
 import { temporaryFolder, writeRig } from "../support/folders.ts";
 import { openPty, type Pty } from "../support/pty.ts";
@@ -73,6 +74,16 @@ function recordedBytes(folder: string): Buffer {
   return Buffer.concat(chunks);
 }
 
+function recordedChoices(folder: string): Choice[] {
+  const reader = new TrialReader(folder);
+  const choices: Choice[] = [];
+  for (let record = reader.next(); record !== null; record = reader.next()) {
+    if (record.kind === "choice") choices.push(record.choice);
+  }
+  reader.close();
+  return choices;
+}
+
 test.each([
   ["binary", "native"],
   ["text", "text"],
@@ -95,7 +106,8 @@ test.each([
     await viewer.until((v) => Math.abs(v.frame.midline.at(-2)! - tailAt[1]!) > 0.01);
     expect(viewer.status?.recording).toMatchObject({ state: "on", detail: "trial" });
     viewer.send({ type: "add mark", text: "pump on" });
-    await viewer.until((v) => v.frame.sweepCount > 150);
+    viewer.send({ type: "choose", heading: "free" });
+    await viewer.until((v) => v.status?.heading === "free" && v.frame.sweepCount > 150);
     const written = hub.written();
     bridge.child.kill("SIGINT");
     expect((await bridge.finished).code).toBe(0);
@@ -106,6 +118,7 @@ test.each([
     const common = Math.min(recorded.length, written.length);
     expect(recorded.subarray(0, common).equals(written.subarray(0, common))).toBe(true);
     expect(JSON.parse(readFileSync(join(trial, "marks.jsonl"), "utf8"))).toMatchObject({ text: "pump on" });
+    expect(recordedChoices(trial)).toEqual([{ heading: "free" }]);
     expect(await bendwatch("verify", trial)).toMatchObject({ code: 0 });
   },
 );

@@ -10,9 +10,10 @@ import { loadRig } from "../../bridge/rig/load.ts";
 import { readManifest } from "../../bridge/trial/manifest.ts";
 import { TrialReader } from "../../bridge/trial/reader.ts";
 import { TrialRecorder } from "../../bridge/trial/recorder.ts";
-import { encodeRecord } from "../../bridge/trial/records.ts";
+import { encodeRecord, type TrialRecord } from "../../bridge/trial/records.ts";
 import { TrialSource } from "../../bridge/trial/trial-source.ts";
 import type { Flag } from "../../bridge/wire/flag.ts";
+import type { Choice } from "../../bridge/wire/messages.ts";
 import { fingerprints, temporaryFolder } from "../support/folders.ts";
 import { START_MS } from "../support/rehearse.ts";
 
@@ -39,6 +40,7 @@ beforeAll(async () => {
     startedAt,
   });
   await recordOnly({ rig, source, recorder, startedAt, seconds: 30 });
+  chooseHalfway(trial, { heading: "free" });
   exported = exportOf(trial);
 });
 
@@ -58,6 +60,13 @@ test("the export has every table, with rows from the faults too", () => {
     "summary.json",
     "sync.csv",
   ]);
+});
+
+test("what the operator chose while it ran takes effect in the export, and is told by a mark", () => {
+  const to = join(temporaryFolder(), "export");
+  exportTrial(trial, readManifest(trial), to);
+  expect(readFileSync(join(to, "marks.csv"), "utf8")).toContain("Heading free: gyroscopes only");
+  expect(readFileSync(join(to, "sensors.csv"), "utf8")).toContain("heading unaided");
 });
 
 test.each([1, 7, 64, 1000])(
@@ -99,6 +108,17 @@ test("flags recorded live, replayed at 40 times the speed, and exported are the 
   expect(lines.length).toBeGreaterThan(4);
   expect(lastLineOfEachFlag(join(trial, "flags.jsonl"))).toEqual(lines);
 });
+
+/** As if the operator had chosen in the middle of the recording. */
+function chooseHalfway(folder: string, choice: Choice): void {
+  const records: TrialRecord[] = [];
+  const reader = new TrialReader(folder);
+  for (let record = reader.next(); record !== null; record = reader.next()) records.push(record);
+  reader.close();
+  const at = records.length >> 1;
+  records.splice(at, 0, { kind: "choice", hostTimeMs: records[at]!.hostTimeMs, choice });
+  writeFileSync(join(folder, "packets.cborseq"), Buffer.concat(records.map(encodeRecord)));
+}
 
 function exportOf(folder: string): Record<string, string> {
   const to = join(temporaryFolder(), "export");

@@ -113,6 +113,10 @@ export class FakeBridge {
       this.#send({ type: "refusal", reason: this.refusing });
       return;
     }
+    if (message.type === "choose") {
+      this.show({ heading: message.heading });
+      return;
+    }
     const mark = { timeS: this.#hubTimeS, text: message.text, from: "operator" } as const;
     this.show({ marks: [mark, ...this.#scene.marks] });
   }
@@ -161,6 +165,7 @@ export class FakeBridge {
       counters: { good: Math.round(this.#hubTimeS * rateHz), badChecksum: 3, discardedBytes: 41 },
       tailbeat: tailbeatOf(wave, lengthM),
       heading,
+      chosenHeading: heading,
     };
   }
 

@@ -30,6 +30,11 @@ const record: fc.Arbitrary<TrialRecord> = fc.oneof(
     hostTimeMs,
     gap: fc.record({ records: count, bytes: count, fromMs: hostTimeMs, toMs: hostTimeMs, reason: text }),
   }),
+  fc.record({
+    kind: fc.constant("choice" as const),
+    hostTimeMs,
+    choice: fc.record({ heading: fc.constantFrom("magnetic", "relative", "free") }),
+  }),
   fc.record({ kind: fc.constant("end" as const), hostTimeMs, detail: text }),
 );
 
