@@ -260,7 +260,7 @@ export class Pipeline {
     this.fusion.step(sweep);
     this.health.compareOnBoard(sweep.timeS, this.fusion.onBoard.tilt, this.fusion.onBoard.turn);
     this.rhythm.step(sweep, this.fusion.orientations, this.fusion.trust);
-    this.midline.step(this.fusion.orientations, this.fusion.trust);
+    this.midline.step(this.fusion.orientations, this.fusion.trust, sweep.stepS, this.rhythm);
     this.travel.step(sweep.stepS, this.midline.positions, this.tailbeat.periodS);
     this.gait.step(sweep.timeS, this.midline.positions, this.travel.direction, this.fusion.trust);
     const { orientations, trust } = this.fusion;

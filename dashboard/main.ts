@@ -2,6 +2,7 @@
  * The dashboard: a connection fills the view state; one animation-frame callback draws the newest of it, lanes at display
  * rate, text a few times a second.
  */
+import type { Interpolation, MidlineView } from "../bridge/wire/messages.ts";
 import { DrawLog } from "./draw-log.ts";
 import { BodyWave } from "./lanes/body-wave.ts";
 import { FromAbove } from "./lanes/from-above.ts";
@@ -22,6 +23,7 @@ import { MarkField } from "./panels/mark-field.ts";
 import { Notice } from "./panels/notice.ts";
 import { SensorColumns } from "./panels/sensors.ts";
 import { TailbeatPanel } from "./panels/tailbeat.ts";
+import { setText } from "./panels/text.ts";
 import { Connection } from "./stream/connection.ts";
 import { createViewState, isLive } from "./stream/view-state.ts";
 
@@ -30,6 +32,13 @@ const TEXT_MS = 250;
 /** Where the ruler begins and ends within the page, CSS pixels. As in the style sheet. */
 const RULER_LEFT = 176;
 const RULER_RIGHT = 28;
+
+/** How the body's shape between the sensors is found. */
+const MIDLINE_WORDS: Record<Interpolation, string> = {
+  wave: "wave between sensors",
+  smooth: "smooth between sensors",
+  slerp: "slerp between sensors",
+};
 
 const element = (id: string) => document.getElementById(id)!;
 
@@ -154,6 +163,7 @@ function updateText(nowMs: number): void {
   sensors.update(view);
   markField.update(view);
   headingChoice.update(view);
+  showMidline(view.status?.midline);
   letKeysScroll();
   document.body.dataset.live = String(isLive(view));
 }
@@ -162,4 +172,11 @@ function updateText(nowMs: number): void {
 function letKeysScroll(): void {
   if (sidePanel.scrollHeight > sidePanel.clientHeight) sidePanel.tabIndex = 0;
   else sidePanel.removeAttribute("tabindex");
+}
+
+function showMidline(midline: MidlineView | undefined): void {
+  if (midline === undefined) return;
+  const words = MIDLINE_WORDS[midline.by];
+  const { whySmooth } = midline;
+  setText(element("midline-note"), whySmooth === null ? words : `${words}: ${whySmooth}`);
 }

@@ -2,18 +2,17 @@
  * From orientations at the stations to the body's midline.
  *
  * The orientation anywhere along the body is interpolated between the sensors on the sphere: `slerp` (slerp.ts), straight
- * beyond the first and last sensor; `smooth` (smooth.ts), which goes on bending there; or `wave` (wave.ts), which knows how
- * the body beats. The midline is a chain of equal
- * straight segments from the nose, each along the body's x axis as interpolated at the segment's middle: whatever the
- * orientations, its length is the body's. Sensors that are lost drop out and their neighbours carry on.
+ * beyond the first and last sensor; `smooth` (smooth.ts), which goes on bending there; or `wave` (wave.ts), smooth and
+ * what the beat does besides. The midline is a chain of equal straight segments from the nose, each along the body's x axis
+ * as interpolated at the segment's middle: whatever the orientations, its length is the body's. Sensors that are lost drop
+ * out and their neighbours carry on.
  */
 import { TRUST } from "../sweep.ts";
+import type { Interpolation, WhySmooth } from "../wire/messages.ts";
 import type { Between } from "./between.ts";
 import { Slerp } from "./slerp.ts";
 import { Smooth } from "./smooth.ts";
-import { type Beating, Wave, type WhySmooth } from "./wave.ts";
-
-export type Interpolation = "slerp" | "smooth" | "wave";
+import { type Beating, Wave } from "./wave.ts";
 
 export interface MidlineOptions {
   readonly lengthM: number;

@@ -7,6 +7,7 @@
  * out, so that the midline never jumps; without it, this is `smooth`.
  */
 import { turnBy } from "../numeric/quaternion.ts";
+import type { WhySmooth } from "../wire/messages.ts";
 import type { Between } from "./between.ts";
 import { Smooth } from "./smooth.ts";
 import { HARMONICS, WaveFit } from "./wave-fit.ts";
@@ -20,8 +21,6 @@ export interface Beating {
   readonly periodicShare: number;
 }
 
-export type WhySmooth = "not beating" | "learning the wave" | "sensors too far apart";
-
 /** Below this periodic share nothing is learned and the wave does not count; at the upper one it counts whole. */
 const APERIODIC = 0.6;
 const PERIODIC = 0.85;
@@ -29,17 +28,19 @@ const PERIODIC = 0.85;
 const LEARNED_BEATS = 1.5;
 /** From none to whole, s: some frames of a display, so that it is seen to glide. */
 const FADE_S = 0.5;
-/** Places whose wave is renewed at each reading of the fit: all of 81 in the course of a beat. */
-const PLACES_A_READING = 4;
+/** Readings of the fit over which all places' waves are renewed: most of a beat, so that no sweep bears it all. */
+const READINGS_TO_RENEW = 20;
 
 export class Wave implements Between {
   readonly #smooth: Smooth;
   readonly #fit: WaveFit;
   readonly #shape: WaveShape;
+  readonly #placesAReading: number;
   /** How much the wave counts, 0..1. */
   #weight = 0;
   #why: WhySmooth = "not beating";
   #learning = false;
+  #learned = false;
   /** Newest that was learned from, rad. */
   #phase = 0;
   /** Cosine and sine of the phase and its multiples, times #weight. */
@@ -50,6 +51,7 @@ export class Wave implements Between {
     this.#smooth = new Smooth(stations, placeCount);
     this.#fit = new WaveFit(stations.length);
     this.#shape = new WaveShape(stations, placeCount);
+    this.#placesAReading = Math.ceil(placeCount / READINGS_TO_RENEW);
   }
 
   /** null while the wave counts for more than half. */
@@ -77,7 +79,10 @@ export class Wave implements Between {
     const periodic = beating === null ? 0 : ramp(beating.periodicShare, APERIODIC, PERIODIC);
     if (beating !== null && periodic + this.#weight > 0) this.#learn(beating.phase, orientations, lost);
     else if (this.#learning) this.#forget();
-    const learned = this.#learned(lost);
+    const learned = this.#hasLearned(lost);
+    // What the places were given while little was known must not glide in.
+    if (learned && !this.#learned) this.#shape.renew(this.#fit.amplitudes);
+    this.#learned = learned;
     const counts = learned ? Math.min(periodic, this.#shape.followed) : 0;
     const most = stepS / FADE_S;
     this.#weight += Math.max(-most, Math.min(most, counts - this.#weight));
@@ -98,7 +103,7 @@ export class Wave implements Between {
     this.#learning = true;
     this.#phase = phase;
     if (this.#fit.step(phase, orientations, lost))
-      this.#shape.renewSome(this.#fit.amplitudes, PLACES_A_READING);
+      this.#shape.renewSome(this.#fit.amplitudes, this.#placesAReading);
   }
 
   #forget(): void {
@@ -106,7 +111,7 @@ export class Wave implements Between {
     this.#fit.reset();
   }
 
-  #learned(lost: Uint8Array): boolean {
+  #hasLearned(lost: Uint8Array): boolean {
     const { heardBeats } = this.#fit;
     for (let i = 0; i < lost.length; i++) if (lost[i] === 0 && heardBeats[i] < LEARNED_BEATS) return false;
     return true;

@@ -63,6 +63,7 @@ export function exportTrial(
     overwrite,
   });
   let lostSweeps = 0;
+  const sweepsBy: Record<string, number> = {};
   const pipeline: Pipeline = new Pipeline(rig, {
     startedAt: new Date(startedAt),
     ring: false,
@@ -71,6 +72,9 @@ export function exportTrial(
       sweep({ timeS, lostBefore }) {
         lostSweeps += lostBefore;
         const { midline, fusion } = pipeline;
+        const { inUse, whySmooth } = midline;
+        const by = whySmooth === null ? inUse : `${inUse}: ${whySmooth}`;
+        sweepsBy[by] = (sweepsBy[by] ?? 0) + 1;
         writer.sweep(timeS, midline.positions, fusion.orientations, fusion.trust, fusion.bridged);
       },
       flag: (flag) => writer.flag(flag),
@@ -86,7 +90,7 @@ export function exportTrial(
   const drive = pipeline.drive?.trial() ?? [];
   const { counters } = pipeline;
   const beside = camera === null ? null : besideCamera(camera, pipeline);
-  writer.finish({ startedAt, notes, lostSweeps, counters, drive, camera: beside, settings });
+  writer.finish({ startedAt, notes, lostSweeps, sweepsBy, counters, drive, camera: beside, settings });
   return { sweeps: pipeline.sweepCount, end };
 }
 

@@ -206,10 +206,10 @@ export const rigSchema = z.strictObject({
   midline: z
     .strictObject({
       interpolation: z
-        .enum(["slerp", "smooth"])
-        .default("slerp")
+        .enum(["wave", "smooth", "slerp"])
+        .default("wave")
         .describe(
-          "Between sensors along the body, on the sphere. slerp: evenly from each to the next, straight beyond the ends. smooth: bend and twist go on through the sensors without a jump, and beyond the ends.",
+          "Between sensors along the body, on the sphere. wave: while the body beats, by amplitude and phase of its wave, which takes sensors less than half a wavelength apart; else as smooth. smooth: bend and twist go on through the sensors without a jump, and beyond the ends. slerp: evenly from each to the next, straight beyond the ends.",
         ),
       meanBendDeg: z
         .number()

@@ -251,7 +251,7 @@ export class Monitor implements ByteSink {
 
   #status(): StatusMessage {
     const { recorder, source } = this.#options;
-    const { health, gait, drift, counters, timeS, hostTimeMs, sweepCount, fusion, chosenHeading } =
+    const { health, gait, drift, counters, timeS, hostTimeMs, sweepCount, fusion, midline, chosenHeading } =
       this.#pipeline;
     const { good, badChecksum, discardedBytes } = counters;
     return {
@@ -267,6 +267,7 @@ export class Monitor implements ByteSink {
       tailbeat: tailbeatView(gait),
       heading: fusion.heading,
       chosenHeading,
+      midline: { by: midline.inUse, whySmooth: midline.whySmooth },
     };
   }
 

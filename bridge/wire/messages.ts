@@ -76,7 +76,19 @@ export interface StatusMessage {
   readonly heading: HeadingView;
   /** As chosen by the rig file or the operator: while the field is off, the body may hold what magnetometers should. */
   readonly chosenHeading: HeadingView;
+  /** At present. */
+  readonly midline: MidlineView;
 }
+
+/** How the midline is made between the sensors. */
+export interface MidlineView {
+  readonly by: Interpolation;
+  /** Where a wave was asked for and is not in use. */
+  readonly whySmooth: WhySmooth | null;
+}
+
+export type Interpolation = "slerp" | "smooth" | "wave";
+export type WhySmooth = "not beating" | "learning the wave" | "sensors too far apart";
 
 /** Of the newest cycle; all null while the body does not beat. */
 export interface TailbeatView {

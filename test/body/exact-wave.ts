@@ -11,7 +11,7 @@ export const evenStations = (count: number): number[] =>
 export class ExactWave {
   /** 4 per sensor, rewritten by moveTo. */
   readonly orientations: Float64Array;
-  /** x (ahead) and y (left) of each point against the nose, as shares of the body, rewritten by moveTo. */
+  /** x (ahead) and y (left) of each point against the nose, as shares of the body, rewritten by showTruth. */
   readonly truth: Float64Array;
   readonly #sensors: readonly WavePlace[];
   readonly #points: readonly WavePlace[];
@@ -35,6 +35,11 @@ export class ExactWave {
       this.orientations[4 * i] = Math.cos(motion.angle.value / 2);
       this.orientations[4 * i + 3] = Math.sin(motion.angle.value / 2);
     });
+  }
+
+  /** Works out the true midline at the phase moved to. */
+  showTruth(): void {
+    const motion = this.#motion;
     let noseLateral = 0;
     this.#points.forEach((place, k) => {
       place.motion(this.#drive, motion);
@@ -73,6 +78,7 @@ export function fidelity(
   for (let moment = 0; moment < moments; moment++) {
     const phase = startPhase + (2 * Math.PI * moment) / moments;
     wave.moveTo(phase);
+    wave.showTruth();
     step(phase);
     const errors = Array.from(
       { length: pointCount },

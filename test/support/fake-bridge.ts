@@ -12,7 +12,16 @@ import { DashboardFiles } from "../../bridge/serve/files.ts";
 import { StreamServer } from "../../bridge/serve/server.ts";
 import { createDisplayFrame, encodeFrame, frameBytes } from "../../bridge/wire/frame.ts";
 import type { BridgeMessage, DashboardMessage } from "../../bridge/wire/messages.ts";
-import { FLOW_M_PER_S, healthyScene, type Scene, tailbeatOf, type Wave, writeMidline } from "./scene.ts";
+
+import {
+  FLOW_M_PER_S,
+  healthyScene,
+  midlineOf,
+  type Scene,
+  tailbeatOf,
+  type Wave,
+  writeMidline,
+} from "./scene.ts";
 
 const DASHBOARD = join(packageRoot, "dist", "dashboard");
 const POINTS = 41;
@@ -166,6 +175,7 @@ export class FakeBridge {
       tailbeat: tailbeatOf(wave, lengthM),
       heading,
       chosenHeading: heading,
+      midline: midlineOf(wave),
     };
   }
 

@@ -7,6 +7,7 @@ import type {
   DriveMessage,
   GaitNumberView,
   LinkView,
+  MidlineView,
   SensorView,
   StatusMessage,
   TailbeatView,
@@ -166,7 +167,13 @@ export function statusOf(link: LinkView, linkDetail = ""): StatusMessage {
     tailbeat: tailbeatOf(wave, lengthM),
     heading,
     chosenHeading: heading,
+    midline: midlineOf(wave),
   };
+}
+
+/** How the midline of a wave is made. */
+export function midlineOf({ frequencyHz }: Wave): MidlineView {
+  return frequencyHz > 0 ? { by: "wave", whySmooth: null } : { by: "smooth", whySmooth: "not beating" };
 }
 
 export interface FlagRequest {

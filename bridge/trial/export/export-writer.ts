@@ -34,6 +34,8 @@ export interface ExportSummary {
   readonly startedAt: string;
   readonly notes: string;
   readonly lostSweeps: number;
+  /** How many sweeps' midlines were made by what between the sensors, and why not better. */
+  readonly sweepsBy: Readonly<Record<string, number>>;
   readonly counters: Readonly<LinkCounters>;
   /** Sensors and stations against the drive; none where the rig file names no drive. */
   readonly drive?: readonly Compared[];
@@ -236,6 +238,7 @@ export class ExportWriter {
       lostSweeps: summary.lostSweeps,
       lostShare: sent === 0 ? 0 : summary.lostSweeps / sent,
       gait: this.#gait.summary(),
+      midlineSweepsBy: summary.sweepsBy,
       flagsByKind,
       packets: summary.counters,
       drive: driveSummary(summary.drive ?? []),

@@ -20,6 +20,7 @@ export const summary: ExportSummary = {
   startedAt: "2026-06-01T09:30:00.000Z",
   notes: "",
   lostSweeps: 5,
+  sweepsBy: { wave: 15, "smooth: not beating": 5 },
   counters: { ...emptyCounters(), good: 20 },
   drive: [
     { ...BESIDE, sensor: 1, station: 0.24, against: "yaw", gain: 0.98765, lagS: 0.0123456 },
