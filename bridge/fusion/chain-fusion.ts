@@ -211,8 +211,11 @@ export class ChainFusion {
       turn(r, this.#parameters);
       if (parts & HAS_ACCEL) carryToEnd(r, Slot.FORCE);
       if (parts & HAS_MAG) carryToEnd(r, Slot.FIELD);
-      if (r[Slot.CLIP_COUNT] !== 0) settleStretch(r, fieldCounts, this.#parameters);
-      else if (r[Slot.GAP_VARIANCE]! > 0) settleGap(r, fieldCounts);
+      if (r[Slot.CLIP_COUNT] !== 0) {
+        const forceCounts = (conditions & CONDITION.ACCEL_CLIPPED) === 0;
+        const fresh = (fieldCounts ? HAS_MAG : 0) | (forceCounts ? parts & HAS_ACCEL : 0);
+        settleStretch(r, fresh, this.#parameters);
+      } else if (r[Slot.GAP_VARIANCE]! > 0) settleGap(r, fieldCounts, this.#parameters);
       if (parts & HAS_ACCEL) this.#level(r);
       else composeLevel(r);
     }

@@ -1,11 +1,12 @@
 /**
  * Clipped angular rates, made good. While an axis of the gyroscope is at the end of its range it still says the sign and
  * the least size of the rate; what is missing is the angle by which the body turned beyond it, the *excess*. Its estimate
- * weighs two things against each other, each by its uncertainty:
+ * weighs what is known of it, each by its uncertainty (clip-excess.ts):
  *
- *     the shoulders  the cubic through the rate and its slope where the axis was lost and where it came back (Hermite's
- *                    form); until it comes back, the slope before, fading
- *     the field      the turn about the axis that carries the field now to the field before the stretch
+ *     the shoulders      the arc through the readings before and after (clip-shoulders.ts)
+ *     earlier beats      what the same axis turned in the same sense, where the motion is periodic (clip-beat.ts)
+ *     the field          the turn about the axis that carries the field now to the field before the stretch
+ *     the specific force the same with gravity's, which the body's own acceleration makes uncertain
  *
  * All readings of the stretch are kept, and integrated again from its start whenever the estimate changes, so that the
  * excess is turned where it belongs, about an axis that other axes meanwhile turn. A few readings after the return the
@@ -14,17 +15,18 @@
  * Where one axis joins another at its limit, or leaves it, one stretch ends and the next begins. Ours, no source.
  */
 import { conjugate, rotate, turnBy } from "../numeric/quaternion.ts";
+import { STANDARD_GRAVITY } from "../numeric/units.ts";
 import { CHANNELS, CONDITION, type Sweep } from "../sweep.ts";
-import { estimateExcess } from "./clip-excess.ts";
+import { beatPeriod, rememberBeat } from "./clip-beat.ts";
+import { estimateExcess, READINGS_AFTER } from "./clip-excess.ts";
+import { along, arc, shoulderArc } from "./clip-shoulders.ts";
 import { storeRate } from "./gap.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { CLIP_READINGS, Slot } from "./record.ts";
-import { addVariance, openInclination } from "./uncertainty.ts";
+import { leaveUncertain, openInclination } from "./uncertainty.ts";
 
 /** At or above this share of the range, or of the greatest axis of a flagged reading, an axis is clipped. */
 const AT_LIMIT = 0.999;
-/** Readings after the return of an axis that still tell about the stretch: two for the slope, the rest for the field. */
-const READINGS_AFTER = 4;
 /** A stretch's reading: rate (3) and step. */
 const STRIDE = 4;
 /** The sensor's axes, as bits of CLIPPED_AXES. */
@@ -57,8 +59,10 @@ export function addToStretch(r: Float64Array, parameters: FusionParameters): voi
   const axes = r[Slot.CLIPPED_AXES]!;
   const another = axes !== 0 && (axes !== r[Slot.CLIP_AXES] || r[Slot.CLIP_AFTER]! > 0);
   const count = r[Slot.CLIP_COUNT]!;
+  // Axes at their limit in the reading before.
+  const joined = count > 0 && r[Slot.CLIP_AFTER] === 0 ? axes & r[Slot.CLIP_AXES]! : 0;
   if (count > 0 && (another || count === CLIP_READINGS)) closeStretch(r, parameters);
-  if (r[Slot.CLIP_COUNT] === 0) openStretch(r, axes);
+  if (r[Slot.CLIP_COUNT] === 0) openStretch(r, axes, joined);
   const at = Slot.CLIP_RATES + STRIDE * r[Slot.CLIP_COUNT]!;
   storeRate(r, at);
   r[at + 3] = r[Slot.RATE_STEP]!;
@@ -70,9 +74,9 @@ export function addToStretch(r: Float64Array, parameters: FusionParameters): voi
 /**
  * After each reading of the stretch: estimates the excess anew, and turns the strapdown quaternion through the whole
  * stretch with it.
- * @param fresh a field came with this reading and may be compared with the one before the stretch
+ * @param fresh presence bits of the field and specific force that came with it and may be compared with those before
  */
-export function settleStretch(r: Float64Array, fresh: boolean, parameters: FusionParameters): void {
+export function settleStretch(r: Float64Array, fresh: number, parameters: FusionParameters): void {
   for (const axis of AXES) {
     if ((r[Slot.CLIP_AXES]! & (1 << axis)) === 0) continue;
     integrateStretch(r, axis);
@@ -82,25 +86,38 @@ export function settleStretch(r: Float64Array, fresh: boolean, parameters: Fusio
   if (r[Slot.CLIP_AFTER] === READINGS_AFTER) closeStretch(r, parameters);
 }
 
-/** What the stretch left uncertain opens the corrections. */
+/** What the stretch left uncertain opens the corrections; what it turned is remembered if it was whole. */
 function closeStretch(r: Float64Array, parameters: FusionParameters): void {
   for (const axis of AXES) {
-    const at = Slot.GYRO_AXES + axis;
-    addVariance(r, r[Slot.CLIP_VARIANCE + axis]!, r[at]!, r[at + 3]!, r[at + 6]!);
+    if ((r[Slot.CLIP_AXES]! & (1 << axis)) === 0) continue;
+    leaveUncertain(r, axis, beatPeriod(r, axis, Math.sign(along(r, axis, Slot.CLIP_RATES))) > 0);
+    if (r[Slot.CLIP_AFTER]! > 0 && (r[Slot.CLIP_JOINED]! & (1 << axis)) === 0) remember(r, axis);
   }
   openInclination(r, parameters);
   r[Slot.CLIP_COUNT] = 0;
 }
 
-function openStretch(r: Float64Array, axes: number): void {
+function remember(r: Float64Array, axis: number): void {
+  const rate = along(r, axis, Slot.CLIP_RATES);
+  const sign = Math.sign(rate);
+  shoulderArc(r, axis, sign, Math.abs(rate), beatPeriod(r, axis, sign));
+  const weight = r[Slot.CLIP_OWN_WEIGHT + axis]!;
+  const excess = Math.max(0, (sign * r[Slot.CLIP_OWN_SUM + axis]!) / weight);
+  rememberBeat(r, axis, sign, arc[1]!, excess, 1 / weight);
+}
+
+function openStretch(r: Float64Array, axes: number, joined: number): void {
   r.fill(0, Slot.CLIP_AXES, Slot.CLIP_RATES);
   r[Slot.CLIP_AXES] = axes;
+  r[Slot.CLIP_JOINED] = joined;
   for (let i = 0; i < 4; i++) r[Slot.BEFORE_CLIP + i] = r[Slot.STRAPDOWN + i]!;
   for (let i = 0; i < 4; i++) r[Slot.CLIP_LAST + i] = r[Slot.TRUE_RATE + i]!;
   for (let i = 0; i < 4; i++) r[Slot.CLIP_LAST_BUT_ONE + i] = r[Slot.RATE_BEFORE + i]!;
   r[Slot.CLIP_KNOWN] = r[Slot.RATES_KNOWN]!;
   conjugate(r, r, Slot.ROTATION, Slot.INCLINATION);
   rotate(r, r, r, Slot.CLIP_FIELD, Slot.ROTATION, Slot.STEADY_FIELD);
+  r[Slot.CLIP_GRAVITY + 2] = STANDARD_GRAVITY;
+  rotate(r, r, r, Slot.CLIP_GRAVITY, Slot.ROTATION, Slot.CLIP_GRAVITY);
 }
 
 /**

@@ -5,8 +5,9 @@
  * even change of rate about one axis.
  */
 import { conjugate, multiply, normalise, rotate, turnBy } from "../numeric/quaternion.ts";
-import { FIELD_SHARE } from "./parameters.ts";
+import { FIELD_SHARE, type FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
+import { openInclination } from "./uncertainty.ts";
 
 /** A rate and its hub time. */
 const STRIDE = 4;
@@ -58,7 +59,7 @@ export function reviseGap(r: Float64Array): void {
  * as the gap's variance weighs against the field's; what is left opens the corrections of inclination and heading.
  * @param fresh a field came with this reading and may be compared with the one before
  */
-export function settleGap(r: Float64Array, fresh: boolean): void {
+export function settleGap(r: Float64Array, fresh: boolean, parameters: FusionParameters): void {
   let variance = r[Slot.GAP_VARIANCE]!;
   r[Slot.GAP_VARIANCE] = 0;
   if (fresh && r[Slot.STEADY_KNOWN] === 1) {
@@ -69,6 +70,7 @@ export function settleGap(r: Float64Array, fresh: boolean): void {
   }
   r[Slot.HEADING_VARIANCE]! += variance / 3;
   r[Slot.TILT_VARIANCE]! += variance * (2 / 3);
+  openInclination(r, parameters);
 }
 
 /** Turns the strapdown frame by a share of the small angle from the field now to the field before. */

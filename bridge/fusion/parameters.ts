@@ -27,9 +27,9 @@ export interface FusionParameters {
   /** How much of the direction error of a single specific force its average keeps: tilt per acceleration / g. Ours, no source. */
   readonly accelerationShare: number;
   /**
-   * Standard deviation of the specific force's direction averaged over the time constant, rad; it decides how far a
-   * clipped stretch opens the inclination's correction. Small: opens more readily, and lets more acceleration in. Ours, no
-   * source: a mean acceleration of 0.5 m/s² over the time constant.
+   * Standard deviation of the specific force's direction averaged over the time constant where nothing is known of the
+   * body's acceleration, rad: at a start; up to this the inclination counts as settled. Ours, no source: a mean
+   * acceleration of 0.5 m/s².
    */
   readonly accelSigma: number;
   /**
@@ -110,7 +110,7 @@ export const DEFAULT_PARAMETERS: FusionParameters = {
   magTauS: 9,
 
   inclinationSigma: 0.4 * RAD_PER_DEG,
-  accelerationShare: 0.05,
+  accelerationShare: 0.03,
   accelSigma: 0.05,
   headingSigma: 2 * RAD_PER_DEG,
 

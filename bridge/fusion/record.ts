@@ -70,26 +70,37 @@ export enum Slot {
   CLIP_AXES = CLIP_COUNT + 1,
   CLIP_AFTER = CLIP_AXES + 1,
   CLIP_SPAN = CLIP_AFTER + 1,
-  /** Body axes -> strapdown frame and the field in the strapdown frame, before the stretch. */
-  BEFORE_CLIP = CLIP_SPAN + 1,
+  /** Those of its axes that were clipped already before it, by another stretch. */
+  CLIP_JOINED = CLIP_SPAN + 1,
+  /** Body axes -> strapdown frame, and in the strapdown frame the field and gravity's specific force, before the stretch. */
+  BEFORE_CLIP = CLIP_JOINED + 1,
   CLIP_FIELD = BEFORE_CLIP + 4,
+  CLIP_GRAVITY = CLIP_FIELD + 3,
   /** The last two rates before the stretch, each followed by its hub time, and how many of them are known. */
-  CLIP_LAST = CLIP_FIELD + 3,
+  CLIP_LAST = CLIP_GRAVITY + 3,
   CLIP_LAST_BUT_ONE = CLIP_LAST + 4,
   CLIP_KNOWN = CLIP_LAST_BUT_ONE + 4,
-  /** By sensor axis: angle turned beyond the limit (signed), and its variance. */
+  /** By sensor axis: angle turned beyond the limit (signed), its variance, and the part of its deviation (signed) that
+   *  every stretch of the same shape has. */
   CLIP_EXCESS = CLIP_KNOWN + 1,
   CLIP_VARIANCE = CLIP_EXCESS + 3,
-  /** By sensor axis: what the fields after the stretch say of the excess: weights, and weighted sum. */
-  CLIP_FIELD_WEIGHT = CLIP_VARIANCE + 3,
-  CLIP_FIELD_SUM = CLIP_FIELD_WEIGHT + 3,
+  CLIP_SHAPE = CLIP_VARIANCE + 3,
+  /** By sensor axis: what the readings after the stretch say of the excess: weights, and weighted sum. */
+  CLIP_SEEN_WEIGHT = CLIP_SHAPE + 3,
+  CLIP_SEEN_SUM = CLIP_SEEN_WEIGHT + 3,
+  /** By sensor axis: the same of all that this stretch alone says, earlier beats left out. */
+  CLIP_OWN_WEIGHT = CLIP_SEEN_SUM + 3,
+  CLIP_OWN_SUM = CLIP_OWN_WEIGHT + 3,
   /** How the strapdown frame turns with the excess of one axis. */
-  CLIP_LEVER = CLIP_FIELD_SUM + 3,
+  CLIP_LEVER = CLIP_OWN_SUM + 3,
   /** The stretch's readings: rate, bias off, and the step that it closed. */
   CLIP_RATES = CLIP_LEVER + 3,
 
+  /** What earlier beats clipped, by sensor axis and sign of the rate; one after another as in clip-beat.ts. */
+  BEATS = CLIP_RATES + 4 * 128,
+
   /** Specific force in the strapdown frame, and its low-pass. */
-  INERTIAL_FORCE = CLIP_RATES + 4 * 128,
+  INERTIAL_FORCE = BEATS + 6 * 6,
   FORCE_LOW_PASS = INERTIAL_FORCE + 3,
   /** Direction of the low-passed specific force in the level frame, before it was made vertical. */
   UP = FORCE_LOW_PASS + 1 + 3 * 3,
@@ -97,8 +108,10 @@ export enum Slot {
   TILT_VARIANCE = UP + 3,
   HEADING_VARIANCE = TILT_VARIANCE + 1,
   HEADING_DRIFT = HEADING_VARIANCE + 1,
-  /** Mean square of the specific force's norm less gravity. */
-  ACCELERATION = HEADING_DRIFT + 1,
+  /** What the shape of clipped beats may have turned the body by, one way and back again: level frame, rad, signed. */
+  SWING = HEADING_DRIFT + 1,
+  /** Mean square of the specific force's difference from its average. */
+  ACCELERATION = SWING + 3,
   /** Strapdown frame -> level frame. */
   INCLINATION = ACCELERATION + 1,
   /** Body axes -> level frame, as quaternion and as matrix by rows. */

@@ -2,7 +2,7 @@
 import { TRUST } from "../sweep.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
-import { isHeadingSettled } from "./uncertainty.ts";
+import { isHeadingSettled, isLevel } from "./uncertainty.ts";
 
 /**
  * The sensor's TRUST code.
@@ -16,10 +16,10 @@ export function trustOf(
   parameters: FusionParameters,
 ): number {
   if (r[Slot.STARTED] === 0) return TRUST.LOST;
-  if (heading === TRUST.HEADING_UNAIDED) return TRUST.HEADING_UNAIDED;
   if (r[Slot.CLIPPED] === 1) return TRUST.CLIPPED;
   if (bridged) return TRUST.BRIDGED;
-  if (r[Slot.FORCE_LOW_PASS]! < parameters.accelTauS) return TRUST.SETTLING;
+  if (heading === TRUST.HEADING_UNAIDED) return TRUST.HEADING_UNAIDED;
+  if (!isLevel(r, parameters)) return TRUST.SETTLING;
   return heading;
 }
 

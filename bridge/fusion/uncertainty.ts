@@ -6,11 +6,11 @@
  * above a steady deviation s. The field's direction is white noise of density s² T, T being the published time constant;
  * so a heading of which nothing is known averages the first readings, 1, 1/2, 1/3 ..., and an uncertain one takes more
  * than the published share until its variance has fallen. Beside it the gyroscope's remaining bias drifts the heading,
- * evenly, as long as no field corrects it.
+ * evenly, as long as no field corrects it, and clipped beats swing it, one way and back.
  *
  * Inclination: the average of the specific force is worth the more the longer it is. Above its steady part the variance
  * falls as one over the averaged time, and after the time constant as the average forgets. The steady part grows with the
- * level of the body's own acceleration, the root mean square of the specific force's norm less gravity, and with what is
+ * level of the body's own acceleration, the root mean square of the specific force's difference from its average, and with what is
  * not known of the gyroscope's bias, which tilts for one time constant before it is corrected.
  */
 import { STANDARD_GRAVITY } from "../numeric/units.ts";
@@ -22,21 +22,46 @@ import { Slot } from "./record.ts";
 const ANY_ANGLE = (Math.PI * Math.PI) / 3;
 /** A variance below this, rad², is left as it is: it would fade into numbers too small to reckon with fast. */
 const NEGLIGIBLE = 1e-12;
+/** An average of less than the time constant, perhaps not of whole beats, is worth this much less. Ours, no source. */
+const CAUTION = 3;
 /** Of a rate that is predicted, this share of its size may be wrong. Ours, no source. */
 const PREDICTED_SHARE = 0.2;
+/** And of what its slope makes of the angle, this share: a beat turns back. Ours, no source. */
+const SLOPE_SHARE = 0.4;
 
-/** The body turned about a body axis (unit vector) by an unknown angle of this variance, rad². */
-export function addVariance(r: Float64Array, variance: number, x: number, y: number, z: number): void {
-  const up = Slot.LEVEL_MATRIX + 6;
-  const vertical = r[up]! * x + r[up + 1]! * y + r[up + 2]! * z;
-  r[Slot.HEADING_VARIANCE]! += variance * vertical * vertical;
-  r[Slot.TILT_VARIANCE]! += variance * (1 - vertical * vertical);
+/**
+ * A clipped stretch about a sensor axis is over: its excess was uncertain. What the shape of the beat has of that goes
+ * again with the body's way back, so it is added up with its sign; a tilt, if the body is known to beat.
+ */
+export function leaveUncertain(r: Float64Array, axis: number, beats: boolean): void {
+  const column = Slot.GYRO_AXES + axis;
+  const variance = r[Slot.CLIP_VARIANCE + axis]!;
+  const shape = r[Slot.CLIP_SHAPE + axis]!;
+  const random = Math.max(0, variance - shape * shape);
+  for (let row = 0; row < 3; row++) {
+    const m = Slot.LEVEL_MATRIX + 3 * row;
+    const share = r[m]! * r[column]! + r[m + 1]! * r[column + 3]! + r[m + 2]! * r[column + 6]!;
+    const swings = row === 2 || beats;
+    if (swings) r[Slot.SWING + row]! += shape * share;
+    r[row === 2 ? Slot.HEADING_VARIANCE : Slot.TILT_VARIANCE]! +=
+      (swings ? random : variance) * share * share;
+  }
 }
 
-/** Averages the specific force anew: the average so far counts for as long as the variance leaves it worth. */
+/** Variance of the direction of the specific force averaged over the time constant, rad². */
+function averageVariance(r: Float64Array, { inclinationSigma, accelerationShare }: FusionParameters): number {
+  const share = accelerationShare / STANDARD_GRAVITY;
+  return inclinationSigma * inclinationSigma + share * share * r[Slot.ACCELERATION]!;
+}
+
+/**
+ * Averages the specific force anew: the average so far counts for as long as the variance leaves it worth, seen against
+ * what an average is worth at the body's level of acceleration. Much uncertainty in calm motion opens the correction
+ * wide, and little in violent motion not at all.
+ */
 export function openInclination(r: Float64Array, parameters: FusionParameters): void {
-  const { accelSigma, accelTauS } = parameters;
-  const worthS = (accelSigma * accelSigma * accelTauS) / r[Slot.TILT_VARIANCE]!;
+  const { accelTauS } = parameters;
+  const worthS = (CAUTION * averageVariance(r, parameters) * accelTauS) / r[Slot.TILT_VARIANCE]!;
   if (worthS >= Math.min(r[Slot.FORCE_LOW_PASS]!, accelTauS)) return;
   const slope = Slot.FORCE_LOW_PASS + 4;
   r[Slot.FORCE_LOW_PASS] = worthS;
@@ -55,11 +80,14 @@ export function narrowInclination(r: Float64Array, parameters: FusionParameters)
 
 /** The level of the body's acceleration follows the newest specific force. */
 export function followAcceleration(r: Float64Array, gains: Float64Array): void {
-  const x = r[Slot.FORCE]!;
-  const y = r[Slot.FORCE + 1]!;
-  const z = r[Slot.FORCE + 2]!;
-  const beyond = Math.sqrt(x * x + y * y + z * z) - STANDARD_GRAVITY;
-  r[Slot.ACCELERATION]! += gains[Gain.ACCELERATION]! * (beyond * beyond - r[Slot.ACCELERATION]!);
+  const mean = Slot.FORCE_LOW_PASS + 1;
+  const x = r[Slot.INERTIAL_FORCE]! - r[mean]!;
+  const y = r[Slot.INERTIAL_FORCE + 1]! - r[mean + 1]!;
+  const z = r[Slot.INERTIAL_FORCE + 2]! - r[mean + 2]!;
+  const share = gains[Gain.ACCELERATION]!;
+  r[Slot.ACCELERATION]! += share * (x * x + y * y + z * z - r[Slot.ACCELERATION]!);
+  r[Slot.SWING]! *= 1 - share;
+  r[Slot.SWING + 1]! *= 1 - share;
 }
 
 /** The share of its disagreement with the field that an uncertain heading should take. */
@@ -72,16 +100,20 @@ export function uncertainShare(r: Float64Array, gains: Float64Array): number {
 export function narrowHeading(r: Float64Array, share: number): void {
   if (r[Slot.HEADING_VARIANCE]! > NEGLIGIBLE) r[Slot.HEADING_VARIANCE]! *= 1 - share;
   r[Slot.HEADING_DRIFT]! *= 1 - share;
+  r[Slot.SWING + 2]! *= 1 - share;
 }
 
 /** Standard deviation of the inclination as it is put out, rad. */
 export function inclinationSigma(r: Float64Array, aheadS: number, parameters: FusionParameters): number {
-  const { inclinationSigma: steady, accelerationShare, accelTauS } = parameters;
+  const { accelTauS } = parameters;
   const p: number = Slot.BIAS_COVARIANCE;
   const drifted = ((r[p]! + r[p + 3]! + r[p + 5]!) / 3) * accelTauS * accelTauS;
-  const moved = (accelerationShare / STANDARD_GRAVITY) ** 2 * r[Slot.ACCELERATION]!;
+  const swung = r[Slot.SWING]! ** 2 + r[Slot.SWING + 1]! ** 2;
   return Math.sqrt(
-    Math.min(ANY_ANGLE, steady * steady + moved + drifted + r[Slot.TILT_VARIANCE]! + passing(r, aheadS)),
+    Math.min(
+      ANY_ANGLE,
+      averageVariance(r, parameters) + drifted + r[Slot.TILT_VARIANCE]! + swung + passing(r, aheadS),
+    ),
   );
 }
 
@@ -91,19 +123,23 @@ export function headingSigma(
   aheadS: number,
   { headingSigma: steady }: FusionParameters,
 ): number {
-  const drift = r[Slot.HEADING_DRIFT]!;
+  const drift = r[Slot.HEADING_DRIFT]! ** 2 + r[Slot.SWING + 2]! ** 2;
   return Math.sqrt(
-    Math.min(ANY_ANGLE, steady * steady + r[Slot.HEADING_VARIANCE]! + drift * drift + passing(r, aheadS)),
+    Math.min(ANY_ANGLE, steady * steady + r[Slot.HEADING_VARIANCE]! + drift + passing(r, aheadS)),
   );
 }
 
 /**
- * Has what clipping left been corrected, so far that no more is left of it than is always there?
+ * Has what clipping left been corrected?
  * @param magnetic whether a field corrects the heading: where none does, only the inclination can recover
  */
 export function isRecovered(r: Float64Array, magnetic: boolean, parameters: FusionParameters): boolean {
-  const level = r[Slot.TILT_VARIANCE]! <= parameters.accelSigma ** 2;
-  return level && (!magnetic || isHeadingSettled(r, parameters));
+  return isLevel(r, parameters) && (!magnetic || isHeadingSettled(r, parameters));
+}
+
+/** Has the inclination settled? From a start that takes one time constant. */
+export function isLevel(r: Float64Array, { accelSigma }: FusionParameters): boolean {
+  return r[Slot.TILT_VARIANCE]! <= accelSigma * accelSigma;
 }
 
 /** Is the heading's variance at most its steady one's double? From a start that takes one time constant. */
@@ -115,9 +151,12 @@ export function isHeadingSettled(r: Float64Array, parameters: FusionParameters):
 function passing(r: Float64Array, aheadS: number): number {
   if (aheadS === 0 && r[Slot.CLIP_COUNT] === 0) return 0;
   let variance = 0;
+  const spanS = r[Slot.TRUE_RATE + 3]! - r[Slot.RATE_BEFORE + 3]!;
+  const sloped = r[Slot.RATES_KNOWN] === 2 ? (SLOPE_SHARE * 0.5 * aheadS * aheadS) / spanS : 0;
   for (let i = 0; i < 3; i++) {
     const missed = PREDICTED_SHARE * aheadS * r[Slot.TRUE_RATE + i]!;
-    variance += missed * missed;
+    const bent = sloped * (r[Slot.TRUE_RATE + i]! - r[Slot.RATE_BEFORE + i]!);
+    variance += missed * missed + bent * bent;
     if (r[Slot.CLIP_COUNT] !== 0) variance += r[Slot.CLIP_VARIANCE + i]!;
   }
   return variance;

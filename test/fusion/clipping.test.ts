@@ -1,8 +1,8 @@
 import { describe, expect, it } from "vitest";
 import { ChainFusion, type ChainFusionOptions } from "../../bridge/fusion/chain-fusion.ts";
 import { DEG_PER_RAD } from "../../bridge/numeric/units.ts";
-import { CONDITION, HAS_INERTIAL, type Sweep, TRUST } from "../../bridge/sweep.ts";
-import { fillRow, oneSensor, RATE_HZ, rest, totalError, turned } from "./motion.ts";
+import { ACCEL, CONDITION, HAS_INERTIAL, type Sweep, TRUST } from "../../bridge/sweep.ts";
+import { fillRow, oneSensor, RATE_HZ, rest, toBody, totalError, turned } from "./motion.ts";
 
 /** Plus and minus, rad/s. */
 const RANGE = 6;
@@ -12,34 +12,42 @@ const roll = (t: number) => 0.8 * Math.min(1, t) * Math.sin(4 * Math.PI * t);
 interface Run {
   readonly fusion: ChainFusion;
   readonly sweep: Sweep;
-  /** Greatest total error while the motion lasts, degrees. */
+  /** Greatest total error while the motion lasts, degrees, and its root mean square. */
   readonly worstDeg: number;
+  readonly rmsDeg: number;
 }
 
 /** Rest, then a rolling motion that is clipped on the sensor's own axis `axis`, which points to the nose; then rest. */
 function rollClipped(
   seconds: number,
   options: Partial<ChainFusionOptions>,
-  { axis = 0, flagged = false, clip = true } = {},
+  { axis = 0, flagged = false, clip = true, sway = 0, forceCounts = true } = {},
 ): Run {
   const fusion = new ChainFusion({ sensorCount: 1, rateHz: RATE_HZ, heading: "magnetic", ...options });
   const sweep = oneSensor();
   rest(fusion, sweep, 15, [1, 0, 0, 0]);
   const startS = sweep.timeS;
   let worst = 0;
+  let squares = 0;
   for (let i = 1; i <= seconds * RATE_HZ; i++) {
     const t = i / RATE_HZ;
     const mean = (roll(t) - roll(t - 1 / RATE_HZ)) * RATE_HZ;
     const read = clip ? Math.max(-RANGE, Math.min(RANGE, mean)) : mean;
     fillRow(sweep, 0, turned([roll(t - 0.5 / RATE_HZ), 0, 0]), [read, 0, 0]);
+    const swayed = toBody(turned([roll(t - 0.5 / RATE_HZ), 0, 0]), [0, sway * Math.cos(4 * Math.PI * t), 0]);
+    for (let i = 0; i < 3; i++) sweep.values[ACCEL + i]! += swayed[i]!;
     sweep.raw.fill(0);
     sweep.raw[axis] = read;
     sweep.conditions[0] = flagged && Math.abs(read) === RANGE ? CONDITION.GYRO_CLIPPED : 0;
+    if (!forceCounts) sweep.conditions[0]! |= CONDITION.ACCEL_CLIPPED;
     sweep.timeS = startS + t;
     fusion.step(sweep);
-    worst = Math.max(worst, totalError(fusion, turned([roll(t), 0, 0])));
+    const error = totalError(fusion, turned([roll(t), 0, 0]));
+    worst = Math.max(worst, error);
+    squares += error * error;
   }
-  return { fusion, sweep, worstDeg: worst * DEG_PER_RAD };
+  const rmsDeg = Math.sqrt(squares / (seconds * RATE_HZ)) * DEG_PER_RAD;
+  return { fusion, sweep, worstDeg: worst * DEG_PER_RAD, rmsDeg };
 }
 
 describe("a clipped angular rate", () => {
@@ -67,6 +75,31 @@ describe("a clipped angular rate", () => {
       rollClipped(4, { heading: "free", ...options }).worstDeg;
     expect(worstDeg({ gyroRanges: [RANGE] })).toBeLessThan(0.5 * worstDeg({}));
   });
+
+  it("is made good within 3° without a field, from the specific force of a body that hardly accelerates", () => {
+    const options: Partial<ChainFusionOptions> = { heading: "free", gyroRanges: [RANGE] };
+    const { worstDeg } = rollClipped(4, options);
+    expect(worstDeg).toBeLessThan(3);
+    expect(worstDeg).toBeLessThan(0.6 * rollClipped(4, options, { forceCounts: false }).worstDeg);
+  });
+
+  it.each([
+    // In step with the beat, as bad as can be: an error of the force's own size within its stated uncertainty.
+    [2, 2],
+    [5, 1.4],
+    // Force counts for next to nothing here; it differs by what it does to the average over seconds.
+    [15, 1.1],
+    [40, 1.1],
+  ])(
+    "is left nearly alone by the specific force of a body that sways with %f m/s² (at most %f times the error)",
+    (sway, factor) => {
+      const options: Partial<ChainFusionOptions> = { heading: "free", gyroRanges: [RANGE] };
+      const without = rollClipped(8, options, { sway, forceCounts: false });
+      const withForce = rollClipped(8, options, { sway });
+      expect(withForce.rmsDeg).toBeLessThan(factor * without.rmsDeg);
+      expect(withForce.rmsDeg).toBeLessThan(0.75 * rollClipped(8, { heading: "free" }, { sway }).rmsDeg);
+    },
+  );
 
   it("is held against the orientation while it lasts and until it is made good, not longer", () => {
     const { fusion, sweep } = rollClipped(1.06, { gyroRanges: [RANGE] });
