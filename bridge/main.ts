@@ -4,6 +4,7 @@
  * error that says where, what was found, what was expected and what to do.
  */
 import { Command, CommanderError } from "commander";
+import { addCalibrate } from "./commands/calibrate.ts";
 import { addExport } from "./commands/export.ts";
 import { addImport } from "./commands/import.ts";
 import { addLayout } from "./commands/layout.ts";
@@ -24,7 +25,17 @@ const program = new Command("bendwatch")
   .showHelpAfterError("(bendwatch help <command> lists its options)")
   .exitOverride();
 
-for (const add of [addLive, addReplay, addRehearse, addImport, addExport, addVerify, addLayout, addPorts])
+for (const add of [
+  addCalibrate,
+  addLive,
+  addReplay,
+  addRehearse,
+  addImport,
+  addExport,
+  addVerify,
+  addLayout,
+  addPorts,
+])
   add(program);
 
 try {

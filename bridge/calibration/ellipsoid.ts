@@ -1,8 +1,11 @@
 /**
  * Hard and soft iron from readings all around: the ellipsoid that the readings lie on, and the symmetric matrix that makes a
  * sphere of it. First the quadric nearest in the algebraic sense (linear least squares; as in Merayo et al., Meas. Sci.
- * Technol. 11 (2000) 120, from memory), then Gauss-Newton steps on the length itself, which noise does not pull to the
+ * Technol. 11 (2000) 120, from memory), then least squares of the length itself, which noise does not pull to the
  * inside.
+ *
+ * A far centre with a vanishing matrix makes one length of any readings: the quadric is needed as the start, and steps that do
+ * not help are not taken.
  *
  * A rotation after the matrix could not be seen; the symmetric one is taken, as in calibration.ts.
  */
@@ -20,7 +23,7 @@ export interface EllipsoidFit {
   readonly sigmaMatrix: number;
 }
 
-const STEPS = 20;
+const STEPS = 100;
 const UNKNOWNS = 9;
 /** Row and column of the matrix's six elements. */
 const ELEMENTS = [
@@ -46,12 +49,8 @@ export function fitEllipsoid(readings: ArrayLike<number>, length: number | null)
     ...start.centre,
     ...ELEMENTS.map(([r, c]) => start.shape[3 * r + c]! * field),
   ]);
-  for (let step = 0; step < STEPS; step++) {
-    const by = normalEquations(readings, p, field).step;
-    if (by === null) return null;
-    for (let k = 0; k < UNKNOWNS; k++) p[k]! += by[k]!;
-  }
-  const { covariance, squares } = normalEquations(readings, p, field);
+  const { normal, squares } = refine(readings, p, field);
+  const covariance = inverse(normal, UNKNOWNS);
   if (covariance === null || !p.every(Number.isFinite)) return null;
   const count = readings.length / 3;
   const variance = squares / Math.max(1, count - UNKNOWNS);
@@ -71,7 +70,32 @@ export function fitEllipsoid(readings: ArrayLike<number>, length: number | null)
   };
 }
 
-/** One Gauss-Newton step for |matrix (reading - centre)| = field. */
+/**
+ * Brings `p` to the least squares of |matrix (reading - centre)| - field by the method of Levenberg and Marquardt: steps are
+ * shortened until each one helps.
+ */
+function refine(readings: ArrayLike<number>, p: Float64Array, field: number) {
+  let here = normalEquations(readings, p, field);
+  let damping = 1e-3;
+  for (let step = 0; step < STEPS && damping < 1e12; step++) {
+    const damped = here.normal.map((value, k) => (k % (UNKNOWNS + 1) === 0 ? value * (1 + damping) : value));
+    const by = solve(damped, here.pull, UNKNOWNS);
+    const next = by === null ? p : p.map((value, k) => value + by[k]!);
+    const there = normalEquations(readings, next, field);
+    if (by === null || !(there.squares < here.squares)) {
+      damping *= 10;
+      continue;
+    }
+    const gained = here.squares - there.squares;
+    p.set(next);
+    here = there;
+    damping /= 10;
+    if (gained < 1e-15 * here.squares) break;
+  }
+  return here;
+}
+
+/** Normal equations of a step for |matrix (reading - centre)| = field, and the sum of squares now. */
 function normalEquations(readings: ArrayLike<number>, p: Float64Array, field: number) {
   const normal = new Float64Array(UNKNOWNS * UNKNOWNS);
   const pull = new Float64Array(UNKNOWNS);
@@ -95,7 +119,7 @@ function normalEquations(readings: ArrayLike<number>, p: Float64Array, field: nu
       for (let c = 0; c < UNKNOWNS; c++) normal[r * UNKNOWNS + c]! += slope[r]! * slope[c]!;
     }
   }
-  return { step: solve(normal, pull, UNKNOWNS), covariance: inverse(normal, UNKNOWNS), squares };
+  return { normal, pull, squares };
 }
 
 /** Centre and shape of the quadric nearest to the readings: |shape (reading - centre)| = 1, shape symmetric. */

@@ -34,8 +34,8 @@ export interface MountingOptions {
   readonly bend: boolean;
   /** Compass bearing of the nose in the first pose, rad clockwise from magnetic north; null if not known. */
   readonly bearing: number | null;
-  /** Standard deviation of the accelerometers' bias, m/s²; of the models' data sheets if left out. */
-  readonly accelBias?: number;
+  /** Standard deviation of each accelerometer's bias, m/s²; null, or all left out: as its model's data sheet allows. */
+  readonly accelBiases?: readonly (number | null)[];
 }
 
 export interface MountingNumbers {
@@ -212,7 +212,7 @@ export class Mounting implements Procedure<MountingNumbers> {
   #accelBias(i: number): number {
     // A uniform spread of the data sheet's width has this standard deviation.
     const ofSheet = (this.#options.models[i]!.accel.biasMilliG * STANDARD_GRAVITY) / 1000 / Math.sqrt(3);
-    return this.#options.accelBias ?? ofSheet;
+    return this.#options.accelBiases?.[i] ?? ofSheet;
   }
 
   /** Magnetic east in the first pose, sensor axes; null without magnetometer. */

@@ -8,35 +8,45 @@ import { type Manifest, readManifest } from "../trial/manifest.ts";
 import type { ReadEnd } from "../trial/reader.ts";
 import { softwareVersion } from "../version.ts";
 import { type Camera, loadCamera } from "./camera.ts";
-import { inWater, type WaterOptions, withWaterOptions } from "./options.ts";
+import {
+  type CalibrationChoice,
+  calibratedRig,
+  inWater,
+  type WaterOptions,
+  withCalibrationOption,
+  withWaterOptions,
+} from "./options.ts";
 import { trialFolder } from "./places.ts";
 import { runThrough } from "./run-through.ts";
 
 interface ExportCommandOptions extends WaterOptions {
   to: string;
   overwrite: boolean;
+  calibration: CalibrationChoice;
   camera?: string;
 }
 
 export function addExport(program: Command): void {
   withWaterOptions(
-    program
-      .command("export")
-      .description(
-        "Write a trial's midline, sensors, flags, gait numbers, marks, camera frames and drive as CSV with datapackage.json.",
-      )
-      .argument("<trial>", "by name under recordings/ or by path")
-      .requiredOption("--to <folder>", "folder for the tables")
-      .option("--camera <file>", "table of a camera's midlines to compare with; see recordings/README.md")
-      .option("--overwrite", "write into a folder that holds other files too", false),
+    withCalibrationOption(
+      program
+        .command("export")
+        .description(
+          "Write a trial's midline, sensors, flags, gait numbers, marks, camera frames and drive as CSV with datapackage.json.",
+        )
+        .argument("<trial>", "by name under recordings/ or by path")
+        .requiredOption("--to <folder>", "folder for the tables")
+        .option("--camera <file>", "table of a camera's midlines to compare with; see recordings/README.md")
+        .option("--overwrite", "write into a folder that holds other files too", false),
+    ),
   ).action(runExport);
 }
 
 async function runExport(trial: string, options: ExportCommandOptions): Promise<void> {
-  const { to, overwrite, camera } = options;
+  const { to, overwrite, camera, calibration } = options;
   const folder = trialFolder(trial);
   const manifest = readManifest(folder);
-  const rig = inWater(manifest.rig, options);
+  const rig = inWater(calibratedRig(manifest.rig, calibration), options);
   const seen = camera === undefined ? null : await loadCamera(camera, folder, manifest);
   const { sweeps, end } = exportTrial(folder, { ...manifest, rig }, to, overwrite, seen);
   console.log(`${sweeps} sweeps written to ${to}`);

@@ -59,7 +59,8 @@ function record(options: LiveOptions, rig: Rig, startedAt: Date, detail: string)
   return TrialRecorder.create({ folder, rig, origin, softwareVersion, startedAt, notes: options.notes });
 }
 
-function portOf(options: LiveOptions, rig: Rig) {
+/** The serial port that the options name, or else the rig file. @throws BendwatchError PORT_NOT_FOUND */
+export function portOf(options: { port?: string; usbSerial?: string }, rig: Rig) {
   if (options.usbSerial !== undefined) return { usbSerialNumber: options.usbSerial };
   if (options.port !== undefined) return { path: options.port };
   if (rig.hub.port !== undefined) return rig.hub.port;

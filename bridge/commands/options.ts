@@ -1,6 +1,6 @@
 /** Options that several commands share, and how their text becomes values. */
-import { type Command, InvalidArgumentError } from "commander";
-import type { Rig } from "../rig/load.ts";
+import { type Command, InvalidArgumentError, Option } from "commander";
+import { type Rig, withRecordsOfNow } from "../rig/load.ts";
 
 export interface ServeOptions {
   host: string;
@@ -68,6 +68,22 @@ export function finiteNumber(text: string): number {
   const value = Number(text);
   if (text.trim() === "" || !Number.isFinite(value)) throw new InvalidArgumentError("expected a number.");
   return value;
+}
+
+export type CalibrationChoice = "as-recorded" | "newest";
+
+/** Adds whose calibration a recorded trial is worked out with. */
+export function withCalibrationOption(command: Command): Command {
+  return command.addOption(
+    new Option("--calibration <choice>", "as-recorded, or the newest records of its sensors' serial numbers")
+      .choices(["as-recorded", "newest"])
+      .default("as-recorded"),
+  );
+}
+
+/** The trial's rig with the calibration chosen. */
+export function calibratedRig(rig: Rig, choice: CalibrationChoice): Rig {
+  return choice === "newest" ? withRecordsOfNow(rig) : rig;
 }
 
 /** A multiple of real time, or "max". */

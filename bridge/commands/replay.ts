@@ -4,10 +4,13 @@ import { readManifest } from "../trial/manifest.ts";
 import { TrialSource } from "../trial/trial-source.ts";
 import { loadCamera } from "./camera.ts";
 import {
+  type CalibrationChoice,
+  calibratedRig,
   inWater,
   replayRate,
   type ServeOptions,
   type WaterOptions,
+  withCalibrationOption,
   withServeOptions,
   withWaterOptions,
 } from "./options.ts";
@@ -17,24 +20,30 @@ import { watch } from "./watch.ts";
 interface ReplayCommandOptions extends ServeOptions, WaterOptions {
   rate: number | "max";
   loop: boolean;
+  calibration: CalibrationChoice;
   camera?: string;
 }
 
 export function addReplay(program: Command): void {
   withServeOptions(
     withWaterOptions(
-      program
-        .command("replay")
-        .description("Watch a recorded trial.")
-        .argument("<trial>", "by name under recordings/ or by path")
-        .option(
-          "--rate <times>",
-          "1 as recorded, 4 four times as fast, max as fast as it goes",
-          replayRate,
-          1,
-        )
-        .option("--loop", "start over at the end", false)
-        .option("--camera <file>", "table of a camera's midlines to compare with; see recordings/README.md"),
+      withCalibrationOption(
+        program
+          .command("replay")
+          .description("Watch a recorded trial.")
+          .argument("<trial>", "by name under recordings/ or by path")
+          .option(
+            "--rate <times>",
+            "1 as recorded, 4 four times as fast, max as fast as it goes",
+            replayRate,
+            1,
+          )
+          .option("--loop", "start over at the end", false)
+          .option(
+            "--camera <file>",
+            "table of a camera's midlines to compare with; see recordings/README.md",
+          ),
+      ),
     ),
   ).action(runReplay);
 }
@@ -52,7 +61,13 @@ async function runReplay(trial: string, options: ReplayCommandOptions): Promise<
   const camera =
     options.camera === undefined ? undefined : (await loadCamera(options.camera, folder, manifest)).track;
   await watch(
-    { rig: inWater(manifest.rig, options), source, recorder: null, startedAt, camera },
+    {
+      rig: inWater(calibratedRig(manifest.rig, options.calibration), options),
+      source,
+      recorder: null,
+      startedAt,
+      camera,
+    },
     options,
     (monitor) => {
       startOver = () => monitor.startOver();

@@ -8,7 +8,7 @@ import { thresholdsSchema } from "./thresholds.ts";
 const vector3 = z.tuple([z.number(), z.number(), z.number()]);
 const matrix3 = z.tuple([vector3, vector3, vector3]);
 
-const mountingSchema = z
+export const mountingSchema = z
   .strictObject({
     yawDeg: z.number().min(-180).max(180).default(0).describe("About body z; positive turns left."),
     pitchDeg: z
@@ -28,7 +28,7 @@ const mountingSchema = z
     "Rotation that carries body axes (x nose, y left, z up) onto the sensor's own axes: first yaw about z, then pitch about the new y, then roll about the new x.",
   );
 
-const calibrationSchema = z
+export const calibrationSchema = z
   .strictObject({
     gyroBiasDegPerS: vector3.default([0, 0, 0]).describe("Subtracted from the raw angular rate."),
     accelBiasMPerS2: vector3
@@ -64,6 +64,12 @@ export const sensorSchema = z.strictObject({
     .describe("Own rate, where this sensor gives a reading less often than the hub sweeps."),
   mounting: mountingSchema.prefault({}),
   calibration: calibrationSchema.prefault({}),
+  records: z
+    .union([z.enum(["newest", "none"]), z.array(z.string().regex(/^[\w-][\w.-]*$/))])
+    .default("newest")
+    .describe(
+      "Calibration records of this serial number that take the place of the numbers here: newest of each kind, none, or those listed, without .json.",
+    ),
 });
 
 const portSchema = z
@@ -135,6 +141,10 @@ const referenceSchema = z
 export const rigSchema = z.strictObject({
   name: z.string().min(1).max(60).describe("Shown on screen and in exports."),
   notes: z.string().max(2000).default("").describe("Free text."),
+  calibrations: z
+    .string()
+    .default("")
+    .describe("Folder of calibration records; config/calibrations if left empty."),
   body: z
     .strictObject({
       kind: z.enum(["animal", "dummy", "foil"]).describe("What bends."),

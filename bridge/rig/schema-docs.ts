@@ -9,6 +9,7 @@ import { readFileSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
 import { fileURLToPath } from "node:url";
 import { packageRoot } from "../paths.ts";
+import { calibrationRecordSchema } from "./calibration-record.ts";
 import { columnMapSchema } from "./column-map.ts";
 import { packetLayoutSchema } from "./packet-layout.ts";
 import { rigSchema } from "./rig.ts";
@@ -64,6 +65,13 @@ ${table(rigRows)}
 Ranges, noise and rates as a data sheet gives them.
 
 ${table(keyRows(sensorModelSchema))}
+
+## Calibration records: \`config/calibrations/<serial>/\`
+
+Written by \`bendwatch calibrate\`, one file a sensor and procedure; added, never changed. A rig's sensors take the newest of
+each kind by their serial number, or those they name under \`records\`.
+
+${table(keyRows(calibrationRecordSchema))}
 
 ## Thresholds: \`config/thresholds.json\`
 

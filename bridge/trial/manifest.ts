@@ -6,6 +6,7 @@ import { readFileSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
 import { z } from "zod";
 import { BendwatchError } from "../errors.ts";
+import { usedRecordSchema } from "../rig/calibration-record.ts";
 import { checkConfig, loadConfig, type Rig } from "../rig/load.ts";
 import { packetLayoutSchema } from "../rig/packet-layout.ts";
 import { rigSchema } from "../rig/rig.ts";
@@ -38,6 +39,7 @@ const resolvedSchema = z.looseObject({
   models: z.array(sensorModelSchema),
   packetLayout: packetLayoutSchema.nullable().default(null),
   thresholds: z.record(z.string(), z.unknown()),
+  recordsUsed: z.array(usedRecordSchema).default([]),
 });
 
 export type Origin = z.infer<typeof originSchema>;
@@ -87,7 +89,7 @@ function checkRig(path: string, stored: Record<string, unknown>): Rig {
     Object.fromEntries(Object.entries(stored).filter(([key]) => fileKeys.includes(key))),
     rigSchema,
   );
-  const { models, packetLayout, ...resolved } = checkConfig(where, stored, resolvedSchema);
+  const { models, packetLayout, recordsUsed, ...resolved } = checkConfig(where, stored, resolvedSchema);
   const known = loadConfig("", "thresholds", thresholdsSchema);
   const thresholds = checkConfig(
     `${where}.thresholds`,
@@ -101,5 +103,5 @@ function checkRig(path: string, stored: Record<string, unknown>): Rig {
       expected: `one for each of the ${file.sensors.length} sensors`,
     });
   }
-  return Object.freeze({ ...stored, ...file, models, packetLayout, thresholds });
+  return Object.freeze({ ...stored, ...file, models, packetLayout, thresholds, recordsUsed });
 }

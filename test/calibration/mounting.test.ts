@@ -116,7 +116,7 @@ describe("A still pose", () => {
       const { truth, mounting, handled } = mounted(
         3,
         seed,
-        { poses: [LEVEL, ON_ITS_LEFT], accelBias: 0.02 },
+        { poses: [LEVEL, ON_ITS_LEFT], accelBiases: [0.02, 0.02, 0.02] },
         true,
       );
       handled
