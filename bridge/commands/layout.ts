@@ -6,9 +6,11 @@ import { BendwatchError } from "../errors.ts";
 import { RAD_PER_DEG } from "../numeric/units.ts";
 import { POINT_COUNT } from "../pipeline.ts";
 import { describePlan, type PlanSubject } from "../placement/describe.ts";
+import type { Rebuilding } from "../placement/expected-error.ts";
 import { drawPlan } from "../placement/picture.ts";
 import { leastCount, type Placement, type PlacementPlan, planPlacement } from "../placement/plan.ts";
 import { loadRig } from "../rig/load.ts";
+import type { RigFile } from "../rig/rig.ts";
 import { countOf, gaitOf, type LayoutOptions, rangeOf, subjectOf } from "./layout-options.ts";
 import { numbers, positiveNumber, wholeNumber } from "./options.ts";
 
@@ -63,7 +65,7 @@ function runLayout(options: LayoutOptions): void {
       heading: subject.noiseDeg.heading * RAD_PER_DEG,
     },
     pointCount: POINT_COUNT,
-    rebuilding: (stations) => new Midline({ lengthM: 1, stations, pointCount: POINT_COUNT, interpolation }),
+    rebuilding: (stations) => rebuildingBy(interpolation, stations),
     range,
     present,
     count,
@@ -71,6 +73,24 @@ function runLayout(options: LayoutOptions): void {
   if (options.picture !== undefined)
     write(options.picture, drawPlan({ ...subject, body: rig.body, gait }, plan));
   console.log(options.json ? asJson(subject, plan) : describePlan(subject, plan));
+}
+
+/** The midline as the rig has it, swimming steadily at a beat a second where a wave is to be learned. */
+function rebuildingBy(
+  interpolation: RigFile["midline"]["interpolation"],
+  stations: readonly number[],
+): Rebuilding {
+  const midline = new Midline({ lengthM: 1, stations, pointCount: POINT_COUNT, interpolation });
+  let beats = 0;
+  return {
+    positions: midline.positions,
+    step(orientations, trust, phase) {
+      if (phase === undefined) return midline.step(orientations, trust);
+      const stepS = phase / (2 * Math.PI) - beats;
+      beats += stepS;
+      midline.step(orientations, trust, stepS, { phase, periodicShare: 1 });
+    },
+  };
 }
 
 function asJson(subject: PlanSubject, plan: PlacementPlan): string {

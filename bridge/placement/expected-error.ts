@@ -1,7 +1,7 @@
 /**
  * How far a midline will be off that is rebuilt from sensors at given places.
  *
- * Shape: over one cycle of the wave, sensors with exact orientations at their stations give a midline through the
+ * Shape: over one cycle of the wave (after some to learn from, where the rebuilding learns), sensors with exact orientations at their stations give a midline through the
  * project's own rebuilding; its points are set against the same points of the true body, both from the nose. This is what
  * the guess between and beyond the sensors costs.
  *
@@ -19,7 +19,8 @@ import { SwimmingBody } from "./swimming-body.ts";
 export interface Rebuilding {
   /** 3 per point, nose at the origin. */
   readonly positions: Float64Array;
-  step(orientations: Float64Array, trust: Uint8Array): void;
+  /** @param phase of the beat, rad, for what is learned from the beats; left out where nothing is to be learned */
+  step(orientations: Float64Array, trust: Uint8Array, phase?: number): void;
 }
 
 /** Standard deviation of a sensor's orientation, rad. */
@@ -38,6 +39,8 @@ export interface ErrorModelOptions {
   readonly moments: number;
   /** How many of them also serve for the noise. */
   readonly noiseMoments: number;
+  /** Beats that the rebuilding learns from before it counts; 0: it is told no phase and learns nothing. */
+  readonly learnedBeats: number;
 }
 
 export interface ExpectedError {
@@ -84,24 +87,29 @@ export class ErrorModel {
 
   /** @param stations ascending, 0 nose to 1 tail tip */
   expect(stations: readonly number[]): ExpectedError {
-    const { pointCount, rebuilding, noiseMoments, moments } = this.#options;
+    const { pointCount, rebuilding, noiseMoments, moments, learnedBeats } = this.#options;
     const shape = new Float64Array(pointCount);
     const noise = new Float64Array(pointCount);
     const rebuilt = rebuilding(stations);
     const trust = new Uint8Array(stations.length);
     const orientations = new Float64Array(4 * stations.length);
     const tail = { true: new Extent(), rebuilt: new Extent() };
-    this.#moments.forEach(({ body, points }, moment) => {
+    const counted = learnedBeats * moments;
+    for (let at = 0; at < counted + moments; at++) {
+      const moment = at % moments;
+      const { body, points } = this.#moments[moment];
       stations.forEach((station, i) => {
         const half = body.angle(station) / 2;
         orientations.set([Math.cos(half), 0, 0, Math.sin(half)], 4 * i);
       });
-      rebuilt.step(orientations, trust);
+      const phase = learnedBeats > 0 ? (2 * Math.PI * at) / moments : undefined;
+      rebuilt.step(orientations, trust, phase);
+      if (at < counted) continue;
       addSquares(shape, rebuilt.positions, points, 1 / moments);
       tail.true.add(points[2 * pointCount - 1]);
       tail.rebuilt.add(rebuilt.positions[3 * pointCount - 2]);
-      if (moment % (moments / noiseMoments) === 0) this.#addNoise(noise, rebuilt, orientations, trust);
-    });
+      if (moment % (moments / noiseMoments) === 0) this.#addNoise(noise, rebuilt, orientations, trust, phase);
+    }
     const total = shape.map((square, point) => square + noise[point]);
     return {
       shape: rms(shape),
@@ -113,7 +121,13 @@ export class ErrorModel {
   }
 
   /** Adds each sensor's share to the points' variances at one moment. */
-  #addNoise(into: Float64Array, rebuilt: Rebuilding, orientations: Float64Array, trust: Uint8Array): void {
+  #addNoise(
+    into: Float64Array,
+    rebuilt: Rebuilding,
+    orientations: Float64Array,
+    trust: Uint8Array,
+    phase: number | undefined,
+  ): void {
     const { noise, noiseMoments } = this.#options;
     const still = rebuilt.positions.slice();
     const displaced = orientations.slice();
@@ -121,7 +135,7 @@ export class ErrorModel {
     const addTurned = (sensor: number, sigma: number) => {
       if (sigma === 0) return;
       displaced.set(turned, 4 * sensor);
-      rebuilt.step(displaced, trust);
+      rebuilt.step(displaced, trust, phase);
       displaced.set(orientations.subarray(4 * sensor, 4 * sensor + 4), 4 * sensor);
       const weight = (sigma / SMALL_TURN) ** 2 / noiseMoments;
       for (let at = 0; at < still.length; at++) {

@@ -9,12 +9,18 @@ import { bestPlacement, evenPlacement, type MountableRange, mostSensors } from "
 
 /** Numbers of sensors that are compared, from one to this. */
 const COMPARED_TO = 16;
-/** The tail's excursion peaks between two moments: with so many it is off by 0.2 % of itself at most. */
-const REPORTED = { moments: 48, noiseMoments: 4 };
-/** While searching. An odd number: half a cycle on, the body is its mirror image and says nothing new. */
-const SEARCHED = { moments: 5, noiseMoments: 1 };
+/**
+ * The tail's excursion peaks between two moments: with so many it is off by 0.2 % of itself at most. After six beats a wave
+ * has been learned: another six change the error by less than a tenth.
+ */
+const REPORTED = { moments: 48, noiseMoments: 4, learnedBeats: 6 };
+/**
+ * While searching. An odd number: half a cycle on, the body is its mirror image and says nothing new. Nothing is learned:
+ * for a rig that learns the wave, the places are the best for when it has not.
+ */
+const SEARCHED = { moments: 5, noiseMoments: 1, learnedBeats: 0 };
 
-export interface PlanOptions extends Omit<ErrorModelOptions, "moments" | "noiseMoments"> {
+export interface PlanOptions extends Omit<ErrorModelOptions, "moments" | "noiseMoments" | "learnedBeats"> {
   readonly range: MountableRange;
   /** The rig's own stations. */
   readonly present: readonly number[];

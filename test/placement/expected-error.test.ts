@@ -8,7 +8,7 @@ import { SwimmingBody } from "../../bridge/placement/swimming-body.ts";
 import { Random } from "../../bridge/rehearsal/random.ts";
 import { NOISE, RANGE, swimmerWith } from "./models.ts";
 
-const REPORTED = { moments: 48, noiseMoments: 4 };
+const REPORTED = { moments: 48, noiseMoments: 4, learnedBeats: 0 };
 const modelOf = (gait: "carangiform" | "anguilliform") =>
   new ErrorModel({ ...swimmerWith(gait), ...REPORTED });
 
@@ -73,7 +73,7 @@ test("shape and noise add up as independent errors, in all and at each point; th
 
 test("the fewer moments of the search give the same error", () => {
   for (const gait of ["carangiform", "anguilliform"] as const) {
-    const searched = new ErrorModel({ ...swimmerWith(gait), moments: 5, noiseMoments: 1 });
+    const searched = new ErrorModel({ ...swimmerWith(gait), moments: 5, noiseMoments: 1, learnedBeats: 0 });
     for (const count of [3, 6, 12]) {
       const stations = evenPlacement(count, RANGE);
       // Of the shape's square five moments leave harmonics from the tenth on; the noise changes little over the cycle.
@@ -88,6 +88,25 @@ test("the interpolation counts: a smooth midline errs less than half as much in 
   const slerp = modelOf("carangiform").expect(stations);
   expect(smooth.shape).toBeLessThan(0.5 * slerp.shape);
   expect(smooth.noise).toBeLessThan(1.1 * slerp.noise);
+});
+
+test("what learns from the beats is told their phase, a cycle after so many learned ones; what does not is told none", () => {
+  const told: (number | undefined)[] = [];
+  const model = (learnedBeats: number) =>
+    new ErrorModel({
+      ...swimmerWith("carangiform"),
+      moments: 4,
+      noiseMoments: 1,
+      learnedBeats,
+      rebuilding: () => ({ positions: new Float64Array(123), step: (_, __, phase) => told.push(phase) }),
+    });
+  model(2).expect([0.5]);
+  // Two beats of four moments, then the cycle that counts, its first moment twice more: one sensor turned about two axes.
+  const quarters = [0, 1, 2, 3, 4, 5, 6, 7, 8, 8, 8, 9, 10, 11];
+  expect(told).toEqual(quarters.map((quarter) => (quarter * Math.PI) / 2));
+  told.length = 0;
+  model(0).expect([0.5]);
+  expect(new Set(told)).toEqual(new Set([undefined]));
 });
 
 test("with sensors at every piece of the midline, shape and tail amplitude are the true ones", () => {

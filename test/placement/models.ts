@@ -12,7 +12,7 @@ export const NOISE = { inclination: 0.7 * RAD_PER_DEG, heading: 1 * RAD_PER_DEG 
 export function swimmerWith(
   gait: GaitName,
   interpolation: Interpolation = "slerp",
-): Omit<ErrorModelOptions, "moments" | "noiseMoments"> {
+): Omit<ErrorModelOptions, "moments" | "noiseMoments" | "learnedBeats"> {
   const pointCount = 41;
   return {
     gait: GAITS[gait],

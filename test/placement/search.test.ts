@@ -61,7 +61,7 @@ test.each<[GaitName, number]>([
   ["carangiform", 3],
   ["anguilliform", 3],
 ])("for a %s body, %d sensors are placed as well as trying every 4 % can", (gait, count) => {
-  const model = new ErrorModel({ ...swimmerWith(gait), moments: 5, noiseMoments: 1 });
+  const model = new ErrorModel({ ...swimmerWith(gait), moments: 5, noiseMoments: 1, learnedBeats: 0 });
   const cost: Cost = (stations) => model.expect(stations).total;
   let least = Infinity;
   const tryAll = (before: number[]) => {

@@ -9,7 +9,7 @@ import { evenPlacement } from "../../bridge/placement/search.ts";
 import { RANGE, swimmerWith } from "../placement/models.ts";
 
 function shapePercent(gait: "carangiform" | "anguilliform", count: number): number {
-  const model = new ErrorModel({ ...swimmerWith(gait), moments: 48, noiseMoments: 1 });
+  const model = new ErrorModel({ ...swimmerWith(gait), moments: 48, noiseMoments: 1, learnedBeats: 0 });
   return 100 * model.expect(evenPlacement(count, RANGE)).shape;
 }
 
