@@ -7,6 +7,7 @@
  * chunks. Arrival times, as recorded, serve three things only: noticing a silent link, bridging a restart of the hub, and
  * telling whether a gap is longer than the hub's counters can say.
  */
+import { HeadMotion } from "./body/head-motion.ts";
 import { Midline } from "./body/midline.ts";
 import { TravelAxis } from "./body/travel-axis.ts";
 import { Calibration, mountingMatrix } from "./calibration/calibration.ts";
@@ -17,6 +18,7 @@ import { CameraComparison } from "./drive/camera-comparison.ts";
 import type { CameraTrack } from "./drive/camera-track.ts";
 import { DriveComparison } from "./drive/drive-comparison.ts";
 import { ChainFusion } from "./fusion/chain-fusion.ts";
+import { DEFAULT_PARAMETERS } from "./fusion/parameters.ts";
 import { FlagBook } from "./health/flag-book.ts";
 import { HeadingFallback } from "./health/heading-fallback.ts";
 import { Health } from "./health/health.ts";
@@ -88,6 +90,8 @@ export class Pipeline {
   readonly fusion: ChainFusion;
   readonly rhythm: Rhythm;
   readonly midline: Midline;
+  /** null where the rig file has the nose fixed. */
+  readonly headMotion: HeadMotion | null;
   readonly travel: TravelAxis;
   readonly gait: GaitMeter;
   readonly tailbeat: TailbeatMeter;
@@ -166,6 +170,16 @@ export class Pipeline {
       pointCount: POINT_COUNT,
       interpolation: rig.midline.interpolation,
     });
+    this.headMotion =
+      rig.midline.nose === "fixed"
+        ? null
+        : new HeadMotion({
+            stations: sensors.map((sensor) => sensor.station),
+            lengthM: body.lengthMm / 1000,
+            pointCount: POINT_COUNT,
+            delayS: meanDelayS(sensors, models),
+            levelTauS: DEFAULT_PARAMETERS.accelTauS,
+          });
     this.travel = new TravelAxis(rateHz);
     this.gait = new GaitMeter({
       rateHz,
@@ -262,6 +276,14 @@ export class Pipeline {
     this.rhythm.step(sweep, this.fusion.orientations, this.fusion.trust);
     this.midline.step(this.fusion.orientations, this.fusion.trust, sweep.stepS, this.rhythm);
     this.travel.step(sweep.stepS, this.midline.positions, this.tailbeat.periodS);
+    this.headMotion?.step(
+      sweep,
+      this.fusion.orientations,
+      this.fusion.trust,
+      this.rhythm,
+      this.travel.heading,
+      this.midline.positions,
+    );
     this.gait.step(sweep.timeS, this.midline.positions, this.travel.direction, this.fusion.trust);
     const { orientations, trust } = this.fusion;
     this.drive?.sweep(sweep.timeS, orientations, trust, this.midline.positions, this.travel.heading);
@@ -300,6 +322,12 @@ function viscosityOf({ water }: Rig): number {
   if (water.temperatureC === undefined) return Number.NaN;
   const salinity = water.kind === "sea" ? water.salinityGPerKg : 0;
   return kinematicViscosityOf(water.temperatureC, salinity);
+}
+
+/** How long before its sweep's tick a reading's moment is, s, on average over the sensors. */
+function meanDelayS(sensors: readonly SensorPlace[], models: Rig["models"]): number {
+  const delays = sensors.map(({ samplingOffsetUs }, i) => models[i].delayMs / 1000 - samplingOffsetUs / 1e6);
+  return delays.reduce((sum, delay) => sum + delay, 0) / delays.length;
 }
 
 /**

@@ -165,6 +165,7 @@ function updateText(nowMs: number): void {
   headingChoice.update(view);
   showMidline(view.status?.midline);
   letKeysScroll();
+  setText(element("nose-note"), view.status?.noseMoves ? "nose sways," : "nose held still,");
   document.body.dataset.live = String(isLive(view));
 }
 

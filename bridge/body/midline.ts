@@ -82,6 +82,7 @@ export class Midline {
     this.#wave?.beat(orientations, this.#lost, stepS, beating);
     const { positions } = this;
     const q = this.#orientation;
+    positions.fill(0, 0, 3); // whoever took the last shape may have moved it
     for (let place = 1, at = 0; place < this.#placeCount; place += 2, at += 3) {
       this.#between.at(place, q);
       // The body's x axis in earth axes: the first column of the rotation's matrix.

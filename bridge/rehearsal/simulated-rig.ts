@@ -35,6 +35,8 @@ export const EARTH_FIELD_UT: readonly number[] = [
 export interface Truth {
   /** 3 per point, m, earth axes, nose at the origin; TRUTH_POINTS evenly spaced points. */
   readonly midline: Float64Array;
+  /** m, earth axes, from the point of the travel axis abreast of the nose. */
+  readonly nose: Float64Array;
   /** 4 per sensor: the body's orientation at the sensor's station, body axes to earth. */
   readonly orientations: Float64Array;
 }
@@ -135,12 +137,14 @@ export class SimulatedRig {
   truthAt(timeS: number): Truth {
     const midline = new Float64Array(3 * TRUTH_POINTS);
     this.swimmer.midline(timeS, this.#truthPlaces, midline);
+    this.swimmer.kinematics(timeS, this.#truthPlaces[0], this.#kinematics);
+    const nose = this.#kinematics.position.slice();
     const orientations = new Float64Array(4 * this.#places.length);
     this.#places.forEach((place, i) => {
       this.swimmer.kinematics(timeS, place, this.#kinematics);
       orientations.set(this.#kinematics.orientation, 4 * i);
     });
-    return { midline, orientations };
+    return { midline, nose, orientations };
   }
 
   #read(sensor: number, index: number, sweepS: number): void {

@@ -221,6 +221,12 @@ export const rigSchema = z.strictObject({
         .describe(
           "Between sensors along the body, on the sphere. wave: while the body beats, by amplitude and phase of its wave, which takes sensors less than half a wavelength apart; else as smooth. smooth: bend and twist go on through the sensors without a jump, and beyond the ends. slerp: evenly from each to the next, straight beyond the ends.",
         ),
+      nose: z
+        .enum(["moving", "fixed"])
+        .default("moving")
+        .describe(
+          "moving: sway, heave and surge of the nose about its mean place, at the tailbeat and its harmonics, from the accelerometers; without a beat, or where they contradict the shape, the nose is held still. fixed: always held still.",
+        ),
       meanBendDeg: z
         .number()
         .min(-180)

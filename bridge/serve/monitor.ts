@@ -251,8 +251,8 @@ export class Monitor implements ByteSink {
 
   #status(): StatusMessage {
     const { recorder, source } = this.#options;
-    const { health, gait, drift, counters, timeS, hostTimeMs, sweepCount, fusion, midline, chosenHeading } =
-      this.#pipeline;
+    const { health, gait, headMotion, drift, counters, fusion, midline } = this.#pipeline;
+    const { timeS, hostTimeMs, sweepCount, chosenHeading } = this.#pipeline;
     const { good, badChecksum, discardedBytes } = counters;
     return {
       type: "status",
@@ -265,6 +265,7 @@ export class Monitor implements ByteSink {
       driftPpm: drift.ppm,
       counters: { good, badChecksum, discardedBytes },
       tailbeat: tailbeatView(gait),
+      noseMoves: headMotion?.held === null,
       heading: fusion.heading,
       chosenHeading,
       midline: { by: midline.inUse, whySmooth: midline.whySmooth },

@@ -145,7 +145,7 @@ export class Rhythm {
     const share = 1 - Math.exp((-countedS * this.#roughOmega) / (TURN * RATIO_BEATS));
     this.#momentsFilled += share * (1 - this.#momentsFilled);
     const part = share / this.#momentsFilled;
-    let squares = 0;
+    let logs = 0;
     let count = 0;
     for (let c = 0, at = 0; c < SIGNAL_COUNT; c++, at += 3) {
       const value = record[FILTER + 1 + c]!;
@@ -154,14 +154,15 @@ export class Rhythm {
       const apart = value - moments[at]!;
       moments[at + 1]! += part * (apart * apart - moments[at + 1]!);
       moments[at + 2]! += part * (rate * rate - moments[at + 2]!);
-      if (!(moments[at + 2]! > 0)) continue;
+      if (!(moments[at + 1]! > 0 && moments[at + 2]! > 0)) continue;
       const excursion = moments[at + 1]!;
-      const certain = excursion / (excursion + NOISE[c]! * NOISE[c]!);
-      squares += certain * (excursion / moments[at + 2]!);
+      // Squared: what drifts by less than the noise says nothing.
+      const certain = (excursion / (excursion + NOISE[c]! * NOISE[c]!)) ** 2;
+      logs += certain * Math.log(moments[at + 2]! / excursion);
       count += certain;
     }
-    if (!(squares > 0)) return;
-    const rough = Math.sqrt(count / squares);
+    if (!(count > 0)) return;
+    const rough = Math.exp((0.5 * logs) / count);
     this.#roughOmega = Math.max(TURN * LOWEST_HZ, Math.min(TURN * HIGHEST_HZ, rough));
     const ratio = this.#roughOmega / this.#omega;
     const apart = ratio > FAR_APART || ratio < 1 / FAR_APART;

@@ -92,7 +92,7 @@ export class TailbeatMeter {
   /**
    * Takes one sweep.
    * @param timeS hub time, s, increasing
-   * @param tailLateralM tail tip's excursion to the left of the travel axis, against the nose, m
+   * @param tailLateralM tail tip's excursion to the left of the travel axis, m
    * @returns true when this sweep ended a beat: `lastBeat` is new
    */
   step(timeS: number, tailLateralM: number): boolean {

@@ -14,7 +14,7 @@
  *     24           f64         arrival of the newest byte on the host clock, ms since the epoch
  *     32           f32         heading of the travel axis, rad from east, anticlockwise
  *     36           f32         tailbeat phase, 0..1, NaN when not beating
- *     40           f32 x 3P    midline, m: x along the travel axis (nose at 0, tail negative), y left, z up
+ *     40           f32 x 3P    midline, m: x along the travel axis (mean nose at 0, tail negative), y left, z up
  *     40+12P       f32 x P     roll along the body, rad, right side down positive
  *     40+16P       f32 x 4S    per sensor: gyro headroom, accel headroom (0..1), field off by (share, NaN without
  *                              magnetometer), delivered over 60 s (0..1)

@@ -72,6 +72,8 @@ export interface StatusMessage {
     readonly discardedBytes: number;
   };
   readonly tailbeat: TailbeatView;
+  /** The nose's own motion is in the midline; where not, the nose is held still, and amplitudes are against it. */
+  readonly noseMoves: boolean;
   /** At present. */
   readonly heading: HeadingView;
   /** As chosen by the rig file or the operator: while the field is off, the body may hold what magnetometers should. */

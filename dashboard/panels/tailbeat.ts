@@ -12,19 +12,21 @@ export class TailbeatPanel {
   readonly #steady: HTMLElement;
   readonly #steadyFor: HTMLElement;
   readonly #rows: HTMLElement;
+  readonly #against: HTMLElement;
 
   constructor(host: HTMLElement) {
     host.innerHTML = `<h2>Tailbeat</h2>
       <div class="beat"><p><span class="large"></span><span class="unit soft">Hz</span></p>
       <p class="steady"><strong></strong><span class="soft"></span></p></div>
       <dl class="numbers"></dl>
-      <p class="against soft">Amplitude against the nose; ± from beat to beat</p>`;
+      <p class="against soft"></p>`;
     this.#frequency = host.querySelector(".large")!;
     this.#frequency.title = FREQUENCY_MEANING;
     this.#unit = host.querySelector(".unit")!;
     this.#steady = host.querySelector(".steady strong")!;
     this.#steadyFor = host.querySelector(".steady span")!;
     this.#rows = host.querySelector("dl")!;
+    this.#against = host.querySelector(".against")!;
   }
 
   update(view: ViewState): void {
@@ -35,6 +37,10 @@ export class TailbeatPanel {
     const [word, why] = beat === undefined ? ["", ""] : steadiness(view, beat);
     setText(this.#steady, word);
     setText(this.#steadyFor, why);
+    const amplitudes = view.status?.noseMoves
+      ? "Amplitudes include the nose's sway"
+      : "Amplitudes against the nose";
+    setText(this.#against, `${amplitudes}; ± from beat to beat`);
     this.#show(gaitRows(beat?.numbers, view.welcome?.lengthM ?? Number.NaN));
   }
 

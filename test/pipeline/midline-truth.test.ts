@@ -4,6 +4,8 @@ import { rehearse } from "../support/rehearse.ts";
 
 /** Pose settled after the rest at the start, s. */
 const SETTLED_S = 5;
+/** The nose is followed, s. */
+const FOLLOWED_S = 8;
 
 test.each([
   { gait: "carangiform", frequencyHz: 1.1, seed: 1 },
@@ -13,16 +15,30 @@ test.each([
   "a rehearsed six-sensor swimmer's midline stays within 0.8 % of body length RMS of the truth: $gait at $frequencyHz Hz",
   async ({ gait, frequencyHz, seed }) => {
     let squares = 0;
+    let absoluteSquares = 0;
+    let absolutePoints = 0;
+    let noseSquares = 0;
+    let noseErrorSquares = 0;
     let points = 0;
     let worstLengthError = 0;
     const { pipeline } = await rehearse(
       { rig: "ribbon-foil", durationS: 60, seed, swimmer: { gait, frequencyHz } },
-      ({ timeS, midline, rig }, source) => {
+      ({ timeS, midline, rig, headMotion }, source) => {
         if (timeS < SETTLED_S) return;
         const lengthM = rig.body.lengthMm / 1000;
-        const truth = source.truthAt(timeS).midline;
-        for (let i = 0; i < truth.length; i++)
-          squares += ((truth[i]! - midline.positions[i]!) / lengthM) ** 2;
+        const { midline: truth, nose } = source.truthAt(timeS);
+        const { positions } = midline;
+        for (let i = 0; i < truth.length; i++) {
+          squares += ((truth[i]! - (positions[i]! - positions[i % 3]!)) / lengthM) ** 2;
+          if (timeS >= FOLLOWED_S)
+            absoluteSquares += ((truth[i]! + nose[i % 3]! - positions[i]!) / lengthM) ** 2;
+        }
+        if (timeS >= FOLLOWED_S) {
+          expect(headMotion!.held).toBeNull();
+          absolutePoints += truth.length / 3;
+          noseSquares += nose.reduce((sum, value) => sum + value * value, 0);
+          noseErrorSquares += nose.reduce((sum, value, i) => sum + (value - positions[i]!) ** 2, 0);
+        }
         points += truth.length / 3;
         worstLengthError = Math.max(worstLengthError, Math.abs(lengthOf(midline.positions) - lengthM));
       },
@@ -30,6 +46,10 @@ test.each([
     expect(points).toBeGreaterThan(200_000);
     // Biases as from the data sheet turn headings and pitches by some tenths of a degree; the interpolation's part is below 0.05 %.
     expect(Math.sqrt(squares / points)).toBeLessThan(0.008);
+    // With the nose's own motion in it: no worse.
+    expect(Math.sqrt(absoluteSquares / absolutePoints)).toBeLessThan(0.02);
+    // Of the nose's motion: the guess between two sensors, biases, noise.
+    expect(Math.sqrt(noseErrorSquares / noseSquares)).toBeLessThan(0.15);
     // Rounding of forty additions.
     expect(worstLengthError).toBeLessThan(1e-12);
     // One beat's frequency carries the orientation noise at its two crossings.

@@ -173,6 +173,7 @@ export class FakeBridge {
       driftPpm: 18,
       counters: { good: Math.round(this.#hubTimeS * rateHz), badChecksum: 3, discardedBytes: 41 },
       tailbeat: tailbeatOf(wave, lengthM),
+      noseMoves: true,
       heading,
       chosenHeading: heading,
       midline: midlineOf(wave),

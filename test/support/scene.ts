@@ -165,6 +165,7 @@ export function statusOf(link: LinkView, linkDetail = ""): StatusMessage {
     driftPpm: null,
     counters: { good: 0, badChecksum: 0, discardedBytes: 0 },
     tailbeat: tailbeatOf(wave, lengthM),
+    noseMoves: true,
     heading,
     chosenHeading: heading,
     midline: midlineOf(wave),

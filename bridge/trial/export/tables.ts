@@ -65,14 +65,15 @@ const midlineColumns: readonly Column[] = Array.from({ length: STATION_COUNT }, 
     number(
       `${axis}_${String(i).padStart(3, "0")}`,
       "mm",
-      `How far ${direction} of the nose the midline is at ${((100 * i) / (STATION_COUNT - 1)).toFixed(1)} % of body length.`,
+      `How far ${direction} of the mean nose the midline is at ${((100 * i) / (STATION_COUNT - 1)).toFixed(1)} % of body length.`,
     ),
   ),
 ).flat();
 
 export const MIDLINE: Table = {
   name: "midline",
-  description: "Where the midline is, one row a sweep: earth axes, the nose at the origin.",
+  description:
+    "Where the midline is, one row a sweep: earth axes, the mean place of the nose at the origin. Where its motion is not known, it stays there.",
   columns: [hubTime, ...midlineColumns],
 };
 
