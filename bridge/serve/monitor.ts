@@ -185,7 +185,10 @@ export class Monitor implements ByteSink {
       const choice: Choice = { heading: message.heading };
       recorder?.choice(choice, Date.now());
       this.#pipeline.choose(choice);
-    } else recorder?.mark(this.#pipeline.mark(message.text, "operator"), Date.now());
+    } else {
+      const mark = this.#pipeline.mark(message.text, "operator");
+      recorder?.mark(mark, Date.now());
+    }
   }
 
   #sendFrame(): void {

@@ -69,9 +69,10 @@ test("after calibration it stays within 0.6 % of body length, and its tail ampli
       if (timeS < 10) return;
       expect(midline.inUse).toBe("wave");
       const truth = source.truthAt(timeS).midline;
-      for (let i = 0; i < truth.length; i++) squares += ((truth[i]! - midline.positions[i]!) / LENGTH_M) ** 2;
+      const fromNose = midline.positions.map((value, i) => value - midline.positions[i % 3]!);
+      for (let i = 0; i < truth.length; i++) squares += ((truth[i]! - fromNose[i]!) / LENGTH_M) ** 2;
       points += truth.length / 3;
-      widen(tail, travel.lateral(midline.positions, 40));
+      widen(tail, travel.lateral(fromNose, 40));
       widen(trueTail, travel.lateral(truth, 40));
     },
   );
