@@ -108,7 +108,7 @@ function replaced(stations: readonly number[], i: number, station: number): numb
 }
 
 /** To rounding: sensors that only just fit do fit. */
-function isPossible(stations: readonly number[], { from, to, spacing }: MountableRange): boolean {
+export function isPossible(stations: readonly number[], { from, to, spacing }: MountableRange): boolean {
   return stations.every(
     (station, i) =>
       station >= from - 1e-9 &&
