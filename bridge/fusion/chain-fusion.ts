@@ -305,7 +305,7 @@ export class ChainFusion {
 
   #headingTrust(r: Float64Array, sensor: number): number {
     if (this.#heading === "magnetic") return magneticTrust(r, this.#parameters);
-    return this.#heading === "relative" ? this.#relative.trustOf(sensor) : TRUST.HEADING_UNAIDED;
+    return this.#heading === "relative" ? this.#relative.trust[sensor]! : TRUST.HEADING_UNAIDED;
   }
 }
 

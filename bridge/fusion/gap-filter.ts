@@ -20,7 +20,11 @@ export enum Gap {
   /** Of the newest sweep: time since the one before, s; turn to take off. */
   STEP = MEASURED + 1,
   TURN = STEP + 1,
-  SIZE = TURN + 1,
+  /** Rate of that turn, rad/s; how much has been turned since the filter last went on, and how long that is ago, s. */
+  TURN_RATE = TURN + 1,
+  TURNED = TURN_RATE + 1,
+  SINCE = TURNED + 1,
+  SIZE = SINCE + 1,
 }
 
 /** Of a start: sensors mounted straight on a body that is not (20°); and their bias within data sheets. Ours, no source. */
@@ -36,6 +40,8 @@ const CLIPPED = (5 * RAD_PER_DEG) ** 2;
 /** A correction takes this long, s, and never turns faster than this, rad/s. */
 const CORRECT_S = 2;
 const FASTEST = 5 * RAD_PER_DEG;
+/** The filter goes on once this long, s: nothing is lost against windows of seconds, and much of the work is saved. */
+const SPAN_S = 0.015;
 /** Beyond this an angle means nothing. */
 const MOST = Math.PI ** 2;
 
@@ -45,39 +51,53 @@ export function resetGap(g: Float64Array): void {
   g[Gap.DD] = DRIFT * DRIFT;
 }
 
-/** Standard deviation of the gap's heading, rad. */
+/** Two gaps become one (sign 1), or one is parted from another (-1): `g` takes the errors of `other` in, by its sign. */
+export function addGap(g: Float64Array, other: Float64Array, sign: 1 | -1): void {
+  g[Gap.ERROR]! += sign * other[Gap.ERROR]!;
+  g[Gap.DRIFT]! += sign * other[Gap.DRIFT]!;
+  g[Gap.TURNED]! += sign * other[Gap.TURNED]!;
+  for (const variance of [Gap.EE, Gap.ED, Gap.DD, Gap.LASTING]) g[variance]! += other[variance]!;
+  g[Gap.MEASURED]! *= other[Gap.MEASURED]!;
+}
+
+/** Standard deviation of the gap's heading as it stands, rad: what is known to be wrong, and not corrected yet, counts too. */
 export function gapSigma(g: Float64Array): number {
-  return Math.sqrt(g[Gap.EE]! + g[Gap.LASTING]!);
+  return Math.sqrt(g[Gap.EE]! + g[Gap.LASTING]! + g[Gap.ERROR]! * g[Gap.ERROR]!);
 }
 
 /**
  * Time passes, Gap.STEP seconds of it, and the heading is corrected a little: Gap.TURN is what to take off the heading of
- * the sensor behind against the one before.
+ * the sensor behind against the one before. The filter itself goes on once a span.
  */
 export function advanceGap(g: Float64Array, atRest: boolean, clipped: boolean): void {
-  const stepS = g[Gap.STEP]!;
+  const turn = g[Gap.TURN_RATE]! * g[Gap.STEP]!;
+  g[Gap.TURN] = turn;
+  g[Gap.TURNED]! += turn;
+  g[Gap.SINCE]! += g[Gap.STEP]!;
+  if (g[Gap.SINCE]! >= SPAN_S) predict(g, atRest, clipped);
+}
+
+function predict(g: Float64Array, atRest: boolean, clipped: boolean): void {
+  const spanS = g[Gap.SINCE]!;
   g[Gap.EE] = Math.min(
     MOST,
     g[Gap.EE]! +
-      stepS * (2 * g[Gap.ED]! + stepS * g[Gap.DD]!) +
-      (clipped ? CLIPPED * stepS : (WANDER * stepS ** 3) / 3),
+      spanS * (2 * g[Gap.ED]! + spanS * g[Gap.DD]!) +
+      (clipped ? CLIPPED * spanS : (WANDER * spanS ** 3) / 3),
   );
-  g[Gap.ED]! += stepS * g[Gap.DD]!;
-  g[Gap.DD] = Math.min(DRIFT * DRIFT, g[Gap.DD]! + WANDER * stepS);
+  g[Gap.ED]! += spanS * g[Gap.DD]!;
+  g[Gap.DD] = Math.min(DRIFT * DRIFT, g[Gap.DD]! + WANDER * spanS);
   if (atRest) {
-    g[Gap.DRIFT]! *= 1 - Math.min(1, stepS / REST_FADE_S);
+    g[Gap.DRIFT]! *= 1 - Math.min(1, spanS / REST_FADE_S);
     g[Gap.DD] = Math.min(g[Gap.DD]!, DRIFT_AT_REST * DRIFT_AT_REST);
     const most = Math.sqrt(g[Gap.EE]! * g[Gap.DD]!);
     g[Gap.ED] = Math.max(-most, Math.min(most, g[Gap.ED]!));
   }
-  const drifted = g[Gap.ERROR]! + g[Gap.DRIFT]! * stepS;
-  const most = FASTEST * stepS;
-  const turn = Math.max(
-    -most,
-    Math.min(most, g[Gap.DRIFT]! * stepS + g[Gap.ERROR]! * Math.min(1, stepS / CORRECT_S)),
-  );
-  g[Gap.ERROR] = drifted - turn;
-  g[Gap.TURN] = turn;
+  const error = g[Gap.ERROR]! + g[Gap.DRIFT]! * spanS - g[Gap.TURNED]!;
+  g[Gap.ERROR] = error;
+  g[Gap.TURN_RATE] = Math.max(-FASTEST, Math.min(FASTEST, g[Gap.DRIFT]! + error / CORRECT_S));
+  g[Gap.TURNED] = 0;
+  g[Gap.SINCE] = 0;
 }
 
 /**

@@ -1,7 +1,7 @@
 /**
  * What the relative heading needs of every sensor, horizontally and in the earth axes of the present headings: its
- * acceleration, its tangent, and the tangent's second derivative, all through the same low-pass, so that they stay
- * comparable; and the tangent's slow mean.
+ * acceleration, its tangent, and the tangent's derivatives, all through the same low-pass, so that they stay comparable.
+ * What is slower than tailbeats is taken off: errors of inclination live there, which are steady in the earth's axes.
  */
 import { lowPassGains, lowPassSize, stepLowPass } from "../numeric/low-pass.ts";
 import { ACCEL, CHANNELS } from "../sweep.ts";
@@ -14,23 +14,24 @@ export enum Motion {
   SINCE = TIME + 1,
   STEP = SINCE + 1,
   GAINS = STEP + 1,
-  /** Acceleration and tangent as they come, and low-passed. */
+  /** Acceleration and tangent as they come; then their low-pass: tangent, and its slope times the time constant. */
   INPUT = GAINS + 6,
   LOW_PASS = INPUT + 4,
-  ACCELERATION = LOW_PASS + 1,
-  TANGENT = ACCELERATION + 2,
-  /** Second derivative of the low-passed tangent, 1/s². */
-  TANGENT_RATE_OF_RATE = LOW_PASS + 1 + 3 * 4,
-  TANGENT_MEAN = TANGENT_RATE_OF_RATE + 2,
-  SIZE = TANGENT_MEAN + 2,
+  TANGENT = LOW_PASS + 1 + 2,
+  TANGENT_SLOPE = TANGENT + 4,
+  /** Slow means of acceleration, tangent, and the tangent's second derivative; then these three less their means. */
+  SLOW = LOW_PASS + 1 + 3 * 4,
+  ACCELERATION = SLOW + 6,
+  SWING = ACCELERATION + 2,
+  /** 1/s². */
+  TANGENT_RATE_OF_RATE = SWING + 2,
+  SIZE = TANGENT_RATE_OF_RATE + 2,
 }
 
-/** Slopes of the low-passed channels, times the time constant. */
-const SLOPE = Motion.LOW_PASS + 1 + 4;
 /** Cut-off 8 Hz: above the beats of bodies this long, below the rattle of mountings. */
-const TAU_S = 0.028;
-/** As slow as the inclination correction, which takes a bias of the accelerometer off on average. */
-const MEAN_TAU_S = 3;
+export const TAU_S = 0.028;
+/** Slower than beats, and well below the time constant of the inclination correction, s. */
+export const SLOW_S = 0.7;
 /** Readings further apart than this do not follow each other, s. */
 const BREAK_S = 0.1;
 const SAME_STEP = 0.01;
@@ -75,13 +76,21 @@ export function takeMotion(
   }
   setStep(r);
   stepLowPass(r, Motion.LOW_PASS, 4, Motion.INPUT, r, Motion.GAINS);
-  const share = sinceS / MEAN_TAU_S;
+  const share = Math.min(1, sinceS / SLOW_S);
+  for (let i = 0; i < 4; i++) {
+    const value = r[Motion.LOW_PASS + 1 + i]!;
+    const mean = r[Motion.SLOW + i]! + share * (value - r[Motion.SLOW + i]!);
+    r[Motion.SLOW + i] = mean;
+    r[Motion.ACCELERATION + i] = value - mean;
+  }
   for (let i = 0; i < 2; i++) {
     // tau² y'' + 2 tau y' + 2 y = 2 u
-    const tangent = r[Motion.TANGENT + i]!;
-    r[Motion.TANGENT_RATE_OF_RATE + i] =
-      (2 / (TAU_S * TAU_S)) * (r[Motion.INPUT + 2 + i]! - tangent - r[SLOPE + 2 + i]!);
-    r[Motion.TANGENT_MEAN + i]! += share * (tangent - r[Motion.TANGENT_MEAN + i]!);
+    const value =
+      (2 / (TAU_S * TAU_S)) *
+      (r[Motion.INPUT + 2 + i]! - r[Motion.TANGENT + i]! - r[Motion.TANGENT_SLOPE + i]!);
+    const mean = r[Motion.SLOW + 4 + i]! + share * (value - r[Motion.SLOW + 4 + i]!);
+    r[Motion.SLOW + 4 + i] = mean;
+    r[Motion.TANGENT_RATE_OF_RATE + i] = value - mean;
   }
   return r[Motion.LOW_PASS]! >= TAU_S;
 }
@@ -90,8 +99,8 @@ function restart(r: Float64Array): void {
   r.fill(0, Motion.LOW_PASS, Motion.LOW_PASS + lowPassSize(4));
   setStep(r);
   stepLowPass(r, Motion.LOW_PASS, 4, Motion.INPUT, r, Motion.GAINS);
-  r[Motion.TANGENT_MEAN] = r[Motion.INPUT + 2]!;
-  r[Motion.TANGENT_MEAN + 1] = r[Motion.INPUT + 3]!;
+  for (let i = 0; i < 4; i++) r[Motion.SLOW + i] = r[Motion.INPUT + i]!;
+  r.fill(0, Motion.SLOW + 4, Motion.SLOW + 6);
 }
 
 function setStep(r: Float64Array): void {
