@@ -32,7 +32,7 @@ describe("relative heading, gyroscopes wandering by up to 0.5 °/s, without magn
       expectHonest(chain, lastOfGaps);
       expect([...chain.fusion.trust]).toEqual(new Array(6).fill(TRUST.GOOD));
     },
-    60_000,
+    180_000,
   );
 
   it.each([
