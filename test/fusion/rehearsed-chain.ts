@@ -72,8 +72,8 @@ export class RehearsedChain {
         meanBend: meanBendDeg * RAD_PER_DEG,
       },
       gyroRanges: sensors.map(() => (rangeKnown ? gyroRange : Infinity)),
-      // The turn made of a reading ends half an interval after it, as in pipeline.ts.
-      samplingOffsetsS: sensors.map(() => 0.5 / hub.rateHz),
+      // The turn made of a reading ends half an interval after it, as in pipeline.ts. Clipped stretches are looked at there.
+      samplingOffsetsS: sensors.map(() => (gyroRange === Infinity ? 0.5 / hub.rateHz : 0)),
     });
   }
 
