@@ -35,9 +35,9 @@ const RULER_RIGHT = 28;
 
 /** How the body's shape between the sensors is found. */
 const MIDLINE_WORDS: Record<Interpolation, string> = {
-  wave: "wave between sensors",
-  smooth: "smooth between sensors",
-  slerp: "slerp between sensors",
+  wave: "wave midline",
+  smooth: "smooth midline",
+  slerp: "slerp midline",
 };
 
 const element = (id: string) => document.getElementById(id)!;

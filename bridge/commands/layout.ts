@@ -57,6 +57,8 @@ function runLayout(options: LayoutOptions): void {
   const range = rangeOf(options, present);
   const count = countOf(options.sensors ?? present.length, range);
   const subject = subjectOf(rig, options, gait, range);
+  // Before the search: a picture that cannot be written is told at once.
+  if (options.picture !== undefined) write(options.picture, "");
   const { interpolation } = rig.midline;
   const plan = planPlacement({
     gait,

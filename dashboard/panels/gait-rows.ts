@@ -25,6 +25,8 @@ interface RowShape {
 }
 
 const degrees = (digits: number) => (rad: number) => `${((rad * 180) / Math.PI).toFixed(digits)}°`;
+/** Digits in threes, apart by a narrow space that does not break (ISO 80000-1). */
+const inThousands = (value: number) => value.toFixed(0).replace(/\B(?=(\d{3})+$)/g, "\u202f");
 const inLengths = (m: number, lengthM: number) => `${percent(m / lengthM, 1)} L`;
 
 const SHAPES: readonly RowShape[] = [
@@ -93,7 +95,7 @@ const SHAPES: readonly RowShape[] = [
     number: "reynolds",
     name: "Reynolds number",
     meaning: "flow speed times body length over the water's kinematic viscosity",
-    value: (reynolds) => reynolds.toPrecision(3).replace("e+", "e"),
+    value: (reynolds) => inThousands(Number(reynolds.toPrecision(3))),
     spread: () => "",
   },
 ];
@@ -117,9 +119,9 @@ export function gaitRows(numbers: TailbeatView["numbers"] | undefined, lengthM: 
   });
 }
 
-/** "± 2 %". Nothing for a single beat. */
+/** "± 2.1 %". Nothing for a single beat. */
 function spreadOf(shape: RowShape, value: number, spread: GaitNumberView["spread"]): string {
   if (spread === null) return "";
-  const text = (shape.spread ?? ((s: number) => percent(s / Math.abs(value))))(spread);
+  const text = (shape.spread ?? ((s: number) => percent(s / Math.abs(value), 1)))(spread);
   return text === "" ? "" : `± ${text}`;
 }

@@ -12,8 +12,8 @@ function row(name: string, change: Partial<Record<GaitNumber, GaitNumberView>> =
 }
 
 test("a good number has its unit and its scatter as a share", () => {
-  expect(row("Tail amplitude")).toMatchObject({ value: "136 mm", beside: "22.0 % L  ± 1 %", doubt: "" });
-  expect(row("Wave speed")).toMatchObject({ value: "1.03 m/s", beside: "± 1 %" });
+  expect(row("Tail amplitude")).toMatchObject({ value: "136 mm", beside: "22.0 % L  ± 1.2 %", doubt: "" });
+  expect(row("Wave speed")).toMatchObject({ value: "1.03 m/s", beside: "± 1.2 %" });
 });
 
 test("an angle that may be zero has its scatter in degrees, and a true minus sign", () => {
@@ -45,7 +45,7 @@ test("a single beat has no scatter", () => {
   expect(row("Slip ratio", { slip })).toMatchObject({ value: "0.34", beside: "" });
 });
 
-test("a large number keeps three digits", () => {
+test("a large number keeps three digits, in groups of three", () => {
   const reynolds = { value: 812_345, spread: 10, doubts: [] };
-  expect(row("Reynolds number", { reynolds })).toMatchObject({ value: "8.12e5", beside: "" });
+  expect(row("Reynolds number", { reynolds })).toMatchObject({ value: "812\u202f000", beside: "" });
 });
