@@ -24,7 +24,8 @@ import { HeadingFallback } from "./health/heading-fallback.ts";
 import { Health } from "./health/health.ts";
 import { siteField } from "./health/site-field.ts";
 import { createDecoder } from "./link/decoder.ts";
-import type { LinkCounters, PacketDecoder } from "./link/packets.ts";
+import type { HubStatus, LinkCounters, PacketDecoder } from "./link/packets.ts";
+import { normalGravity } from "./numeric/gravity.ts";
 import { RAD_PER_DEG } from "./numeric/units.ts";
 import type { Rig } from "./rig/load.ts";
 import type { SensorPlace } from "./rig/rig.ts";
@@ -128,7 +129,7 @@ export class Pipeline {
     this.#decoder = createDecoder(rig, {
       sweep: (sweep) => this.#sweep(sweep),
       hello: () => {},
-      status: () => {},
+      status: (status) => this.#status(status),
       reference: ({ tickUs, yaw, sway }) => this.#reference(tickUs, yaw, sway),
       sync: ({ tickUs, edge }) => observer.sync?.(this.clock.timeOf(tickUs), edge),
       button: ({ tickUs, button }) => this.#button(tickUs, button),
@@ -145,6 +146,7 @@ export class Pipeline {
       rateHz,
       lengthM: body.lengthMm / 1000,
       thresholds,
+      gravityMPerS2: site ? normalGravity(site.latitudeDeg, site.heightM) : null,
       expectedField: site ? siteField(site, site.date ? new Date(site.date) : startedAt) : null,
       book: this.flags,
     });
@@ -301,6 +303,11 @@ export class Pipeline {
     const timeS = this.clock.timeOf(tickUs);
     if (this.sweepCount === 0 || Math.abs(timeS - this.timeS) > REFERENCE_STRAY_S) return;
     this.drive?.reference(timeS, yaw, sway);
+  }
+
+  #status(status: HubStatus): void {
+    // At the newest sweep's time: its own tick says nothing until the first sweep after a restart has come.
+    if (this.sweepCount > 0) this.health.hubStatus(this.timeS, status);
   }
 
   #button(tickUs: number, button: number): void {

@@ -35,9 +35,21 @@ export const FLAG_ADVICE: Readonly<Record<AdviceKey, string>> = {
     "{name} reads as if turned by half: check how it sits at {place} and its mounting in the rig file.",
   "sensors swapped":
     "Two sensors read as if they had changed places: check their plugs from {place} on, and their order in the rig file.",
+  "noise at rest":
+    "{name} is noisier than its model: stop whatever shakes {place}, then look at its supply and cable; if it stays so, replace it.",
+  "gyro bias":
+    "Find {name}'s gyroscope bias anew with the body at rest; if it comes back, replace the sensor.",
+  "gravity at rest":
+    "{name} does not read gravity: calibrate its accelerometer in six positions, and check its range in the sensor model.",
+  "field at rest":
+    "{name} does not read the field of this place: calibrate its magnetometer anew, away from iron.",
   "on-board fusion differs":
     "{name}'s own orientation is not ours, which is shown: check its mounting in the rig file, and its frame and axes in the packet layout.",
   "recording trouble": "Free disk space or choose another folder now: what arrives is not being kept.",
+  "supply low": "Charge or change the hub's supply before the next run, and look for a long or thin cable.",
+  "hub temperature": "Bring the hub back to a temperature it stands: water, shade, or a pause.",
+  "hub fault":
+    "The hub reports a fault of its own: check the plugs of all sensors, then power it off and on between runs.",
   "hub restarted":
     "The hub started anew: check its supply, and compare the time marks before and after when you evaluate.",
 };

@@ -7,13 +7,16 @@
  * that fault and expects exactly that flag.
  */
 import type { Sweep } from "../sweep.ts";
+import { AtRest } from "./at-rest.ts";
 import { CorruptPackets } from "./corrupt-packets.ts";
 import { Delivery } from "./delivery.ts";
 import { FlippedSensors } from "./flipped.ts";
 import { Headroom } from "./headroom.ts";
+import { type HubReport, HubStatusWatch } from "./hub-status.ts";
 import { MagneticInterference } from "./magnetic.ts";
 import { OnBoardDifference } from "./on-board.ts";
 import { HubRestarts, ReadErrors } from "./read-errors.ts";
+import type { RestMeter } from "./rest-meter.ts";
 import { Saturation } from "./saturation.ts";
 import type { HealthSetup } from "./setup.ts";
 import { Silence } from "./silence.ts";
@@ -30,9 +33,11 @@ export class Health {
   readonly #headroom: Headroom;
   readonly #stuck: StuckAxes;
   readonly #magnetic: MagneticInterference;
+  readonly #atRest: AtRest;
   readonly #flipped: FlippedSensors;
   readonly #swapped: SwappedSensors;
   readonly #onBoard: OnBoardDifference;
+  readonly #hubStatus: HubStatusWatch;
 
   constructor(setup: HealthSetup) {
     this.#silence = new Silence(setup);
@@ -44,9 +49,11 @@ export class Health {
     this.#headroom = new Headroom(setup);
     this.#stuck = new StuckAxes(setup);
     this.#magnetic = new MagneticInterference(setup);
+    this.#atRest = new AtRest(setup);
     this.#flipped = new FlippedSensors(setup);
     this.#swapped = new SwappedSensors(setup);
     this.#onBoard = new OnBoardDifference(setup);
+    this.#hubStatus = new HubStatusWatch(setup);
   }
 
   /**
@@ -65,6 +72,7 @@ export class Health {
     this.#headroom.observe(sweep);
     this.#stuck.observe(sweep);
     this.#magnetic.observe(sweep, orientations);
+    this.#atRest.observe(sweep);
     this.#swapped.observe(sweep);
     this.#flipped.observe(sweep, this.#swapped.outOfOrder);
   }
@@ -82,6 +90,11 @@ export class Health {
   linkSilent(silent: boolean, timeS: number): void {
     this.#silence.linkSilent(silent, timeS);
     if (silent) this.#delivery.silent();
+  }
+
+  /** A status packet of the hub has come. @param timeS hub time, s */
+  hubStatus(timeS: number, report: HubReport): void {
+    this.#hubStatus.observe(timeS, report);
   }
 
   /** So many more packets were unreadable: told before the sweep that follows them, with its hub time, s. */
@@ -107,6 +120,11 @@ export class Health {
   /** Share by which the magnetic field is off, per sensor; NaN without magnetometer or before there is a reference. */
   get fieldOff(): Float64Array {
     return this.#magnetic.fieldOff;
+  }
+
+  /** What each sensor measures at rest: figures of its last window, of its last run, and its bias instability. */
+  get rest(): RestMeter {
+    return this.#atRest.meter;
   }
 
   /** Share of the readings due that came over the last 60 s, per sensor, 0 .. 1. */

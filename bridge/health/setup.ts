@@ -29,5 +29,7 @@ export interface HealthSetup {
   readonly thresholds: Thresholds;
   /** From the World Magnetic Model (site-field.ts); null where the rig file names no site. */
   readonly expectedField: ExpectedField | null;
+  /** Local gravity, m/s²; null where the rig file names no site. */
+  readonly gravityMPerS2: number | null;
   readonly book: FlagBook;
 }

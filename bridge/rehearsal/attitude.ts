@@ -105,3 +105,14 @@ export function turnAboutZ(v: Float64Array, angle: number, out: Float64Array): v
   out[1] = s * x + c * y;
   out[2] = v[2];
 }
+
+/** out = v turned about x; out may be v. */
+export function turnAboutX(v: Float64Array, angle: number, out: Float64Array): void {
+  const c = Math.cos(angle);
+  const s = Math.sin(angle);
+  const y = v[1];
+  const z = v[2];
+  out[0] = v[0];
+  out[1] = c * y - s * z;
+  out[2] = s * y + c * z;
+}

@@ -11,9 +11,20 @@ import { BendwatchError, type ErrorDetail } from "../errors.ts";
 export const FAULT_KINDS = {
   magnet: { of: "sensor", does: "a small magnet lies beside the unit: tens of µT in its own axes" },
   field: { of: "rig", does: "steel is brought near: the field at all units changes alike" },
+  plate: { of: "sensor", does: "a steel plate lies beside the unit and the next one towards the tail" },
+  motor: { of: "sensor", does: "a small motor runs beside the unit: its field alternates" },
+  mains: {
+    of: "rig",
+    does: "a cable along the rig carries mains current: the field alternates at all units",
+  },
   saturation: { of: "sensor", does: "the unit rattles in its mount, faster than its gyro can measure" },
   flattop: { of: "sensor", does: "the gyro limits well below its full scale" },
   stuck: { of: "axis", does: "the axis repeats one value" },
+  noisy: { of: "sensor", does: "the unit's gyro and accelerometer are six times as noisy" },
+  offset: { of: "sensor", does: "the unit's gyro is off by four times what its data sheet allows" },
+  heavy: { of: "sensor", does: "the unit's accelerometer reads 8 % too much" },
+  strong: { of: "sensor", does: "the unit's magnetometer reads 8 % too much" },
+  slipped: { of: "sensor", does: "the unit's patch lets go: it turns by 34° about the body's long axis" },
   upended: { of: "sensor", does: "the unit sits upside down: half a turn about the body's long axis" },
   backward: { of: "sensor", does: "the unit faces the tail: half a turn about its vertical axis" },
   swapped: { of: "sensor", does: "the unit's plug and that of the next one are exchanged" },
@@ -23,10 +34,20 @@ export const FAULT_KINDS = {
   burst: { of: "rig", does: "all sweeps are lost" },
   corrupt: { of: "rig", does: "one packet in five arrives with flipped bits" },
   silence: { of: "rig", does: "no bytes arrive; the hub goes on counting" },
+  repeated: { of: "rig", does: "one sweep in ten arrives twice" },
+  overtaken: { of: "rig", does: "two later sweeps overtake one in ten" },
   restart: { of: "rig", does: "the hub is dark, then counts from zero" },
+  drift: { of: "rig", does: "the hub's clock runs 600 ppm fast" },
+  sag: { of: "rig", does: "the hub's supply sags to 4.4 V" },
+  hot: { of: "rig", does: "the hub is at 68 °C" },
+  bus: { of: "rig", does: "the hub says that the bus to the sensors fails" },
 } as const satisfies Record<string, { of: "rig" | "sensor" | "axis"; does: string }>;
 
-export type FaultKind = keyof typeof FAULT_KINDS;
+type FaultKinds = typeof FAULT_KINDS;
+export type FaultKind = keyof FaultKinds;
+/** Kinds that concern the whole rig, and those that concern a unit or one of its axes. */
+export type RigFaultKind = { [K in FaultKind]: FaultKinds[K]["of"] extends "rig" ? K : never }[FaultKind];
+export type SensorFaultKind = Exclude<FaultKind, RigFaultKind>;
 
 /** Axis names in the order of a reading's nine numbers. */
 export const AXES: readonly string[] = ["gx", "gy", "gz", "ax", "ay", "az", "mx", "my", "mz"];

@@ -20,6 +20,8 @@ export interface Part {
   readonly noise: number;
   /** Constant offset per axis: the unit's own and what the calibration takes off. */
   readonly bias: Float64Array;
+  /** Largest offset of the unit's own. */
+  readonly biasLimit: number;
 }
 
 /** Packets carry 16-bit counts. */
@@ -91,7 +93,7 @@ export class NoisySensor {
     const bits = Math.min(modelBits, MAX_BITS);
     const fullCounts = 2 ** (bits - 1) - 1;
     const bias = Float64Array.from(known, (value) => value + this.#random.between(-biasLimit, biasLimit));
-    return { scale: range / 2 ** (bits - 1), fullCounts, noise, bias };
+    return { scale: range / 2 ** (bits - 1), fullCounts, noise, bias, biasLimit };
   }
 
   #measure({ scale, fullCounts, noise, bias }: Part, raw: Float64Array, at: number): void {

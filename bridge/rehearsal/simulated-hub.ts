@@ -10,7 +10,7 @@ import { OutPort } from "./out-port.ts";
 import type { SimulatedRig } from "./simulated-rig.ts";
 
 const HELLO_PERIOD_S = 1;
-const STATUS_PERIOD_S = 2;
+const STATUS_PERIOD_S = 0.5;
 const REFERENCE_PERIOD_S = 0.02;
 
 /** Status fault bit: buffer overrun (as in link/packets.ts). */
@@ -51,6 +51,8 @@ export class SimulatedHub {
   #tickAtOriginUs: number;
   #edges = 0;
   #overrun = false;
+  /** Sweeps on their way, and how many have yet to overtake each. */
+  #overtaken: { readonly frame: Uint8Array; readonly ahead: number }[] = [];
   readonly #port: OutPort;
 
   constructor({ rig, simulated, firstTickUs, syncHz, driveLagS }: SimulatedHubOptions) {
@@ -103,7 +105,9 @@ export class SimulatedHub {
   }
 
   #tickUs(timeS: number): number {
-    return (this.#tickAtOriginUs + Math.round((timeS - this.#tickOriginS) * 1e6)) >>> 0;
+    let aheadS = 0;
+    for (const effect of this.#simulated.effects) aheadS += effect.tickAheadS?.(timeS) ?? 0;
+    return (this.#tickAtOriginUs + Math.round((timeS - this.#tickOriginS + aheadS) * 1e6)) >>> 0;
   }
 
   #restartIfDue(timeS: number): void {
@@ -120,9 +124,25 @@ export class SimulatedHub {
     const sweep = this.#simulated.sweep(Math.round(timeS * this.#rig.hub.rateHz));
     sweep.tickUs = this.#tickUs(timeS);
     const frame = this.#encoder.sweep(sweep); // a lost sweep still counts
-    let lost = false;
-    for (const effect of this.#simulated.effects) lost = effect.losesSweep?.(timeS) === true || lost;
-    if (!lost) this.#queue(timeS, frame);
+    let copies = 1;
+    let ahead = 0;
+    for (const effect of this.#simulated.effects) {
+      if (effect.losesSweep?.(timeS) === true) copies = 0;
+      if (copies > 0 && effect.repeatsSweep?.(timeS) === true) copies++;
+      ahead = Math.max(ahead, effect.sweepsAhead?.(timeS) ?? 0);
+    }
+    if (ahead > 0) this.#overtaken.push({ frame: frame.slice(), ahead });
+    else for (let copy = 0; copy < copies; copy++) this.#queue(timeS, frame);
+    this.#sendOvertaken(timeS);
+  }
+
+  /** Sends the sweeps that as many have overtaken as should. */
+  #sendOvertaken(timeS: number): void {
+    if (this.#overtaken.length === 0) return;
+    for (const { frame, ahead } of this.#overtaken) if (ahead === 0) this.#queue(timeS, frame);
+    this.#overtaken = this.#overtaken
+      .filter(({ ahead }) => ahead > 0)
+      .map(({ frame, ahead }) => ({ frame, ahead: ahead - 1 }));
   }
 
   #sendStatus(timeS: number): void {
@@ -133,6 +153,7 @@ export class SimulatedHub {
       faults: this.#overrun ? OVERRUN : 0,
     };
     this.#overrun = false;
+    for (const effect of this.#simulated.effects) effect.changeStatus?.(timeS, status);
     this.#queue(timeS, this.#encoder.status(status));
   }
 

@@ -101,7 +101,10 @@ export class SimulatedRig {
       effect.isSwapped ? [{ sensor: faults[i].sensor, effect }] : [],
     );
     this.#effectsOn = sensors.map((_, sensor) => {
-      const own = this.effects.filter((_, i) => faults[i].sensor === sensor);
+      const own = this.effects.filter((effect, i) => {
+        const behind = sensor - faults[i].sensor;
+        return faults[i].sensor >= 0 && behind >= 0 && behind < (effect.units ?? 1);
+      });
       if (unrest === undefined) return own;
       return [...own, unrestOf(unrest, Random.forStream(seed, sensors.length + faults.length + sensor))];
     });

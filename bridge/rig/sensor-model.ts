@@ -20,6 +20,13 @@ export const sensorModelSchema = z.strictObject({
       ...axisTriple,
       noiseDegPerSPerSqrtHz: z.number().min(0).describe("White-noise density."),
       biasDegPerS: z.number().min(0).describe("Largest zero-rate offset the data sheet allows."),
+      biasInstabilityDegPerH: z
+        .number()
+        .positive()
+        .optional()
+        .describe(
+          "Bias instability: where the Allan deviation is least, over 0.664; not judged if left out.",
+        ),
     })
     .describe("Gyroscope."),
   accel: z

@@ -68,6 +68,60 @@ export const thresholdsSchema = z.strictObject({
     .describe(
       "Two sensors are swapped when the wave runs backwards between neighbours by this lag or more: neighbours lag by 6° where they lag least (sixteen on a carangiform body), and windows of 4 s measure lags to about 1°.",
     ),
+  restS: z
+    .number()
+    .min(1)
+    .max(60)
+    .describe(
+      "A sensor is judged at rest once it has lain still for this long, and again after each such time: sixty averages of 0.05 s tell noise to a tenth, and a bias of 0.01 °/s.",
+    ),
+  restNoiseFactor: z
+    .number()
+    .min(1)
+    .max(100)
+    .describe(
+      "A flag when a gyroscope or accelerometer is this many times as noisy at rest as its model: units of one kind differ by less than a half (common practice, no source), and the measurement errs by a tenth.",
+    ),
+  restGyroBiasShare: z
+    .number()
+    .min(0.01)
+    .max(100)
+    .describe(
+      "A flag when the rate at rest exceeds this share of the data sheet's offset on all three axes together: what goes beyond it is no offset of a sound unit; the quarter is for temperature.",
+    ),
+  restGravityShare: z
+    .number()
+    .min(0.01)
+    .max(100)
+    .describe(
+      "A flag when the force at rest is off local gravity (latitude and height of the site) by this share of the data sheet's offset on all three axes together; the quarter is for scale errors.",
+    ),
+  restFieldShare: z
+    .number()
+    .min(0.005)
+    .max(1)
+    .describe(
+      "A flag when the field's norm at rest is off by this share both from the Earth's at the site and from what most sensors read: three times what a good calibration leaves (common practice, no source).",
+    ),
+  supplyLeastV: z
+    .number()
+    .min(0)
+    .max(100)
+    .describe(
+      "A flag when the hub's supply is below this: the least a USB port of full power may give (USB 2.0, 7.2.2, from memory). Another supply has another limit: give it in the rig file.",
+    ),
+  temperatureLeastC: z
+    .number()
+    .min(-100)
+    .max(100)
+    .describe("A flag when the hub is colder than this: water freezes in housing and plugs."),
+  temperatureMostC: z
+    .number()
+    .min(-100)
+    .max(150)
+    .describe(
+      "A flag when the hub is hotter than this: in water it should never be, and batteries and glue suffer from 60 °C on (common practice, no source).",
+    ),
   stuckAxisS: z
     .number()
     .min(0.1)

@@ -18,8 +18,15 @@ export type FlagKind =
   | "sensor read errors"
   | "sensor flipped"
   | "sensors swapped"
+  | "noise at rest"
+  | "gyro bias"
+  | "gravity at rest"
+  | "field at rest"
   | "on-board fusion differs"
   | "recording trouble"
+  | "supply low"
+  | "hub temperature"
+  | "hub fault"
   | "hub restarted";
 
 export interface Flag {

@@ -107,7 +107,7 @@ test("a sensor model that is not there is named with the sensor that wants it", 
 test.each([
   [["swim"], /unknown command 'swim'/],
   [["replay"], /missing required argument 'trial'/],
-  [["rehearse", "--rig", "ribbon-foil", "--fault", "ghost@1+1"], /one of magnet, field, saturation/],
+  [["rehearse", "--rig", "ribbon-foil", "--fault", "ghost@1+1"], /one of magnet, field, plate/],
   [["rehearse", "--rig", "ribbon-foil", "--no-dashboard"], /COMMAND_INVALID/],
   [["replay", "no-such-trial"], /TRIAL_UNREADABLE/],
   [["live", "--rig", "ribbon-foil", "--no-record"], /PORT_NOT_FOUND/],

@@ -3,6 +3,7 @@
  * in time, and gone after the fault.
  */
 import { describe, expect, test } from "vitest";
+import { RAD_PER_DEG, STANDARD_GRAVITY } from "../../bridge/numeric/units.ts";
 import type { FlagKind } from "../../bridge/wire/flag.ts";
 import { rehearse } from "../support/rehearse.ts";
 
@@ -35,6 +36,9 @@ const CASES: readonly Case[] = [
   { fault: "stuck:S3.ax", forS: 3, kinds: ["stuck axis"], sensor: 2 },
   { fault: "stuck:S6.mz", forS: 3, kinds: ["stuck axis"], sensor: 5 },
   { fault: "unreadable:S1", forS: 3, kinds: ["sensor read errors"], sensor: 0 },
+  { fault: "sag", forS: 3, kinds: ["supply low"], sensor: -1 },
+  { fault: "hot", forS: 3, kinds: ["hub temperature"], sensor: -1 },
+  { fault: "bus", forS: 3, kinds: ["hub fault"], sensor: -1 },
 ];
 
 describe.each([
@@ -85,6 +89,36 @@ describe.each([
     // Two windows of 4 s after the first, in which the body begins to swim.
     expect(seenAtS.get(flags[0]!.id)!).toBeLessThanOrEqual(12.1);
     expect(flags[0]!.advice).not.toBe("");
+  });
+
+  test.each([
+    { fault: "noisy:S3", kind: "noise at rest", sensor: 2 },
+    { fault: "offset:S5", kind: "gyro bias", sensor: 4 },
+    { fault: "heavy:S1", kind: "gravity at rest", sensor: 0 },
+    { fault: "strong:S6", kind: "field at rest", sensor: 5 },
+  ])("$fault, in a body at rest, raises its flag and no other", async ({ fault, kind, sensor }) => {
+    const faultS = 12;
+    const { flags, seenAtS, pipeline } = await rehearse({
+      rig,
+      seed: 3,
+      durationS: START_S + faultS + 8,
+      faults: [`${fault}@${START_S}+${faultS}`],
+      swimmer: { restS: 60 },
+    });
+    expect(flags.map((flag) => [flag.kind, flag.sensor])).toEqual([[kind, sensor]]);
+    // A window of 3 s that holds the fault alone, the slice it begins in, and for noise the window it begins in.
+    expect(seenAtS.get(flags[0]!.id)! - START_S).toBeLessThanOrEqual(6);
+    expect(flags[0]!.endS! - START_S - faultS).toBeLessThanOrEqual(6);
+    expect(pipeline.flags.open).toEqual([]);
+    // The healthy neighbour's figures, from a run of more than half a minute but for the two slices of its ends: the noise
+    // of the model (to a tenth: some 300 differences an axis, the noisiest of three) and gravity within 20 mg an axis.
+    const { run } = pipeline.health.rest;
+    const healthy = 3;
+    expect(run.stillS[healthy]).toBeGreaterThan(26);
+    expect(Math.abs(run.gyroNoise[healthy]! / (0.006 * RAD_PER_DEG) - 1.05)).toBeLessThan(0.1);
+    expect(Math.abs(run.accelNoise[healthy]! / (150e-6 * STANDARD_GRAVITY) - 1.05)).toBeLessThan(0.1);
+    expect(Math.abs(run.gravity[healthy]! - 9.81)).toBeLessThan(0.35);
+    expect(run.fieldUT[healthy]).toBeCloseTo(50, 0);
   });
 
   test("a hub that restarts is silent first, then said to have restarted", async () => {

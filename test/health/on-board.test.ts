@@ -17,6 +17,7 @@ function bench() {
     rateHz: 100,
     thresholds: THRESHOLDS,
     expectedField: null,
+    gravityMPerS2: null,
     book,
   });
   let timeS = 0;

@@ -29,6 +29,7 @@ export class Swum {
       lengthM: rig.body.lengthMm / 1000,
       thresholds: rig.thresholds,
       expectedField: null,
+      gravityMPerS2: null,
       book: new FlagBook(rig.sensors, { onRaised: (flag) => this.flags.push(flag) }),
     };
   }

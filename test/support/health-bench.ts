@@ -45,6 +45,7 @@ export class HealthBench {
       lengthM: 0.01,
       thresholds: { ...THRESHOLDS, ...options.thresholds },
       expectedField: options.expectedField === undefined ? SITE : options.expectedField,
+      gravityMPerS2: null,
       book: this.book,
     });
   }
