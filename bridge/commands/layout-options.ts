@@ -8,7 +8,7 @@ import type { Rig } from "../rig/load.ts";
 export interface LayoutOptions {
   rig: string;
   sensors?: number;
-  gait: GaitName;
+  wave: GaitName;
   envelope?: number[];
   wavelength?: number;
   noiseDeg: number[];
@@ -28,7 +28,7 @@ const LEAST_WAVELENGTH = 0.2;
 const USUAL: MountableRange = { from: 0.05, to: 0.95, spacing: 0.03 };
 
 /** @throws BendwatchError COMMAND_INVALID */
-export function gaitOf({ gait: name, envelope, wavelength = GAITS[name].wavelength }: LayoutOptions): Gait {
+export function gaitOf({ wave: name, envelope, wavelength = GAITS[name].wavelength }: LayoutOptions): Gait {
   if (wavelength < LEAST_WAVELENGTH) {
     throw invalid("--wavelength", `${wavelength}`, `${LEAST_WAVELENGTH} body lengths or more`);
   }
@@ -90,7 +90,7 @@ export function subjectOf(rig: Rig, options: LayoutOptions, gait: Gait, range: M
   return {
     rigName: rig.name,
     lengthMm: rig.body.lengthMm,
-    wave: `${envelope === undefined ? options.gait : "given"} wave of ${gait.wavelength} body lengths`,
+    wave: `${envelope === undefined ? options.wave : "given"} wave of ${gait.wavelength} body lengths`,
     interpolation: rig.midline.interpolation,
     noiseDeg: { inclination: noiseDeg[0], heading: noiseDeg[1] },
     range,

@@ -23,16 +23,16 @@ export function addLayout(program: Command): void {
     .requiredOption("--rig <name>", "rig file, by name under config/rigs or by path")
     .option("--sensors <number>", "how many to place; as many as the rig has if left out", wholeNumber)
     .addOption(
-      new Option("--gait <name>", "how the body swims")
+      new Option("--wave <name>", "how the body swims")
         .choices(["carangiform", "anguilliform"])
         .default("carangiform"),
     )
     .option(
       "--envelope <numbers>",
-      "amplitude instead of the gait's, in body lengths: coefficients of 1, x, x² ..., x from 0 nose to 1 tail",
+      "amplitude instead of the wave's, in body lengths: coefficients of 1, x, x² ..., x from 0 nose to 1 tail",
       numbers,
     )
-    .option("--wavelength <number>", "instead of the gait's, in body lengths", positiveNumber)
+    .option("--wavelength <number>", "instead of the wave's, in body lengths", positiveNumber)
     .option("--noise-deg <numbers>", "a sensor's error of inclination and of heading, RMS", numbers, [0.7, 1])
     .option(
       "--range-percent <numbers>",

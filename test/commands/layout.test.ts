@@ -24,7 +24,7 @@ test("says what the rig's places, even ones and the best ones give, how many it 
 });
 
 test("the same question gets the same answer, as JSON too, with the rig's own places where it has that many", async () => {
-  const args = ["layout", "--rig", "tethered-animal", "--gait", "anguilliform", "--json"];
+  const args = ["layout", "--rig", "tethered-animal", "--wave", "anguilliform", "--json"];
   const [first, second] = await Promise.all([bendwatch(...args), bendwatch(...args)]);
   expect(second.out).toBe(first.out);
   const { present, best, byCount } = JSON.parse(first.out);
