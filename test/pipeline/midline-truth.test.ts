@@ -1,5 +1,6 @@
 import { expect, test } from "vitest";
-import { loadRig, type Rig } from "../../bridge/rig/load.ts";
+import { loadRig } from "../../bridge/rig/load.ts";
+import { calibrated } from "../support/calibrated.ts";
 import { rehearse } from "../support/rehearse.ts";
 
 /** Pose settled after the rest at the start, s. */
@@ -82,18 +83,6 @@ test("after calibration it stays within 0.6 % of body length, and its tail ampli
 });
 
 const LENGTH_M = 0.64;
-
-/** What calibration leaves: a tenth of a degree a second, a few milli-g. */
-function calibrated(rig: Rig): Rig {
-  return {
-    ...rig,
-    models: rig.models.map((model) => ({
-      ...model,
-      gyro: { ...model.gyro, biasDegPerS: 0.1 },
-      accel: { ...model.accel, biasMilliG: 3 },
-    })),
-  };
-}
 
 function widen(range: { low: number; high: number }, value: number): void {
   range.low = Math.min(range.low, value);
