@@ -3,7 +3,7 @@
  * the bridge's midline was, then the camera's are laid upon it.
  */
 import { type Alignment, AlignmentSums, CameraTrack } from "../drive/camera-track.ts";
-import { COMPARED_PLACES, COMPARED_STATIONS, stationsInto } from "../drive/stations.ts";
+import { COMPARED_PLACES, COMPARED_STATIONS, stationsFromNoseInto } from "../drive/stations.ts";
 import { BendwatchError } from "../errors.ts";
 import { Pipeline } from "../pipeline.ts";
 import { type CameraTable, readCameraTable } from "../trial/import/camera-table.ts";
@@ -57,7 +57,7 @@ function look(folder: string, { rig, startedAt }: Manifest): Seen {
       sweep({ timeS }) {
         if (timeS - (seen.timeS.at(-1) ?? Number.NEGATIVE_INFINITY) < 1 / LOOKS_HZ) return;
         const midline = new Float64Array(2 * COMPARED_STATIONS);
-        stationsInto(midline, pipeline.midline.positions);
+        stationsFromNoseInto(midline, pipeline.midline.positions);
         seen.timeS.push(timeS);
         seen.midlines.push(midline);
       },

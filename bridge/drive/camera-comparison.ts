@@ -1,7 +1,7 @@
 /** The bridge's midline beside a camera's: displacement across the travel axis, station by station. */
 import type { CameraTrack } from "./camera-track.ts";
 import { Comparison } from "./comparison.ts";
-import { COMPARED_PLACES, COMPARED_STATIONS, lateralsInto, stationsInto } from "./stations.ts";
+import { COMPARED_PLACES, COMPARED_STATIONS, lateralsInto, stationsFromNoseInto } from "./stations.ts";
 
 /** A station moves when half its range is at least this, m. */
 const LEAST_SWAY_M = 0.0005;
@@ -41,7 +41,7 @@ export class CameraComparison {
    */
   sweep(timeS: number, positions: Float64Array, heading: number): void {
     if (!this.#track.pointsInto(this.#camera, timeS)) return;
-    stationsInto(this.#body, positions);
+    stationsFromNoseInto(this.#body, positions);
     lateralsInto(this.#cameraLateral, this.#camera, heading);
     lateralsInto(this.#bodyLateral, this.#body, heading);
     this.comparison.push(timeS, this.#cameraLateral, this.#bodyLateral);

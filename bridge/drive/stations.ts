@@ -8,15 +8,21 @@ export const COMPARED_PLACES: readonly number[] = Array.from(
 );
 
 /**
- * Writes x and y of each compared station, against the nose.
+ * Writes x and y of each compared station.
  * @param positions 3 per point, m; so many points that the stations fall on points
  */
 export function stationsInto(out: Float64Array, positions: Float64Array): void {
   const every = (positions.length / 3 - 1) / (COMPARED_STATIONS - 1);
   for (let k = 0; k < COMPARED_STATIONS; k++) {
-    out[2 * k] = positions[3 * every * k] - positions[0];
-    out[2 * k + 1] = positions[3 * every * k + 1] - positions[1];
+    out[2 * k] = positions[3 * every * k];
+    out[2 * k + 1] = positions[3 * every * k + 1];
   }
+}
+
+/** Likewise against the nose: a camera and the bridge need not agree on where the body is. */
+export function stationsFromNoseInto(out: Float64Array, positions: Float64Array): void {
+  stationsInto(out, positions);
+  for (let i = 0; i < out.length; i++) out[i] -= positions[i % 2];
 }
 
 /**
