@@ -2,7 +2,7 @@
 import { Gain } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
-import { isHeadingSettled, narrowHeading, uncertainShare } from "./uncertainty.ts";
+import { isHeadingSettled, isLevel, narrowHeading, uncertainShare } from "./uncertainty.ts";
 
 /** Below this horizontal length the nose axis has no heading. */
 const VERTICAL = 1e-3;
@@ -125,6 +125,14 @@ export function composeEarth(r: Float64Array, out: Float64Array, outAt: number):
 }
 
 /**
+ * The share of a newest reading in an average to which each counts by the cube of its number, from its share in a plain
+ * one (1/n becomes 4/(n + 3)): while the inclination settles, the earlier the field was levelled the less it tells.
+ */
+function latelyWeighted(share: number): number {
+  return (4 * share) / (1 + 3 * share);
+}
+
+/**
  * The share to correct by. A disturbed field counts for nothing until the allowance for rejection is used up, then for
  * less. An undisturbed one, and any before there is a reference, counts the more the less certain the heading is.
  */
@@ -141,7 +149,8 @@ function chooseGain(r: Float64Array, gains: Float64Array, parameters: FusionPara
     r[Slot.REJECTED_TIME]! += stepS;
     share = 0;
   }
-  if (believed) share = Math.max(share, uncertainShare(r, gains));
-  narrowHeading(r, share);
-  r[Slot.HEADING_GAIN] = share;
+  const uncertain = believed ? uncertainShare(r, gains) : 0;
+  const taken = isLevel(r, parameters) ? uncertain : latelyWeighted(uncertain);
+  narrowHeading(r, Math.max(share, uncertain));
+  r[Slot.HEADING_GAIN] = Math.max(share, taken);
 }

@@ -30,11 +30,11 @@ export function pendulumFolder(openData: string): string | null {
   return existsSync(folder) && pendulumNames(folder).length > 0 ? folder : null;
 }
 
-/** Names of all recordings in the folder that have a table for every segment. */
+/** Names of all recordings in motion that have a table for every segment; at rest no frames can be solved for. */
 export function pendulumNames(folder: string): string[] {
   const files = readdirSync(folder);
   return files
-    .filter((file) => file.endsWith("_Segment_1.csv.gz"))
+    .filter((file) => file.endsWith("_Segment_1.csv.gz") && !file.includes("_Static_"))
     .map((file) => file.replace("_Segment_1.csv.gz", ""))
     .filter((name) => [2, 3].every((n) => files.includes(`${name}_Segment_${n}.csv.gz`)))
     .sort();
