@@ -67,6 +67,8 @@ export interface PipelineObserver {
   mark?(mark: Mark): void;
   /** What the drive did at a sweep's time, some sweeps later: rad and m, as the rig file puts them right. */
   reference?(timeS: number, yaw: number, sway: number): void;
+  /** The hub's housekeeping, at the newest sweep's time, s. */
+  status?(status: HubStatus, timeS: number): void;
   /** A camera frame's time, hub s. */
   sync?(timeS: number, edge: number): void;
 }
@@ -307,7 +309,9 @@ export class Pipeline {
 
   #status(status: HubStatus): void {
     // At the newest sweep's time: its own tick says nothing until the first sweep after a restart has come.
-    if (this.sweepCount > 0) this.health.hubStatus(this.timeS, status);
+    if (this.sweepCount === 0) return;
+    this.health.hubStatus(this.timeS, status);
+    this.#observer.status?.(status, this.timeS);
   }
 
   #button(tickUs: number, button: number): void {

@@ -7,6 +7,7 @@ import type { SensorModel } from "../rig/sensor-model.ts";
 import { CHANNELS, HAS_MAG, MAG, type Sweep } from "../sweep.ts";
 import { type EllipsoidFit, fitEllipsoid } from "./ellipsoid.ts";
 import { type Outcome, type Procedure, type Progress, refused } from "./procedure.ts";
+import { CELLS, cellOf, describeMissing, shareSeen } from "./sphere.ts";
 
 type Triple = readonly [number, number, number];
 
@@ -23,8 +24,6 @@ export interface TurnThroughNumbers {
 /** A reading is kept when it lies this far from the last one kept: a sensor at rest adds nothing. µT */
 const APART_UT = 2;
 const MOST_READINGS = 3000;
-/** Directions the sphere is judged by. */
-const CELLS = 100;
 /** Share of them that has to be seen, and that is enough. Half a sphere leaves the far side's centre to the model. */
 const LEAST_COVERAGE = 0.5;
 const ENOUGH_COVERAGE = 0.8;
@@ -32,18 +31,6 @@ const ENOUGH_COVERAGE = 0.8;
 const LARGEST_RESIDUAL_NOISES = 4;
 const LARGEST_SIGMA_UT = 0.5;
 const LARGEST_SIGMA_SHARE = 0.02;
-/** Below this share a side counts as missing. */
-const SIDE_SEEN = 0.5;
-
-const SIDES = [
-  ["x", 0, 1],
-  ["x", 0, -1],
-  ["y", 1, 1],
-  ["y", 1, -1],
-  ["z", 2, 1],
-  ["z", 2, -1],
-] as const;
-
 export class TurnThrough implements Procedure<TurnThroughNumbers> {
   readonly #models: readonly SensorModel[];
   readonly #fieldUT: number | null;
@@ -80,7 +67,7 @@ export class TurnThrough implements Procedure<TurnThroughNumbers> {
 
   progress(): Progress {
     const seen = this.#models.map((_, i) => cellsSeen(this.#of(i), midrange(this.#of(i))));
-    const shares = seen.map((cells) => shareOf(cells));
+    const shares = seen.map((cells) => shareSeen(cells));
     // Sensors that are not being turned are not waited for.
     const best = shares.reduce((a, b) => Math.max(a, b), 0);
     const worst = shares.filter((share) => share > 0.2).reduce((a, b) => Math.min(a, b), best);
@@ -102,13 +89,13 @@ export class TurnThrough implements Procedure<TurnThroughNumbers> {
   #outcome(model: SensorModel, readings: Float64Array): Outcome<TurnThroughNumbers> {
     if (model.mag === undefined) return refused("this sensor has no magnetometer");
     const before = cellsSeen(readings, midrange(readings));
-    const tooFew = `${percent(shareOf(before))} of the directions seen, ${percent(LEAST_COVERAGE)} are needed`;
+    const tooFew = `${percent(shareSeen(before))} of the directions seen, ${percent(LEAST_COVERAGE)} are needed`;
     if (readings.length < 3 * CELLS) return refused(`${tooFew}; missing: ${describeMissing(before)}`);
     const fit = fitEllipsoid(readings, this.#fieldUT);
     if (fit === null)
       return refused(`the readings lie on no ellipsoid: ${tooFew}; missing: ${describeMissing(before)}`);
     const seen = cellsSeen(readings, (reading) => calibrated(fit, reading));
-    const coverage = shareOf(seen);
+    const coverage = shareSeen(seen);
     const missing = describeMissing(seen);
     if (coverage < LEAST_COVERAGE) {
       return refused(
@@ -144,27 +131,11 @@ function numbersOf({ centre, matrix, residual, sigmaCentre, sigmaMatrix }: Ellip
   };
 }
 
-/** Evenly spread directions: a Fibonacci lattice, z from one pole to the other. */
-const DIRECTIONS = Array.from({ length: CELLS }, (_, k) => {
-  const z = 1 - (2 * k + 1) / CELLS;
-  const angle = k * Math.PI * (3 - Math.sqrt(5));
-  const level = Math.sqrt(1 - z * z);
-  return [level * Math.cos(angle), level * Math.sin(angle), z] as const;
-});
-
 /** Which cells hold a reading; `centred` turns a reading into a direction. */
 function cellsSeen(readings: Float64Array, centred: (reading: Float64Array) => ArrayLike<number>): boolean[] {
   const seen = new Array<boolean>(CELLS).fill(false);
   for (let at = 0; at < readings.length; at += 3) {
-    const v = centred(readings.subarray(at, at + 3));
-    let nearest = 0;
-    let most = Number.NEGATIVE_INFINITY;
-    for (let k = 0; k < CELLS; k++) {
-      const d = DIRECTIONS[k]!;
-      const along = d[0] * v[0]! + d[1] * v[1]! + d[2] * v[2]!;
-      if (along > most) [nearest, most] = [k, along];
-    }
-    seen[nearest] = true;
+    seen[cellOf(centred(readings.subarray(at, at + 3)))] = true;
   }
   return seen;
 }
@@ -184,23 +155,6 @@ function calibrated({ centre, matrix }: EllipsoidFit, reading: Float64Array): nu
   return [0, 1, 2].map((r) =>
     [0, 1, 2].reduce((sum, c) => sum + matrix[3 * r + c]! * (reading[c]! - centre[c]!), 0),
   );
-}
-
-function shareOf(seen: readonly boolean[]): number {
-  return seen.filter(Boolean).length / CELLS;
-}
-
-/** The sides of the sensor that the field has hardly looked out of, in words. */
-function describeMissing(seen: readonly boolean[]): string {
-  return SIDES.filter(([, axis, sign]) => {
-    // A side: within 45° of its axis.
-    const cells = DIRECTIONS.map((d, k) => [sign * d[axis]!, seen[k]!] as const).filter(
-      ([z]) => z > Math.SQRT1_2,
-    );
-    return cells.filter(([, isSeen]) => isSeen).length < SIDE_SEEN * cells.length;
-  })
-    .map(([name, , sign]) => `the field ${sign > 0 ? "along" : "against"} its ${name} axis`)
-    .join(", ");
 }
 
 function percent(share: number): string {

@@ -2,6 +2,7 @@
 import type { z } from "zod";
 import { BendwatchError } from "../errors.ts";
 import { applyRecords, recordsFolder, type UsedRecord } from "./calibration-record.ts";
+import { type CheckLimits, checkLimitsSchema } from "./check-limits.ts";
 import { configPath, deepFreeze, definedOnly, loadConfig } from "./load-config.ts";
 import { type PacketLayout, packetLayoutSchema } from "./packet-layout.ts";
 import { type RigFile, rigSchema } from "./rig.ts";
@@ -15,6 +16,8 @@ export interface Rig extends RigFile {
   /** The declared layout that `hub.layout` names; null for native and text, which need none. */
   readonly packetLayout: PacketLayout | null;
   readonly thresholds: Thresholds;
+  /** Of the release check. */
+  readonly checkLimits: CheckLimits;
   /** Calibration records that numbers of its sensors were taken from. */
   readonly recordsUsed: readonly UsedRecord[];
 }
@@ -38,6 +41,7 @@ export function loadRig(nameOrPath: string): Rig {
     : null;
   references.throwProblems();
   const thresholds = loadConfig("", "thresholds", thresholdsSchema);
+  const checkLimits = loadConfig("", "check", checkLimitsSchema);
   const { sensors, used } = applyRecords(file.sensors, recordsFolder(file.calibrations), file.name);
   return deepFreeze({
     ...file,
@@ -46,6 +50,7 @@ export function loadRig(nameOrPath: string): Rig {
     models: models as SensorModel[],
     packetLayout,
     thresholds: { ...thresholds, ...definedOnly(file.flags) },
+    checkLimits: { ...checkLimits, ...definedOnly(file.check) },
   });
 }
 

@@ -3,6 +3,7 @@
  * anywhere). Keys carry their unit where it is not SI. Unknown keys are errors.
  */
 import { z } from "zod";
+import { checkLimitsSchema } from "./check-limits.ts";
 import { thresholdsSchema } from "./thresholds.ts";
 
 const vector3 = z.tuple([z.number(), z.number(), z.number()]);
@@ -280,6 +281,10 @@ export const rigSchema = z.strictObject({
     .partial()
     .prefault({})
     .describe("Thresholds that differ for this rig from config/thresholds.json."),
+  check: checkLimitsSchema
+    .partial()
+    .prefault({})
+    .describe("Limits of the release check that differ for this rig from config/check.json."),
 });
 
 export type RigFile = z.infer<typeof rigSchema>;

@@ -7,6 +7,7 @@ import { join } from "node:path";
 import { z } from "zod";
 import { BendwatchError } from "../errors.ts";
 import { usedRecordSchema } from "../rig/calibration-record.ts";
+import { checkLimitsSchema } from "../rig/check-limits.ts";
 import { checkConfig, loadConfig, type Rig } from "../rig/load.ts";
 import { packetLayoutSchema } from "../rig/packet-layout.ts";
 import { rigSchema } from "../rig/rig.ts";
@@ -39,6 +40,7 @@ const resolvedSchema = z.looseObject({
   models: z.array(sensorModelSchema),
   packetLayout: packetLayoutSchema.nullable().default(null),
   thresholds: z.record(z.string(), z.unknown()),
+  checkLimits: z.record(z.string(), z.unknown()).default({}),
   recordsUsed: z.array(usedRecordSchema).default([]),
 });
 
@@ -55,8 +57,8 @@ export function writeManifest(folder: string, manifest: Manifest): Buffer {
 }
 
 /**
- * Reads and checks trial.json. The rig passes the same checks as a rig file. Thresholds that the recording software did
- * not know yet are taken from config/thresholds.json; those that only it knew are left out.
+ * Reads and checks trial.json. The rig passes the same checks as a rig file. Thresholds and limits that the recording
+ * software did not know yet are taken from config/; those that only it knew are left out.
  * @throws BendwatchError TRIAL_UNREADABLE naming every key that is wrong
  */
 export function readManifest(folder: string): Manifest {
@@ -90,12 +92,20 @@ function checkRig(path: string, stored: Record<string, unknown>): Rig {
     rigSchema,
   );
   const { models, packetLayout, recordsUsed, ...resolved } = checkConfig(where, stored, resolvedSchema);
-  const known = loadConfig("", "thresholds", thresholdsSchema);
-  const thresholds = checkConfig(
-    `${where}.thresholds`,
-    Object.fromEntries(Object.entries(known).map(([key, value]) => [key, resolved.thresholds[key] ?? value])),
-    thresholdsSchema,
-  );
+  const known = <T extends object>(
+    name: string,
+    schema: z.ZodType<T>,
+    limits: Record<string, unknown>,
+  ): T => {
+    const ours = Object.entries(loadConfig("", name, schema));
+    return checkConfig(
+      `${where}, ${name}`,
+      Object.fromEntries(ours.map(([key, value]) => [key, limits[key] ?? value])),
+      schema,
+    );
+  };
+  const thresholds = known("thresholds", thresholdsSchema, resolved.thresholds);
+  const checkLimits = known("check", checkLimitsSchema, resolved.checkLimits);
   if (models.length !== file.sensors.length) {
     throw new BendwatchError("TRIAL_UNREADABLE", {
       where: `${where}.models`,
@@ -103,5 +113,5 @@ function checkRig(path: string, stored: Record<string, unknown>): Rig {
       expected: `one for each of the ${file.sensors.length} sensors`,
     });
   }
-  return Object.freeze({ ...stored, ...file, models, packetLayout, thresholds, recordsUsed });
+  return Object.freeze({ ...stored, ...file, models, packetLayout, thresholds, checkLimits, recordsUsed });
 }

@@ -7,6 +7,7 @@
 import { basename, join } from "node:path";
 import type { ByteSink, LinkState } from "../link/source.ts";
 import type { Rig } from "../rig/load.ts";
+import type { CheckAction } from "../wire/check.ts";
 import type { Flag, Mark } from "../wire/flag.ts";
 import type { Choice, StatusMessage } from "../wire/messages.ts";
 import { AppendFile, type OpenAppend, openAppend } from "./append-file.ts";
@@ -131,6 +132,11 @@ export class TrialRecorder implements Pick<ByteSink, "bytes" | "linkState"> {
   /** Keeps what the operator chose, between the bytes where it took effect. */
   choice(choice: Choice, hostTimeMs: number): void {
     this.#record({ kind: "choice", hostTimeMs, choice }, 0);
+  }
+
+  /** Keeps what the operator did in a release check, between the bytes where it was done. */
+  check(check: CheckAction, hostTimeMs: number): void {
+    this.#record({ kind: "check", hostTimeMs, check }, 0);
   }
 
   /** Keeps a mark. @param hostTimeMs when it was made, for replaying */

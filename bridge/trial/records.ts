@@ -4,11 +4,13 @@
  *     "bytes"  byte string        a chunk as it arrived
  *     "link"   text               "<state>: <detail>", a change of the link
  *     "choice" map                what the operator chose here: heading
+ *     "check"  map                what the operator did here in a release check: action, and step, sensor or name
  *     "gap"    map                what could not be recorded here: records, bytes, fromMs, toMs, reason
  *     "end"    text               why the recording ended; the last record of a complete trial
  */
 import { decode, encode } from "cborg";
 import type { LinkState } from "../link/source.ts";
+import { CHECK_STEPS, type CheckAction, MAX_OPERATOR_LENGTH } from "../wire/check.ts";
 import { type Choice, HEADINGS } from "../wire/messages.ts";
 
 /** Longer chunks are split over several records, so that a reader's window can be small. */
@@ -31,6 +33,7 @@ export type TrialRecord =
   | { readonly kind: "bytes"; readonly hostTimeMs: number; readonly chunk: Uint8Array }
   | { readonly kind: "link"; readonly hostTimeMs: number; readonly state: LinkState; readonly detail: string }
   | { readonly kind: "choice"; readonly hostTimeMs: number; readonly choice: Choice }
+  | { readonly kind: "check"; readonly hostTimeMs: number; readonly check: CheckAction }
   | { readonly kind: "gap"; readonly hostTimeMs: number; readonly gap: Gap }
   | { readonly kind: "end"; readonly hostTimeMs: number; readonly detail: string };
 
@@ -41,7 +44,7 @@ export function encodeRecord(record: TrialRecord): Uint8Array {
   return encode([record.kind, record.hostTimeMs, payloadOf(record)]);
 }
 
-function payloadOf(record: TrialRecord): Uint8Array | string | Gap | Choice {
+function payloadOf(record: TrialRecord): Uint8Array | string | Gap | Choice | CheckAction {
   switch (record.kind) {
     case "bytes":
       return record.chunk;
@@ -49,6 +52,8 @@ function payloadOf(record: TrialRecord): Uint8Array | string | Gap | Choice {
       return `${record.state}: ${record.detail}`.slice(0, MAX_TEXT);
     case "choice":
       return record.choice;
+    case "check":
+      return record.check;
     case "gap":
       return { ...record.gap, reason: record.gap.reason.slice(0, MAX_TEXT) };
     case "end":
@@ -71,6 +76,7 @@ export function decodeRecord(bytes: Uint8Array): TrialRecord | null {
   if (kind === "end" && typeof payload === "string") return { kind, hostTimeMs, detail: payload };
   if (kind === "link" && typeof payload === "string") return linkRecord(hostTimeMs, payload);
   if (kind === "choice" && isChoice(payload)) return { kind, hostTimeMs, choice: payload };
+  if (kind === "check" && isCheck(payload)) return { kind, hostTimeMs, check: payload };
   if (kind === "gap" && isGap(payload)) return { kind, hostTimeMs, gap: payload };
   return null;
 }
@@ -85,6 +91,13 @@ function linkRecord(hostTimeMs: number, text: string): TrialRecord | null {
 function isChoice(value: unknown): value is Choice {
   const heading = (value as Partial<Choice> | null)?.heading;
   return heading !== undefined && HEADINGS.includes(heading);
+}
+
+function isCheck(value: unknown): value is CheckAction {
+  const { action, step, sensor, name } = (value ?? {}) as Record<string, unknown>;
+  if (action === "begin" || action === "end") return (CHECK_STEPS as readonly unknown[]).includes(step);
+  if (action === "take out" || action === "put back") return typeof sensor === "string";
+  return action === "operator" && typeof name === "string" && name.length <= MAX_OPERATOR_LENGTH;
 }
 
 function isGap(value: unknown): value is Gap {
