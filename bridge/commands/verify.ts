@@ -19,7 +19,7 @@ export function addVerify(program: Command): void {
 
 const ignore = () => {};
 /** Packets are decoded for their checksums alone. */
-const IGNORE_PACKETS = {
+export const IGNORE_PACKETS = {
   sweep: ignore,
   hello: ignore,
   status: ignore,

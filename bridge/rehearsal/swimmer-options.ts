@@ -21,6 +21,9 @@ export interface SwimmerOptions {
   readonly heading: number;
   /** rad turned left (right when negative), in order of time. */
   readonly turns: readonly Turn[];
+  /** rad the nose is raised (lowered when negative), and the right side is lowered, in order of time. */
+  readonly pitchTurns: readonly Turn[];
+  readonly rollTurns: readonly Turn[];
   readonly headingWander: Wander;
   /** Nose up positive. */
   readonly pitchWander: Wander;
@@ -52,6 +55,8 @@ export const STEADY_SWIMMER: SwimmerOptions = {
   changes: [],
   heading: 80 * RAD_PER_DEG,
   turns: [],
+  pitchTurns: [],
+  rollTurns: [],
   headingWander: { amplitude: 4 * RAD_PER_DEG, periodS: 37 },
   pitchWander: { amplitude: 3 * RAD_PER_DEG, periodS: 23 },
   rollWander: { amplitude: 5 * RAD_PER_DEG, periodS: 17 },

@@ -8,7 +8,7 @@ import { STANDARD_GRAVITY } from "../numeric/units.ts";
 import { AttitudeMotion, setTurn, turnAboutZ } from "./attitude.ts";
 import { checkAmplitude, type PlaneMotion, WaveDrive, WavePlace } from "./body-wave.ts";
 import { addWander, clear, newJet, type Step, SteppedSignal } from "./signal.ts";
-import type { PaceChange, SwimmerOptions } from "./swimmer-options.ts";
+import type { PaceChange, SwimmerOptions, Turn } from "./swimmer-options.ts";
 
 /** What one place on the body does and what an ideal sensor there feels. Arrays are rewritten in place. */
 export interface Kinematics {
@@ -35,6 +35,8 @@ export class Swimmer {
   readonly #frequency: SteppedSignal;
   readonly #amplitude: SteppedSignal;
   readonly #course: SteppedSignal;
+  readonly #pitch: SteppedSignal;
+  readonly #roll: SteppedSignal;
   /** Sets the wandering in when the body begins to move. */
   readonly #gate: SteppedSignal;
 
@@ -63,12 +65,9 @@ export class Swimmer {
       options.frequencyHz,
       stepsOf(changes, (change) => change.frequencyHz),
     );
-    let heading = options.heading;
-    const courses = options.turns.map(({ atS, overS, by }): Step => {
-      heading += by;
-      return { atS, overS, to: heading };
-    });
-    this.#course = new SteppedSignal(options.heading, courses);
+    this.#course = turning(options.heading, options.turns);
+    this.#pitch = turning(0, options.pitchTurns);
+    this.#roll = turning(0, options.rollTurns);
     this.#gate = new SteppedSignal(0, [{ atS: restS, overS: startS, to: 1 }]);
   }
 
@@ -148,11 +147,25 @@ export class Swimmer {
     clear(pitch);
     clear(roll);
     this.#course.addTo(heading, timeS);
+    this.#pitch.addTo(pitch, timeS);
+    this.#roll.addTo(roll, timeS);
     addWander(heading, headingWander, gate, timeS);
     addWander(pitch, pitchWander, gate, timeS);
     addWander(roll, rollWander, gate, timeS);
     this.#attitude.update();
   }
+}
+
+/** An angle that turns step by step. */
+function turning(initial: number, turns: readonly Turn[]): SteppedSignal {
+  let angle = initial;
+  return new SteppedSignal(
+    initial,
+    turns.map(({ atS, overS, by }): Step => {
+      angle += by;
+      return { atS, overS, to: angle };
+    }),
+  );
 }
 
 function stepsOf(changes: readonly PaceChange[], pick: (change: PaceChange) => number | undefined): Step[] {
