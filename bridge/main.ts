@@ -1,10 +1,12 @@
 #!/usr/bin/env node
 /**
  * The command line: parse, dispatch, exit codes. 0 done; 1 a check found something wrong; 2 it could not be done, with an
- * error that says where, what was found, what was expected and what to do.
+ * error that says where, what was found, what was expected and what to do. `check` has its own: 0 go, 2 no-go, 3
+ * incomplete, 1 when it could not be done.
  */
 import { Command, CommanderError } from "commander";
 import { addCalibrate } from "./commands/calibrate.ts";
+import { addCheck } from "./commands/check.ts";
 import { addExport } from "./commands/export.ts";
 import { addImport } from "./commands/import.ts";
 import { addLayout } from "./commands/layout.ts";
@@ -27,6 +29,7 @@ const program = new Command("bendwatch")
 
 for (const add of [
   addCalibrate,
+  addCheck,
   addLive,
   addReplay,
   addRehearse,
@@ -38,12 +41,13 @@ for (const add of [
 ])
   add(program);
 
+const notDone = process.argv[2] === "check" ? 1 : 2;
 try {
   await program.parseAsync();
 } catch (error) {
-  if (error instanceof CommanderError) process.exitCode = error.exitCode === 0 ? 0 : 2;
+  if (error instanceof CommanderError) process.exitCode = error.exitCode === 0 ? 0 : notDone;
   else {
     console.error(error instanceof BendwatchError ? error.message : error);
-    process.exitCode = 2;
+    process.exitCode = notDone;
   }
 }

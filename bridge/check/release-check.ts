@@ -39,6 +39,13 @@ const STEP_OF_FLAG: Partial<Record<FlagKind, CheckStepName>> = {
   "corrupt packets": "link",
   "link silent": "link",
   "sensor read errors": "link",
+  "noise at rest": "rest",
+  "gyro bias": "rest",
+  "gravity at rest": "rest",
+  "field at rest": "rest",
+  "supply low": "supply",
+  "hub temperature": "supply",
+  "hub fault": "supply",
   "hub restarted": "clock",
 };
 
@@ -169,7 +176,7 @@ export class ReleaseCheck {
     );
     if (this.#isOut.every(Boolean)) {
       missing.push({
-        step: null,
+        steps: [],
         sensor: -1,
         text: "every sensor is taken out: there is nothing to release",
       });

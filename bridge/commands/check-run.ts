@@ -1,7 +1,7 @@
 /** A release check joined to the pipeline that feeds it. */
 import { createHash } from "node:crypto";
 import { closeSync, openSync, readSync } from "node:fs";
-import { basename, join } from "node:path";
+import { join } from "node:path";
 import { ReleaseCheck } from "../check/release-check.ts";
 import { type CheckReport, type Recording, reportOf } from "../check/report.ts";
 import { siteField } from "../health/site-field.ts";
@@ -69,7 +69,7 @@ export function checkTrial(folder: string): CheckReport {
   runThrough(folder, run.pipeline, (action, hostTimeMs) => run.act(action, hostTimeMs));
   const { problems } = verifyTrial(folder, (rig) => createDecoder(rig, IGNORE_PACKETS));
   const recording: Recording = {
-    trial: basename(folder),
+    trial: manifest.name,
     startedAt: manifest.startedAt,
     softwareVersion: manifest.softwareVersion,
     origin: `${manifest.origin.kind}: ${manifest.origin.detail}`,

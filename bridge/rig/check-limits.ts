@@ -39,40 +39,6 @@ export const checkLimitsSchema = z.strictObject({
     .describe(
       "Moved hard: some sensor turns faster than this. A tail that beats twice a second reaches it; give the rig's own where its body is faster or slower.",
     ),
-  restNoiseFactor: z
-    .number()
-    .min(1)
-    .max(100)
-    .describe(
-      "A gyroscope or accelerometer may be this many times as noisy at rest as its model: units of one kind differ by less than a half (common practice, no source), and the measurement errs by a tenth.",
-    ),
-  restGyroBiasShare: z
-    .number()
-    .min(0.01)
-    .max(100)
-    .describe(
-      "The rate at rest may be this share of the data sheet's offset on all three axes together; the quarter is for temperature.",
-    ),
-  restGravityShare: z
-    .number()
-    .min(0.01)
-    .max(100)
-    .describe(
-      "The force at rest may be off local gravity by this share of the data sheet's offset on all three axes together; the quarter is for scale errors.",
-    ),
-  supplyLeastV: z
-    .number()
-    .min(0)
-    .max(100)
-    .describe(
-      "The hub's supply stays above this: the least a USB port of full power may give (USB 2.0, 7.2.2, from memory).",
-    ),
-  temperatureLeastC: z.number().min(-100).max(100).describe("The hub is no colder: water freezes in plugs."),
-  temperatureMostC: z
-    .number()
-    .min(-100)
-    .max(150)
-    .describe("The hub is no hotter: in water it should never be (common practice, no source)."),
   clockDriftPpm: z
     .number()
     .min(1)

@@ -10,6 +10,7 @@ import { join } from "node:path";
 import { fileURLToPath } from "node:url";
 import { packageRoot } from "../paths.ts";
 import { calibrationRecordSchema } from "./calibration-record.ts";
+import { checkLimitsSchema } from "./check-limits.ts";
 import { columnMapSchema } from "./column-map.ts";
 import { packetLayoutSchema } from "./packet-layout.ts";
 import { rigSchema } from "./rig.ts";
@@ -40,11 +41,10 @@ function widthOf(text: string): number {
 /** The whole page. */
 export function configReadme(): string {
   const thresholds = JSON.parse(readFileSync(join(packageRoot, "config/thresholds.json"), "utf8"));
-  const rigRows = keyRows(rigSchema).filter(({ key }) => !key.startsWith("flags."));
-  const thresholdRows = keyRows(thresholdsSchema).map((row) => ({
-    ...row,
-    default: String(thresholds[row.key]),
-  }));
+  const checkLimits = JSON.parse(readFileSync(join(packageRoot, "config/check.json"), "utf8"));
+  const rigRows = keyRows(rigSchema).filter(({ key }) => !/^(flags|check)\./.test(key));
+  const withValues = (rows: readonly KeyRow[], values: Record<string, number>) =>
+    rows.map((row) => ({ ...row, default: String(values[row.key]) }));
   return `# Configuration
 
 Written by \`npx tsx bridge/rig/schema-docs.ts\` from the schemas in \`bridge/rig/\`; change those, not this page.
@@ -77,7 +77,13 @@ ${table(keyRows(calibrationRecordSchema))}
 
 One file; here \`default\` is what it says. A rig overrides any of them under \`flags\`.
 
-${table(thresholdRows)}
+${table(withValues(keyRows(thresholdsSchema), thresholds))}
+
+## Release check: \`config/check.json\`
+
+Limits of \`bendwatch check\`; here \`default\` is what the file says. A rig overrides any of them under \`check\`.
+
+${table(withValues(keyRows(checkLimitsSchema), checkLimits))}
 
 ## Packet layouts: \`config/layouts/\`
 

@@ -9,6 +9,7 @@ import {
   MAX_RECORD_BYTES,
   type TrialRecord,
 } from "../../bridge/trial/records.ts";
+import { CHECK_STEPS, type CheckAction } from "../../bridge/wire/check.ts";
 
 const hostTimeMs = fc.oneof(
   fc.integer({ min: 0, max: 4e12 }),
@@ -34,6 +35,15 @@ const record: fc.Arbitrary<TrialRecord> = fc.oneof(
     kind: fc.constant("choice" as const),
     hostTimeMs,
     choice: fc.record({ heading: fc.constantFrom("magnetic", "relative", "free") }),
+  }),
+  fc.record({
+    kind: fc.constant("check" as const),
+    hostTimeMs,
+    check: fc.oneof<fc.Arbitrary<CheckAction>[]>(
+      fc.record({ action: fc.constantFrom("begin", "end"), step: fc.constantFrom(...CHECK_STEPS) }),
+      fc.record({ action: fc.constantFrom("take out", "put back"), sensor: text }),
+      fc.record({ action: fc.constant("operator" as const), name: text }),
+    ),
   }),
   fc.record({ kind: fc.constant("end" as const), hostTimeMs, detail: text }),
 );
