@@ -17,6 +17,14 @@ export const FLAG_ADVICE: Readonly<Record<AdviceKey, string>> = {
   "low headroom":
     "{name} is close to the end of its range: choose a larger range before the next, faster run.",
   "magnetic interference": "Something magnetic is near {place}; move it away or trust {name}'s heading less.",
+  "magnetic interference at several sensors":
+    "Something large and magnetic lies along the body about {place}, such as a plate, a rail or a cable: move it away, or trust the headings there less.",
+  "alternating field":
+    "A motor or a mains cable runs near {place}: move it or its cable away; averaged headings suffer little, single ones do.",
+  "alternating field at several sensors":
+    "A motor or a mains cable runs along the body about {place}: move it or its cable away; averaged headings suffer little, single ones do.",
+  "rig-wide alternating field":
+    "Mains or a drive reaches all sensors: look for a cable loop, a pump or a motor supply near the tank, and switch off what you can.",
   "rig-wide magnetic interference":
     "The field is off along the whole body: look for a motor, a magnet or steel brought near the tank, and trust no heading until this ends.",
   "heading held by the body":

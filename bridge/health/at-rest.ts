@@ -4,7 +4,7 @@
  * between them, since motion cures none of these.
  */
 import { DEG_PER_RAD, RAD_PER_DEG, STANDARD_GRAVITY } from "../numeric/units.ts";
-import type { Sweep } from "../sweep.ts";
+import { CONDITION, type Sweep } from "../sweep.ts";
 import type { FlagKind, Severity } from "../wire/flag.ts";
 import { Hysteresis, Turn } from "./hysteresis.ts";
 import { limitsOf } from "./limits.ts";
@@ -57,7 +57,7 @@ export class AtRest {
     this.#fields = new Float64Array(n);
   }
 
-  /** Needs this sweep's broken readings marked, and the field's interference told to the book. */
+  /** Needs this sweep's broken and disturbed readings marked. */
   observe(sweep: Sweep): void {
     this.meter.observe(sweep);
     const { windowEnded, window } = this.meter;
@@ -66,7 +66,9 @@ export class AtRest {
       this.#judgeNoise(i, sweep.timeS, window);
       this.#judgeBias(i, sweep.timeS, window);
       this.#judgeGravity(i, sweep.timeS, window);
-      if (this.#allowed[i]!.hasMag) this.#judgeField(i, sweep.timeS, window);
+      // Interference says so itself.
+      const disturbed = (sweep.conditions[i]! & CONDITION.MAG_DISTURBED) !== 0;
+      if (this.#allowed[i]!.hasMag && !disturbed) this.#judgeField(i, sweep.timeS, window);
     }
   }
 
@@ -114,10 +116,7 @@ export class AtRest {
 
   /** Off both the Earth's field at the site and what most of the others measure. */
   #judgeField(i: number, timeS: number, { fieldUT }: RestFigures): void {
-    const { book, expectedField, thresholds } = this.#setup;
-    // Interference says so itself.
-    const told = book.find("magnetic interference", i) ?? book.find("rig-wide magnetic interference", -1);
-    if (told !== null) return;
+    const { expectedField, thresholds } = this.#setup;
     const common = this.#commonField(fieldUT);
     const offSite = expectedField === null ? Number.NaN : fieldUT[i]! / expectedField.normUT - 1;
     const offOthers = fieldUT[i]! / common - 1;

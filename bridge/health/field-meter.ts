@@ -20,11 +20,11 @@ const DOUBTFUL = CONDITION.GYRO_CLIPPED | CONDITION.ACCEL_CLIPPED | CONDITION.ST
 export class FieldMeter {
   /** Share of the reference's norm, per sensor; NaN without magnetometer or reference. */
   readonly off: Float64Array;
+  /** Smoothed, µT, per sensor; the parts hang on the vertical. */
+  readonly norm: Float64Array;
+  readonly horizontal: Float64Array;
+  readonly down: Float64Array;
   readonly #reference: FieldReference;
-  /** Smoothed, µT, per sensor. */
-  readonly #norm: Float64Array;
-  readonly #horizontal: Float64Array;
-  readonly #down: Float64Array;
   readonly #lastMagS: Float64Array;
   readonly #lastInertialS: Float64Array;
   readonly #doubtUntilS: Float64Array;
@@ -33,9 +33,9 @@ export class FieldMeter {
     const array = (value: number) => new Float64Array(sensorCount).fill(value);
     this.off = array(Number.NaN);
     this.#reference = reference;
-    this.#norm = array(0);
-    this.#horizontal = array(0);
-    this.#down = array(0);
+    this.norm = array(0);
+    this.horizontal = array(0);
+    this.down = array(0);
     this.#lastMagS = array(Number.NEGATIVE_INFINITY);
     this.#lastInertialS = array(Number.NEGATIVE_INFINITY);
     this.#doubtUntilS = array(Number.NEGATIVE_INFINITY);
@@ -58,12 +58,12 @@ export class FieldMeter {
     if ((sweep.present[i]! & HAS_MAG) === 0) return false;
 
     this.#smooth(i, timeS, sweep.values, orientations);
-    this.#reference.reading(i, this.#horizontal[i]!, this.#down[i]!);
+    this.#reference.reading(i, this.horizontal[i]!, this.down[i]!);
     const { normUT, horizontalUT, downUT } = this.#reference;
     this.off[i] =
       timeS < this.#doubtUntilS[i]!
-        ? Math.abs(this.#norm[i]! - normUT) / normUT
-        : Math.hypot(this.#horizontal[i]! - horizontalUT, this.#down[i]! - downUT) / normUT;
+        ? Math.abs(this.norm[i]! - normUT) / normUT
+        : Math.hypot(this.horizontal[i]! - horizontalUT, this.down[i]! - downUT) / normUT;
     return true;
   }
 
@@ -82,9 +82,9 @@ export class FieldMeter {
     const horizontal = Math.sqrt(Math.max(0, norm * norm - up * up));
     // The first reading is taken whole: exp(-Infinity) is 0.
     const weight = 1 - Math.exp(-(timeS - this.#lastMagS[i]!) / SMOOTHING_S);
-    this.#norm[i]! += weight * (norm - this.#norm[i]!);
-    this.#horizontal[i]! += weight * (horizontal - this.#horizontal[i]!);
-    this.#down[i]! += weight * (-up - this.#down[i]!);
+    this.norm[i]! += weight * (norm - this.norm[i]!);
+    this.horizontal[i]! += weight * (horizontal - this.horizontal[i]!);
+    this.down[i]! += weight * (-up - this.down[i]!);
     this.#lastMagS[i] = timeS;
   }
 }

@@ -7,6 +7,7 @@
  * that fault and expects exactly that flag.
  */
 import type { Sweep } from "../sweep.ts";
+import { AlternatingField } from "./alternating-field.ts";
 import { AtRest } from "./at-rest.ts";
 import { CorruptPackets } from "./corrupt-packets.ts";
 import { Delivery } from "./delivery.ts";
@@ -33,6 +34,7 @@ export class Health {
   readonly #headroom: Headroom;
   readonly #stuck: StuckAxes;
   readonly #magnetic: MagneticInterference;
+  readonly #alternating: AlternatingField;
   readonly #atRest: AtRest;
   readonly #flipped: FlippedSensors;
   readonly #swapped: SwappedSensors;
@@ -49,6 +51,7 @@ export class Health {
     this.#headroom = new Headroom(setup);
     this.#stuck = new StuckAxes(setup);
     this.#magnetic = new MagneticInterference(setup);
+    this.#alternating = new AlternatingField(setup);
     this.#atRest = new AtRest(setup);
     this.#flipped = new FlippedSensors(setup);
     this.#swapped = new SwappedSensors(setup);
@@ -72,6 +75,7 @@ export class Health {
     this.#headroom.observe(sweep);
     this.#stuck.observe(sweep);
     this.#magnetic.observe(sweep, orientations);
+    this.#alternating.observe(sweep, orientations);
     this.#atRest.observe(sweep);
     this.#swapped.observe(sweep);
     this.#flipped.observe(sweep, this.#swapped.outOfOrder);

@@ -26,6 +26,34 @@ export const thresholdsSchema = z.strictObject({
     .describe(
       "The magnetic field is disturbed when it is off by this share of its norm or more, in norm and dip together: twice what calibration and inclination errors of 3° leave, and still below 30° of heading error at a dip of 70°.",
     ),
+  alternatingFieldUT: z
+    .number()
+    .min(0.1)
+    .max(1000)
+    .describe(
+      "A flag when the magnetic field alternates by this amplitude: ten times what noise of 0.4 µT leaves in a window's spectrum, and 6° of heading to and fro at a horizontal field of 18 µT.",
+    ),
+  duplicateSweepsShare: z
+    .number()
+    .min(0)
+    .max(1)
+    .describe(
+      "A flag when this share of the last second's sweeps came twice: single repeats harm nothing and are counted, several a second tell of a link that echoes or retries.",
+    ),
+  lateSweepsShare: z
+    .number()
+    .min(0)
+    .max(1)
+    .describe(
+      "A flag when this share of the last second's sweeps came after a later one and could not be used: the same measure as for repeats.",
+    ),
+  clockDriftPpm: z
+    .number()
+    .min(1)
+    .max(100_000)
+    .describe(
+      "A flag when the hub's clock runs off the computer's by this much: two crystals of 100 ppm each at their worst (common practice, no source), and rates derived from them are then wrong by less than any other error.",
+    ),
   lostSamplesShare: z
     .number()
     .min(0)

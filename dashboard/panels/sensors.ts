@@ -44,7 +44,15 @@ const ROWS: readonly Row[] = [
     which: FIELD_OFF,
     fine: false,
     full: 0.4,
-    kinds: ["magnetic interference", "rig-wide magnetic interference", "mag saturation"],
+    kinds: [
+      "magnetic interference",
+      "magnetic interference at several sensors",
+      "rig-wide magnetic interference",
+      "alternating field",
+      "alternating field at several sensors",
+      "rig-wide alternating field",
+      "mag saturation",
+    ],
   },
   {
     name: "Delivered",

@@ -31,7 +31,7 @@ describe.each([
     const spoil = magnet([3], field);
     bench.run(1, spoil);
     expect(bench.raised).toEqual(["magnetic interference@3"]);
-    expect(bench.flags[0]!.detail).toMatch(/^field up to \d+ % off$/);
+    expect(bench.flags[0]!.detail).toMatch(/^field up to \d+ % off: norm [+−]\d+ %, dip [+−]\d+°$/);
     bench.run(5, spoil);
     expect(bench.rig.sweep.conditions[3]! & CONDITION.MAG_DISTURBED).toBe(CONDITION.MAG_DISTURBED);
     expect(bench.rig.sweep.conditions[2]! & CONDITION.MAG_DISTURBED).toBe(0);
@@ -55,9 +55,15 @@ describe.each([
 describe("one sensor or the rig", () => {
   const field = [0, 0, -15] as const;
 
-  it("two of six are two sensors' trouble, three of six are the rig's", () => {
-    const two = new HealthBench().run(5).run(2, magnet([1, 2], field));
-    expect(two.raised.sort()).toEqual(["magnetic interference@1", "magnetic interference@2"]);
+  it("two neighbours of six are one trouble of theirs, two apart are two, three of six are the rig's", () => {
+    const near = new HealthBench().run(5).run(2, magnet([1, 2], field));
+    expect(near.raised).toHaveLength(1);
+    expect(near.raised[0]).toMatch(/^magnetic interference at several sensors@[12]$/);
+    expect(near.flags[0]!.detail).toMatch(/^at S2 to S3; worst here: field up to/);
+    near.run(2);
+    expect(near.openNow).toEqual([]);
+    const apart = new HealthBench().run(5).run(2, magnet([1, 4], field));
+    expect(apart.raised.sort()).toEqual(["magnetic interference@1", "magnetic interference@4"]);
     expect(new HealthBench().run(5).run(2, magnet([1, 2, 3], field)).raised).toEqual([
       "rig-wide magnetic interference@-1",
     ]);
