@@ -4,8 +4,8 @@
  *     bytes -> link -> clock -> calibration -> health -> fusion -> body -> wave -> drive -> ring buffer
  *
  * Everything is computed from the hub's own ticks, so the same bytes give the same results at any speed and cut into any
- * chunks. Arrival times, as recorded, serve three things only: noticing a silent link, bridging a restart of the hub, and
- * telling whether a gap is longer than the hub's counters can say.
+ * chunks. Arrival times, as recorded, serve four things only: noticing a silent link, bridging a restart of the hub,
+ * telling whether a gap is longer than the hub's counters can say, and how fast the hub's clock runs against the host's.
  */
 import { HeadMotion } from "./body/head-motion.ts";
 import { Midline } from "./body/midline.ts";
@@ -86,7 +86,7 @@ export interface PipelineOptions {
 export class Pipeline {
   readonly rig: Rig;
   readonly clock: HubClock;
-  /** For the display only. */
+  /** For the display and its flag: nothing is computed from it. */
   readonly drift = new DriftMeter();
   readonly flags: FlagBook;
   readonly health: Health;
@@ -266,9 +266,13 @@ export class Pipeline {
 
   #sweep(sweep: Sweep): void {
     const admission = this.clock.admit(sweep);
-    if (admission === Admission.DUPLICATE || admission === Admission.LATE) return;
+    if (admission === Admission.DUPLICATE || admission === Admission.LATE) {
+      this.health.sweepDropped(admission === Admission.LATE ? "late" : "duplicate");
+      return;
+    }
     this.#silence.bytesArrived(sweep.hostTimeMs);
     this.drift.observe(sweep.timeS, sweep.hostTimeMs);
+    this.health.clockDrift(sweep.timeS, this.drift.ppm);
     this.#reportBadPackets(sweep.timeS);
     if (admission === Admission.RESTARTED) this.health.hubRestarted(sweep.timeS);
     this.#calibration.apply(sweep);

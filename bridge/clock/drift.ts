@@ -1,5 +1,5 @@
 /**
- * How fast the hub's clock runs against the host's, in parts per million. For display only: nothing is computed from it.
+ * How fast the hub's clock runs against the host's, in parts per million. For display and its flag: nothing is computed from it.
  *
  * Arrivals are delayed by varying amounts, never early, so of the offsets host - hub only the lowest tell the clocks
  * apart. Method: hub time is cut into blocks, each keeps its least offset, and the drift is the slope of the line that lies

@@ -43,6 +43,8 @@ export interface ClockCounters {
   late: number;
   restarts: number;
   damagedTicks: number;
+  /** Times the tick came round to zero: every 71.6 minutes, and no trouble. */
+  tickWraps: number;
 }
 
 const TICK_SPAN_US = 2 ** 32;
@@ -69,6 +71,7 @@ export class HubClock {
     late: 0,
     restarts: 0,
     damagedTicks: 0,
+    tickWraps: 0,
   };
   readonly #intervalUs: number;
   #hasTick = false;
@@ -173,6 +176,8 @@ export class HubClock {
   }
 
   #acceptTick(sweep: Sweep, stepUs: number, ahead: number): Admission {
+    // As many as it takes to get `stepUs` behind this tick.
+    this.#counters.tickWraps += Math.ceil((stepUs - sweep.tickUs) / TICK_SPAN_US);
     this.#tickUs = sweep.tickUs;
     this.#oddTickUs = -1;
     return this.#accept(sweep, Admission.NEXT, stepUs, this.#intervalsIn(stepUs, ahead));

@@ -32,6 +32,10 @@ export const FLAG_ADVICE: Readonly<Record<AdviceKey, string>> = {
   "building field":
     "The building bends the Earth's field here: the shape is not affected, but do not read compass directions from this run.",
   "lost samples": "Check the plug and cable at {place}, then between hub and computer.",
+  "duplicate sweeps":
+    "Something sends the hub's packets twice: look for an adapter or a program between hub and computer that repeats them.",
+  "late sweeps":
+    "Packets overtake each other on the way: connect the hub by a cable of its own, without a network or hub between.",
   "corrupt packets":
     "Check cable, connector and ground between hub and computer, and that both use the same baud rate.",
   "link silent": "Check that the hub has power and its cable is plugged in; recording goes on by itself.",
@@ -41,6 +45,8 @@ export const FLAG_ADVICE: Readonly<Record<AdviceKey, string>> = {
     "The hub cannot read {name}: check its plug at {place} and the cable from {neighbours}.",
   "sensor flipped":
     "{name} reads as if turned by half: check how it sits at {place} and its mounting in the rig file.",
+  "mounting changed":
+    "{name} has turned where it sits, at {place}: fix it and find its mounting anew; until then do not use it.",
   "sensors swapped":
     "Two sensors read as if they had changed places: check their plugs from {place} on, and their order in the rig file.",
   "noise at rest":
@@ -58,6 +64,8 @@ export const FLAG_ADVICE: Readonly<Record<AdviceKey, string>> = {
   "hub temperature": "Bring the hub back to a temperature it stands: water, shade, or a pause.",
   "hub fault":
     "The hub reports a fault of its own: check the plugs of all sensors, then power it off and on between runs.",
+  "clock drift":
+    "Hub and computer disagree on how long a second is: let the computer's clock be set before a run, and when it is right, trust frequencies and speeds less by as much.",
   "hub restarted":
     "The hub started anew: check its supply, and compare the time marks before and after when you evaluate.",
 };

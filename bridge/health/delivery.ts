@@ -12,6 +12,8 @@ import { Hysteresis, Turn } from "./hysteresis.ts";
 import type { HealthSetup } from "./setup.ts";
 import { RollingSum } from "./windows.ts";
 
+/** What is missing may have been overtaken: it is told when it has not come before so many further sweeps have. */
+const LATE_SWEEPS = 4;
 /** Losses closer together than this are one flag, s. */
 const QUIET_S = 1;
 const CAUTION_SHARE = 0.05;
@@ -37,6 +39,8 @@ export class Delivery {
   readonly #lost60: RollingSum;
   readonly #due60 = new RollingSum(1, LONG_S, 60);
   readonly #came = new RollingSum(1, 1.1, 11);
+  /** Sweeps missing before each of the last LATE_SWEEPS, oldest first. */
+  readonly #missing = new Float64Array(LATE_SWEEPS);
   readonly #state: Hysteresis;
 
   constructor(setup: HealthSetup) {
@@ -67,8 +71,10 @@ export class Delivery {
     this.#came.advance(timeS);
     this.#came.add(0, 1);
     this.#due60.add(0, 1);
+    this.#lost1.add(rig, this.#missing[0]!);
+    this.#missing.copyWithin(0, 1);
+    this.#missing[LATE_SWEEPS - 1] = unexplained;
     if (lostBefore > 0) {
-      this.#lost1.add(rig, unexplained);
       this.#lost60.add(rig, lostBefore, stepS);
       this.#due60.add(0, lostBefore, stepS);
     }
@@ -84,6 +90,15 @@ export class Delivery {
     }
     for (let row = 0; row <= rig; row++) this.#judge(row, timeS);
     this.#share();
+  }
+
+  /** A sweep that counts as lost has come after all: nobody could use it, but it is not the link that loses. */
+  cameLate(): void {
+    for (let k = 0; k < LATE_SWEEPS; k++) {
+      if (this.#missing[k] === 0) continue;
+      this.#missing[k]!--;
+      return;
+    }
   }
 
   /** The link is silent: nothing came in the last second. */

@@ -9,13 +9,16 @@
 import type { Sweep } from "../sweep.ts";
 import { AlternatingField } from "./alternating-field.ts";
 import { AtRest } from "./at-rest.ts";
+import { ClockDrift } from "./clock-drift.ts";
 import { CorruptPackets } from "./corrupt-packets.ts";
 import { Delivery } from "./delivery.ts";
 import { FlippedSensors } from "./flipped.ts";
 import { Headroom } from "./headroom.ts";
 import { type HubReport, HubStatusWatch } from "./hub-status.ts";
 import { MagneticInterference } from "./magnetic.ts";
+import { MountingChange } from "./mounting-change.ts";
 import { OnBoardDifference } from "./on-board.ts";
+import { DUPLICATE, LATE, OutOfOrder } from "./out-of-order.ts";
 import { HubRestarts, ReadErrors } from "./read-errors.ts";
 import type { RestMeter } from "./rest-meter.ts";
 import { Saturation } from "./saturation.ts";
@@ -28,6 +31,8 @@ export class Health {
   readonly #silence: Silence;
   readonly #restarts: HubRestarts;
   readonly #corrupt: CorruptPackets;
+  readonly #outOfOrder: OutOfOrder;
+  readonly #clockDrift: ClockDrift;
   readonly #readErrors: ReadErrors;
   readonly #delivery: Delivery;
   readonly #saturation: Saturation;
@@ -36,6 +41,7 @@ export class Health {
   readonly #magnetic: MagneticInterference;
   readonly #alternating: AlternatingField;
   readonly #atRest: AtRest;
+  readonly #mounting: MountingChange;
   readonly #flipped: FlippedSensors;
   readonly #swapped: SwappedSensors;
   readonly #onBoard: OnBoardDifference;
@@ -45,6 +51,8 @@ export class Health {
     this.#silence = new Silence(setup);
     this.#restarts = new HubRestarts(setup);
     this.#corrupt = new CorruptPackets(setup);
+    this.#outOfOrder = new OutOfOrder(setup);
+    this.#clockDrift = new ClockDrift(setup);
     this.#readErrors = new ReadErrors(setup);
     this.#delivery = new Delivery(setup);
     this.#saturation = new Saturation(setup);
@@ -53,6 +61,7 @@ export class Health {
     this.#magnetic = new MagneticInterference(setup);
     this.#alternating = new AlternatingField(setup);
     this.#atRest = new AtRest(setup);
+    this.#mounting = new MountingChange(setup);
     this.#flipped = new FlippedSensors(setup);
     this.#swapped = new SwappedSensors(setup);
     this.#onBoard = new OnBoardDifference(setup);
@@ -69,6 +78,7 @@ export class Health {
     const restarted = this.#restarts.observe(sweep);
     const endsSilence = this.#silence.observe(sweep);
     const uncorrupted = this.#corrupt.observe(sweep);
+    this.#outOfOrder.observe(sweep.timeS);
     this.#readErrors.observe(sweep);
     this.#delivery.observe(sweep, endsSilence || restarted ? 0 : uncorrupted);
     this.#saturation.observe(sweep);
@@ -77,6 +87,7 @@ export class Health {
     this.#magnetic.observe(sweep, orientations);
     this.#alternating.observe(sweep, orientations);
     this.#atRest.observe(sweep);
+    this.#mounting.observe(sweep, orientations);
     this.#swapped.observe(sweep);
     this.#flipped.observe(sweep, this.#swapped.outOfOrder);
   }
@@ -104,6 +115,17 @@ export class Health {
   /** So many more packets were unreadable: told before the sweep that follows them, with its hub time, s. */
   corruption(deltaBad: number, timeS: number): void {
     this.#corrupt.corruption(deltaBad, timeS);
+  }
+
+  /** A sweep came twice, or after a later one, and was dropped: told before the sweep that follows it. */
+  sweepDropped(what: "duplicate" | "late"): void {
+    this.#outOfOrder.dropped(what === "late" ? LATE : DUPLICATE);
+    if (what === "late") this.#delivery.cameLate();
+  }
+
+  /** The hub's clock against the computer's. @param ppm positive when the hub is fast; null while nothing is known */
+  clockDrift(timeS: number, ppm: number | null): void {
+    this.#clockDrift.observe(timeS, ppm);
   }
 
   /** The hub started anew: told before its first sweep, with that sweep's hub time, s. */

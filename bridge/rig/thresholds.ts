@@ -89,6 +89,13 @@ export const thresholdsSchema = z.strictObject({
     .describe(
       "A sensor is flipped when its mean gravity looks this far away from that of the others: a flip makes 180°, a body twisted along its length hardly 60° (common practice, no source).",
     ),
+  mountingChangeDeg: z
+    .number()
+    .min(5)
+    .max(90)
+    .describe(
+      "A sensor's mounting has changed when its up has turned by this much against the other sensors and stays there: a patch that lets go turns by more, and half of it bends a midline visibly.",
+    ),
   reversedLagDeg: z
     .number()
     .min(1)

@@ -16,11 +16,14 @@ export type FlagKind =
   | "rig-wide alternating field"
   | "heading held by the body"
   | "lost samples"
+  | "duplicate sweeps"
+  | "late sweeps"
   | "corrupt packets"
   | "link silent"
   | "stuck axis"
   | "sensor read errors"
   | "sensor flipped"
+  | "mounting changed"
   | "sensors swapped"
   | "noise at rest"
   | "gyro bias"
@@ -31,6 +34,7 @@ export type FlagKind =
   | "supply low"
   | "hub temperature"
   | "hub fault"
+  | "clock drift"
   | "hub restarted";
 
 export interface Flag {

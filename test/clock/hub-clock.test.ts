@@ -46,6 +46,7 @@ describe("tick and sequence", () => {
     expect(sweep).toMatchObject({ timeS: 0.005, stepS: 0.005, lostBefore: 0 });
     expect(send({ sequence: 1, tickUs: INTERVAL_US, hostS: 0 })).toBe(NEXT);
     expect(sweep.timeS).toBe(0.01);
+    expect(clock.counters.tickWraps).toBe(1);
   });
 
   it("counts lost sweeps by the sequence, also when the tick wraps inside the gap", () => {

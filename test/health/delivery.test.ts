@@ -10,16 +10,18 @@ function absent(sensor: number, when: (tick: number) => boolean = () => true) {
 }
 
 describe("lost sweeps", () => {
-  it("are the rig's: flagged with the sweep that follows, marked on every sensor, ended", () => {
+  it("are the rig's: marked on every sensor with the sweep that follows, flagged four later, ended", () => {
     const bench = new HealthBench().run(5);
     bench.rig.lose(3);
     bench.run(0.01);
+    for (const conditions of bench.rig.sweep.conditions) expect(conditions).toBe(CONDITION.GAP);
+    expect(bench.raised).toEqual([]);
+    bench.run(0.04);
     expect(bench.raised).toEqual(["lost samples@-1"]);
     expect(bench.flags[0]).toMatchObject({
       severity: "notice",
       detail: "up to 3 % of sweeps lost in a second",
     });
-    for (const conditions of bench.rig.sweep.conditions) expect(conditions).toBe(CONDITION.GAP);
     bench.run(2.2);
     expect(bench.openNow).toEqual([]);
     expect(bench.rig.sweep.conditions[0]).toBe(0);
@@ -32,7 +34,7 @@ describe("lost sweeps", () => {
   ])("%i of a hundred are a %s", (lost, severity) => {
     const bench = new HealthBench().run(5);
     bench.rig.lose(lost);
-    expect(bench.run(0.01).flags[0]!.severity).toBe(severity);
+    expect(bench.run(0.05).flags[0]!.severity).toBe(severity);
   });
 
   it("get worse while open but never milder", () => {
@@ -56,6 +58,18 @@ describe("lost sweeps", () => {
     fast.run(0.2);
     fast.rig.lose(1);
     expect(fast.run(0.1).raised).toEqual(["lost samples@-1"]);
+  });
+
+  it("and came late after all are no loss of the link", () => {
+    const bench = new HealthBench().run(5);
+    for (let k = 0; k < 20; k++) {
+      bench.rig.lose(1);
+      bench.run(0.02);
+      bench.health.sweepDropped("late");
+    }
+    bench.run(1);
+    expect(bench.raised).toEqual(["late sweeps@-1"]);
+    expect(bench.health.lostShare60).toBeGreaterThan(0.02);
   });
 
   it("that keep coming are one flag", () => {
