@@ -276,7 +276,7 @@ export class Pipeline {
     this.#reportBadPackets(sweep.timeS);
     if (admission === Admission.RESTARTED) this.health.hubRestarted(sweep.timeS);
     this.#calibration.apply(sweep);
-    this.health.observe(sweep, this.fusion.orientations);
+    this.health.observe(sweep, this.fusion.orientations, this.fusion.inclinationSigma);
     if (this.chosenHeading === "magnetic")
       this.fusion.setHeading(this.#fallback.observe(sweep.timeS) ? "relative" : "magnetic");
     this.fusion.step(sweep);

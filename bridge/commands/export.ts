@@ -79,7 +79,9 @@ export function exportTrial(
     ring: false,
     camera: camera?.track,
     observer: {
-      sweep({ timeS, lostBefore }) {
+      sweep(sweep) {
+        const { timeS, lostBefore } = sweep;
+        writer.readings(sweep);
         lostSweeps += lostBefore;
         const { midline, fusion } = pipeline;
         const { inUse, whySmooth } = midline;

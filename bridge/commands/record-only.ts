@@ -3,6 +3,7 @@ import { BendwatchError } from "../errors.ts";
 import type { ByteSource } from "../link/source.ts";
 import { Pipeline } from "../pipeline.ts";
 import type { Rig } from "../rig/load.ts";
+import { watchDisk } from "../serve/disk-watch.ts";
 import type { TrialRecorder } from "../trial/recorder.ts";
 
 export interface RecordOnlyOptions {
@@ -33,6 +34,7 @@ export async function recordOnly({
     ring: false,
     observer: { flag: (flag) => recorder.flag(flag) },
   });
+  const stopDiskWatch = watchDisk({ recorder, thresholds: rig.thresholds, run: () => pipeline });
   await source.run({
     bytes(chunk, hostTimeMs) {
       recorder.bytes(chunk, hostTimeMs);
@@ -44,6 +46,7 @@ export async function recordOnly({
     },
     mark() {},
   });
+  stopDiskWatch();
   pipeline.finish();
   await recorder.close("ended");
   return pipeline.sweepCount;

@@ -60,6 +60,7 @@ export const FLAG_ADVICE: Readonly<Record<AdviceKey, string>> = {
   "on-board fusion differs":
     "{name}'s own orientation is not ours, which is shown: check its mounting in the rig file, and its frame and axes in the packet layout.",
   "recording trouble": "Free disk space or choose another folder now: what arrives is not being kept.",
+  "disk nearly full": "Make room on the disk, or record to another one, before the next run.",
   "supply low": "Charge or change the hub's supply before the next run, and look for a long or thin cable.",
   "hub temperature": "Bring the hub back to a temperature it stands: water, shade, or a pause.",
   "hub fault":

@@ -1,7 +1,7 @@
 /**
  * How far each sensor's magnetic field is from the reference: norm and dip together, as the distance between measured and
  * reference field in the plane of horizontal and downward part, over the reference's norm. The vertical comes from the
- * sensor's orientation; heading plays no part.
+ * sensor's orientation, and what its stated uncertainty explains is no difference in dip; heading plays no part.
  *
  * The vertical of a sensor that was clipped, stuck, unread or away for a while cannot be believed until the orientation
  * filter has found it again: for DOUBT_S the norm alone is compared, which needs no vertical.
@@ -15,6 +15,8 @@ const SMOOTHING_S = 0.15;
 const DOUBT_S = 12;
 /** Without gyro and accelerometer for longer than this the vertical drifts off, s. */
 const BRIDGED_S = 0.2;
+/** The vertical may be off by so many of its standard deviations. */
+const SIGMAS = 2;
 const DOUBTFUL = CONDITION.GYRO_CLIPPED | CONDITION.ACCEL_CLIPPED | CONDITION.STUCK | CONDITION.READ_FAILED;
 
 export class FieldMeter {
@@ -44,9 +46,10 @@ export class FieldMeter {
   /**
    * Takes sensor `i`'s part of a sweep; feeds the reference while that is learned.
    * @param orientations body axes to earth as of the sweep before, scalar first, sensors x 4
+   * @param inclinationSigma how uncertain their inclinations are, rad, by sensor
    * @returns true when there was a reading of the field
    */
-  read(sweep: Sweep, i: number, orientations: Float64Array): boolean {
+  read(sweep: Sweep, i: number, orientations: Float64Array, inclinationSigma: Float64Array): boolean {
     const { timeS } = sweep;
     if ((sweep.conditions[i]! & DOUBTFUL) !== 0) this.#doubtUntilS[i] = timeS + DOUBT_S;
     if ((sweep.present[i]! & HAS_INERTIAL) === HAS_INERTIAL) {
@@ -59,12 +62,17 @@ export class FieldMeter {
 
     this.#smooth(i, timeS, sweep.values, orientations);
     this.#reference.reading(i, this.horizontal[i]!, this.down[i]!);
-    const { normUT, horizontalUT, downUT } = this.#reference;
-    this.off[i] =
-      timeS < this.#doubtUntilS[i]!
-        ? Math.abs(this.norm[i]! - normUT) / normUT
-        : Math.hypot(this.horizontal[i]! - horizontalUT, this.down[i]! - downUT) / normUT;
+    const byNorm = this.norm[i]! / this.#reference.normUT - 1;
+    const byDip = timeS < this.#doubtUntilS[i]! ? 0 : this.#dipOff(i, SIGMAS * inclinationSigma[i]!);
+    this.off[i] = Math.hypot(byNorm, byDip);
     return true;
+  }
+
+  /** How far the field is turned in the vertical plane beyond what the vertical's uncertainty explains, share of the norm. */
+  #dipOff(i: number, uncertain: number): number {
+    const { horizontalUT, downUT } = this.#reference;
+    const dip = Math.atan2(this.down[i]!, this.horizontal[i]!) - Math.atan2(downUT, horizontalUT);
+    return 2 * Math.sin(Math.max(0, Math.abs(dip) - uncertain) / 2);
   }
 
   #smooth(i: number, timeS: number, values: Float64Array, orientations: Float64Array): void {

@@ -72,8 +72,9 @@ export class Health {
    * Looks at one admitted sweep (late and duplicate ones never get here), calibrated but not yet fused; sets
    * `sweep.conditions`.
    * @param orientations body axes to earth as fused with the sweep before, scalar first, sensors x 4
+   * @param inclinationSigma standard deviation of their inclinations, rad, by sensor
    */
-  observe(sweep: Sweep, orientations: Float64Array): void {
+  observe(sweep: Sweep, orientations: Float64Array, inclinationSigma: Float64Array): void {
     // What explains a loss comes before the loss; what breaks a reading comes before what is read from it.
     const restarted = this.#restarts.observe(sweep);
     const endsSilence = this.#silence.observe(sweep);
@@ -84,7 +85,7 @@ export class Health {
     this.#saturation.observe(sweep);
     this.#headroom.observe(sweep);
     this.#stuck.observe(sweep);
-    this.#magnetic.observe(sweep, orientations);
+    this.#magnetic.observe(sweep, orientations, inclinationSigma);
     this.#alternating.observe(sweep, orientations);
     this.#atRest.observe(sweep);
     this.#mounting.observe(sweep, orientations);

@@ -59,13 +59,17 @@ export class MagneticInterference {
     return this.#meter.off;
   }
 
-  /** Needs this sweep's clipped and stuck readings told to the book. @param orientations as of the sweep before */
-  observe(sweep: Sweep, orientations: Float64Array): void {
+  /**
+   * Needs this sweep's clipped and stuck readings told to the book.
+   * @param orientations as of the sweep before
+   * @param inclinationSigma rad, by sensor
+   */
+  observe(sweep: Sweep, orientations: Float64Array, inclinationSigma: Float64Array): void {
     const { timeS } = sweep;
     if (this.#reference.advance(timeS)) this.#noticeBuilding(timeS);
     if (timeS >= this.#noticeUntilS) this.#endNotice(timeS);
     for (let i = 0; i < sweep.sensorCount; i++) {
-      if (this.#meter.read(sweep, i, orientations)) this.#judge(i, timeS);
+      if (this.#meter.read(sweep, i, orientations, inclinationSigma)) this.#judge(i, timeS);
       if (this.#disturbed.on[i] === 1 && this.#isOff(i)) sweep.conditions[i]! |= CONDITION.MAG_DISTURBED;
     }
     for (let i = 0; i < sweep.sensorCount; i++) if (this.#isSound(i)) this.#spread.confirm(i, timeS);

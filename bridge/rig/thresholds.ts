@@ -157,6 +157,13 @@ export const thresholdsSchema = z.strictObject({
     .describe(
       "A flag when the hub is hotter than this: in water it should never be, and batteries and glue suffer from 60 °C on (common practice, no source).",
     ),
+  diskLeastMinutes: z
+    .number()
+    .min(0)
+    .max(100_000)
+    .describe(
+      "A flag when the disk has room for less than so many minutes at the pace of the recording: longer than a trial, so that there is time to clear up.",
+    ),
   stuckAxisS: z
     .number()
     .min(0.1)

@@ -22,6 +22,7 @@ import type {
   StatusMessage,
   WelcomeMessage,
 } from "../wire/messages.ts";
+import { watchDisk } from "./disk-watch.ts";
 import { FrameWriter, Strip } from "./display.ts";
 import { cameraMessage, driveMessage } from "./drive-view.ts";
 import { every } from "./every.ts";
@@ -70,6 +71,7 @@ export class Monitor implements ByteSink {
   #framedSweeps = 0;
   #subscription: Subscription | undefined;
   #stopFrames: (() => void) | undefined;
+  #stopDiskWatch: (() => void) | undefined;
 
   constructor(options: MonitorOptions) {
     this.#options = options;
@@ -93,6 +95,10 @@ export class Monitor implements ByteSink {
   async listen(): Promise<string> {
     const address = await this.#server.listen();
     this.#stopFrames = every(FRAME_INTERVAL_MS, () => this.#sendFrame());
+    const { recorder, rig } = this.#options;
+    if (recorder !== null) {
+      this.#stopDiskWatch = watchDisk({ recorder, thresholds: rig.thresholds, run: () => this.#pipeline });
+    }
     this.#subscription = this.#messages().subscribe((message) => this.#server.sendText(message));
     if (this.#options.source.kind !== "trial") {
       this.#subscription.add(interval(SILENCE_CHECK_MS).subscribe(() => this.#checkSilence()));
@@ -103,6 +109,7 @@ export class Monitor implements ByteSink {
   /** Runs the source to its end. */
   async run(): Promise<void> {
     await this.#options.source.run(this);
+    this.#stopDiskWatch?.();
     this.#pipeline.finish();
     await this.#options.recorder?.close();
   }
@@ -111,6 +118,7 @@ export class Monitor implements ByteSink {
   async close(): Promise<void> {
     await this.#options.source.stop();
     this.#stopFrames?.();
+    this.#stopDiskWatch?.();
     this.#subscription?.unsubscribe();
     this.#pipeline.finish();
     await this.#options.recorder?.close();

@@ -52,6 +52,7 @@ export type RecordingState = StatusMessage["recording"];
 
 export class TrialRecorder implements Pick<ByteSink, "bytes" | "linkState"> {
   readonly name: string;
+  readonly folder: string;
   readonly #startedAtMs: number;
   readonly #queueLimit: number;
   readonly #files: Files;
@@ -98,6 +99,7 @@ export class TrialRecorder implements Pick<ByteSink, "bytes" | "linkState"> {
 
   private constructor(options: RecorderOptions, files: Files, chain: SealChain) {
     this.name = basename(options.folder);
+    this.folder = options.folder;
     this.#startedAtMs = options.startedAt.getTime();
     this.#lastRecordMs = this.#startedAtMs;
     this.#queueLimit = options.queueLimitBytes ?? QUEUE_LIMIT_BYTES;

@@ -31,6 +31,7 @@ export type FlagKind =
   | "field at rest"
   | "on-board fusion differs"
   | "recording trouble"
+  | "disk nearly full"
   | "supply low"
   | "hub temperature"
   | "hub fault"

@@ -4,8 +4,10 @@
  */
 import { describe, expect, test } from "vitest";
 import { RAD_PER_DEG, STANDARD_GRAVITY } from "../../bridge/numeric/units.ts";
+import { FAULT_KINDS } from "../../bridge/rehearsal/faults.ts";
 import type { FlagKind } from "../../bridge/wire/flag.ts";
 import { rehearse } from "../support/rehearse.ts";
+import { healthySwimmer } from "./healthy.ts";
 
 const START_S = 10;
 /** Long enough for the slowest condition to end: the magnetic one's second of quiet, the loss window's second. */
@@ -47,6 +49,30 @@ const CASES: readonly Case[] = [
   { fault: "bus", forS: 3, kinds: ["hub fault"], sensor: -1 },
 ];
 
+/** Told in a body that lies still. */
+const AT_REST = [
+  { fault: "noisy:S3", kind: "noise at rest", sensor: 2 },
+  { fault: "offset:S5", kind: "gyro bias", sensor: 4 },
+  { fault: "heavy:S1", kind: "gravity at rest", sensor: 0 },
+  { fault: "strong:S6", kind: "field at rest", sensor: 5 },
+] as const;
+
+/** Wrong from the start, and told when the body has swum for a while. */
+const FROM_THE_START = [
+  { fault: "upended:S3", kind: "sensor flipped", sensor: 2 },
+  { fault: "backward:S2", kind: "sensor flipped", sensor: 1 },
+  { fault: "backward:S6", kind: "sensor flipped", sensor: 5 },
+  { fault: "swapped:S4", kind: "sensors swapped", sensor: 3 },
+] as const;
+
+/** With tests of their own below. */
+const SPECIAL = ["drift", "restart"];
+
+test("every fault that can be rehearsed is held by a test", () => {
+  const held = [...CASES, ...AT_REST, ...FROM_THE_START].map(({ fault }) => fault.split(":")[0]!);
+  expect([...new Set([...held, ...SPECIAL])].sort()).toEqual(Object.keys(FAULT_KINDS).sort());
+});
+
 describe.each([
   // A beat of 2.1 Hz reaches its crest, where a gyroscope flat-tops, four times a second.
   { rig: "ribbon-foil", frequencyHz: 2.1 },
@@ -80,55 +106,51 @@ describe.each([
     expect(pipeline.flags.open).toEqual([]);
   });
 
-  test.each([
-    { fault: "upended:S3", kind: "sensor flipped", sensor: 2 },
-    { fault: "backward:S2", kind: "sensor flipped", sensor: 1 },
-    { fault: "backward:S6", kind: "sensor flipped", sensor: 5 },
-    { fault: "swapped:S4", kind: "sensors swapped", sensor: 3 },
-  ])("$fault, wrong from the start, raises its flag and no other", async ({ fault, kind, sensor }) => {
-    const durationS = 18;
-    const { flags, seenAtS } = await rehearse({
-      rig,
-      seed: 3,
-      durationS,
-      faults: [`${fault}@0+${durationS}`],
-      swimmer: { frequencyHz: 1.1 },
-    });
-    expect(flags.map((flag) => [flag.kind, flag.sensor])).toEqual([[kind, sensor]]);
-    // Two windows of 4 s after the first, in which the body begins to swim.
-    expect(seenAtS.get(flags[0]!.id)!).toBeLessThanOrEqual(12.1);
-    expect(flags[0]!.advice).not.toBe("");
-  });
+  test.each(FROM_THE_START)(
+    "$fault, wrong from the start, raises its flag and no other",
+    async ({ fault, kind, sensor }) => {
+      const durationS = 18;
+      const { flags, seenAtS } = await rehearse({
+        rig,
+        seed: 3,
+        durationS,
+        faults: [`${fault}@0+${durationS}`],
+        swimmer: { frequencyHz: 1.1 },
+      });
+      expect(flags.map((flag) => [flag.kind, flag.sensor])).toEqual([[kind, sensor]]);
+      // Two windows of 4 s after the first, in which the body begins to swim.
+      expect(seenAtS.get(flags[0]!.id)!).toBeLessThanOrEqual(12.1);
+      expect(flags[0]!.advice).not.toBe("");
+    },
+  );
 
-  test.each([
-    { fault: "noisy:S3", kind: "noise at rest", sensor: 2 },
-    { fault: "offset:S5", kind: "gyro bias", sensor: 4 },
-    { fault: "heavy:S1", kind: "gravity at rest", sensor: 0 },
-    { fault: "strong:S6", kind: "field at rest", sensor: 5 },
-  ])("$fault, in a body at rest, raises its flag and no other", async ({ fault, kind, sensor }) => {
-    const faultS = 12;
-    const { flags, seenAtS, pipeline } = await rehearse({
-      rig,
-      seed: 3,
-      durationS: START_S + faultS + 8,
-      faults: [`${fault}@${START_S}+${faultS}`],
-      swimmer: { restS: 60 },
-    });
-    expect(flags.map((flag) => [flag.kind, flag.sensor])).toEqual([[kind, sensor]]);
-    // A window of 3 s that holds the fault alone, the slice it begins in, and for noise the window it begins in.
-    expect(seenAtS.get(flags[0]!.id)! - START_S).toBeLessThanOrEqual(6);
-    expect(flags[0]!.endS! - START_S - faultS).toBeLessThanOrEqual(6);
-    expect(pipeline.flags.open).toEqual([]);
-    // The healthy neighbour's figures, from a run of more than half a minute but for the two slices of its ends: the noise
-    // of the model (to a tenth: some 300 differences an axis, the noisiest of three) and gravity within 20 mg an axis.
-    const { run } = pipeline.health.rest;
-    const healthy = 3;
-    expect(run.stillS[healthy]).toBeGreaterThan(26);
-    expect(Math.abs(run.gyroNoise[healthy]! / (0.006 * RAD_PER_DEG) - 1.05)).toBeLessThan(0.1);
-    expect(Math.abs(run.accelNoise[healthy]! / (150e-6 * STANDARD_GRAVITY) - 1.05)).toBeLessThan(0.1);
-    expect(Math.abs(run.gravity[healthy]! - 9.81)).toBeLessThan(0.35);
-    expect(run.fieldUT[healthy]).toBeCloseTo(50, 0);
-  });
+  test.each(AT_REST)(
+    "$fault, in a body at rest, raises its flag and no other",
+    async ({ fault, kind, sensor }) => {
+      const faultS = 12;
+      const { flags, seenAtS, pipeline } = await rehearse({
+        rig,
+        seed: 3,
+        durationS: START_S + faultS + 8,
+        faults: [`${fault}@${START_S}+${faultS}`],
+        swimmer: { restS: 60 },
+      });
+      expect(flags.map((flag) => [flag.kind, flag.sensor])).toEqual([[kind, sensor]]);
+      // A window of 3 s that holds the fault alone, the slice it begins in, and for noise the window it begins in.
+      expect(seenAtS.get(flags[0]!.id)! - START_S).toBeLessThanOrEqual(6);
+      expect(flags[0]!.endS! - START_S - faultS).toBeLessThanOrEqual(6);
+      expect(pipeline.flags.open).toEqual([]);
+      // The healthy neighbour's figures, from a run of more than half a minute but for the two slices of its ends: the noise
+      // of the model (to a tenth: some 300 differences an axis, the noisiest of three) and gravity within 20 mg an axis.
+      const { run } = pipeline.health.rest;
+      const healthy = 3;
+      expect(run.stillS[healthy]).toBeGreaterThan(26);
+      expect(Math.abs(run.gyroNoise[healthy]! / (0.006 * RAD_PER_DEG) - 1.05)).toBeLessThan(0.1);
+      expect(Math.abs(run.accelNoise[healthy]! / (150e-6 * STANDARD_GRAVITY) - 1.05)).toBeLessThan(0.1);
+      expect(Math.abs(run.gravity[healthy]! - 9.81)).toBeLessThan(0.35);
+      expect(run.fieldUT[healthy]).toBeCloseTo(50, 0);
+    },
+  );
 
   test("a clock that drifts is told when a minute has shown it, and nothing else is", async () => {
     const { flags, seenAtS, pipeline } = await rehearse({
@@ -160,6 +182,15 @@ describe.each([
     expect(pipeline.timeS).toBeGreaterThan(25.9);
     expect(pipeline.timeS).toBeLessThan(26.1);
   });
+});
+
+// The short version of healthy-hours.ts.
+test.each([
+  { rig: "ribbon-foil", seed: 11, durationS: 300 },
+  { rig: "long-dummy", seed: 12, durationS: 120 },
+])("healthy swimming of all sorts raises no flag: $rig, seed $seed", async ({ rig, seed, durationS }) => {
+  const swimmer = healthySwimmer(seed, durationS);
+  expect((await rehearse({ rig, seed, durationS, swimmer })).flags).toEqual([]);
 });
 
 test.each([1, 2, 3])("ten healthy minutes raise no flag at all (seed %i)", async (seed) => {

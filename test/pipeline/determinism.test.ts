@@ -50,6 +50,7 @@ test("the export has every table, with rows from the faults too", () => {
     "datapackage.json",
     "drive.csv",
     "envelope.csv",
+    "evidence.csv",
     "flags.csv",
     "frames.csv",
     "gait.csv",

@@ -26,6 +26,8 @@ export class HealthBench {
   readonly rig: SyntheticRig;
   readonly book: FlagBook;
   readonly health: Health;
+  /** The synthetic orientations are the true ones. */
+  readonly #exact: Float64Array;
   /** Every flag raised, in order. */
   readonly flags: Flag[] = [];
 
@@ -37,6 +39,7 @@ export class HealthBench {
       model: this.rig.model,
       rateHz: options.rates?.[i],
     }));
+    this.#exact = new Float64Array(sensors.length);
     this.book = new FlagBook(sensors, { onRaised: (flag) => this.flags.push(flag) });
     this.health = new Health({
       sensors,
@@ -57,7 +60,8 @@ export class HealthBench {
   /** Runs for `seconds` of hub time. `spoil` sees each sweep before the health room does. */
   run(seconds: number, spoil?: (sweep: Sweep) => void): this {
     const count = Math.round(seconds * this.rig.rateHz);
-    for (let k = 0; k < count; k++) this.health.observe(this.rig.next(spoil), this.rig.orientations);
+    for (let k = 0; k < count; k++)
+      this.health.observe(this.rig.next(spoil), this.rig.orientations, this.#exact);
     return this;
   }
 

@@ -10,10 +10,12 @@ import type { LinkCounters } from "../../link/packets.ts";
 import { toAngles } from "../../numeric/angles.ts";
 import { DEG_PER_RAD } from "../../numeric/units.ts";
 import type { Rig } from "../../rig/load.ts";
+import type { Sweep } from "../../sweep.ts";
 import type { Flag, Mark } from "../../wire/flag.ts";
 import { TRUST_WORDS } from "../../wire/trust.ts";
 import { BesideTables, type CameraSummary, cameraSummary, driveSummary } from "./beside-tables.ts";
 import { DATA_PACKAGE_FILE, describePackage, SOFTWARE_PREFIX, SUMMARY_FILE } from "./data-package.ts";
+import { FlagEvidence } from "./evidence.ts";
 import { FrameMidlines } from "./frames.ts";
 import { type ExportedBout, type ExportedCycle, GAIT_TABLES, GaitTables } from "./gait-tables.ts";
 import { attempt, TableFile } from "./table-file.ts";
@@ -56,6 +58,7 @@ export class ExportWriter {
   #sync: TableFile | null = null;
   #frameTable: TableFile | null = null;
   readonly #frames: FrameMidlines;
+  readonly #evidence: FlagEvidence;
   /** Newest state of each flag, by id. */
   readonly #flags = new Map<number, Flag>();
   readonly #angles = new Float64Array(3);
@@ -79,6 +82,7 @@ export class ExportWriter {
     this.#frames = new FrameMidlines(options.rig.hub.rateHz, 3 * STATION_COUNT, (timeS, edge, midlineM) =>
       this.#frameRow(timeS, edge, midlineM),
     );
+    this.#evidence = new FlagEvidence(folder, options.rig);
   }
 
   /**
@@ -126,8 +130,14 @@ export class ExportWriter {
     this.#sensors.endRow();
   }
 
+  /** The readings of the same sweep, of which those about flags are exported. Borrowed. */
+  readings(sweep: Sweep): void {
+    this.#evidence.sweep(sweep);
+  }
+
   /** A flag was raised, changed or ended; the newest state of each id is exported. */
   flag(flag: Flag): void {
+    this.#evidence.flag(flag);
     this.#flags.set(flag.id, { ...flag });
   }
 
@@ -181,6 +191,7 @@ export class ExportWriter {
   finish(summary: ExportSummary): void {
     const { folder, trialName, rig, softwareVersion } = this.#options;
     this.#frames.finish();
+    this.#evidence.finish();
     this.#beside.compared(summary.drive ?? [], summary.camera ?? null);
     const flags = this.#writeFlags();
     const files = [
@@ -189,7 +200,7 @@ export class ExportWriter {
       flags,
       ...this.#gait.files,
       this.#marks,
-      ...[this.#sync, this.#frameTable].filter((file) => file !== null),
+      ...[this.#evidence.file, this.#sync, this.#frameTable].filter((file) => file !== null),
       ...this.#beside.files,
     ];
     const written = files.map((file) => file.finish());

@@ -8,6 +8,7 @@
  *     degrees      3   finer than any sensor's noise
  *     ratio        4   gains and correlations of real trials differ in the second
  *     ms           3   1 µs, the hub's tick
+ *     reading      5   far below one count of a 16-bit sensor
  */
 import { TRUST_WORDS } from "../../wire/trust.ts";
 
@@ -22,7 +23,7 @@ export interface Column {
   readonly description: string;
 }
 
-export const DECIMALS = { time: 6, mm: 3, quaternion: 7, degrees: 3, ratio: 4, ms: 3 } as const;
+export const DECIMALS = { time: 6, mm: 3, quaternion: 7, degrees: 3, ratio: 4, ms: 3, reading: 5 } as const;
 
 /** Stations of the midline table, evenly spaced from nose to tail tip. */
 export const STATION_COUNT = 41;
@@ -115,6 +116,20 @@ export const FLAGS: Table = {
   ],
 };
 
+export const EVIDENCE: Table = {
+  name: "evidence",
+  description:
+    "What each flag was raised upon: its sensor's readings (every sensor's for the whole rig) from 2 s before its onset to 2 s after, in the sensor's own axes, before calibration. Cells are empty where nothing was read.",
+  columns: [
+    integer("flag", "Row of the flags table, counted from 1."),
+    hubTime,
+    text("sensor", "Name of the sensor that was read."),
+    ...["x", "y", "z"].map((axis) => number(`rate_${axis}_deg_s`, "deg/s", `Angular rate about ${axis}.`)),
+    ...["x", "y", "z"].map((axis) => number(`force_${axis}_m_s2`, "m/s^2", `Specific force along ${axis}.`)),
+    ...["x", "y", "z"].map((axis) => number(`field_${axis}_ut`, "uT", `Magnetic field along ${axis}.`)),
+  ],
+};
+
 export const MARKS: Table = {
   name: "marks",
   description: "Notes made during the trial.",
@@ -186,6 +201,7 @@ export const TABLES: readonly Table[] = [
   MIDLINE,
   SENSORS,
   FLAGS,
+  EVIDENCE,
   MARKS,
   SYNC,
   FRAMES,
