@@ -7,47 +7,47 @@
  * chunks. Arrival times, as recorded, serve four things only: noticing a silent link, bridging a restart of the hub,
  * telling whether a gap is longer than the hub's counters can say, and how fast the hub's clock runs against the host's.
  */
-import { HeadMotion } from "./body/head-motion.ts";
-import { Midline } from "./body/midline.ts";
+import type { HeadMotion } from "./body/head-motion.ts";
+import type { Midline } from "./body/midline.ts";
 import { TravelAxis } from "./body/travel-axis.ts";
-import { Calibration, mountingMatrix } from "./calibration/calibration.ts";
+import { Calibration } from "./calibration/calibration.ts";
 import { DriftMeter } from "./clock/drift.ts";
 import { Admission, HubClock } from "./clock/hub-clock.ts";
 import { SilenceWatch } from "./clock/silence.ts";
 import { CameraComparison } from "./drive/camera-comparison.ts";
 import type { CameraTrack } from "./drive/camera-track.ts";
-import { DriveComparison } from "./drive/drive-comparison.ts";
-import { ChainFusion } from "./fusion/chain-fusion.ts";
-import { DEFAULT_PARAMETERS } from "./fusion/parameters.ts";
+import type { DriveComparison } from "./drive/drive-comparison.ts";
+import type { ChainFusion } from "./fusion/chain-fusion.ts";
 import { FlagBook } from "./health/flag-book.ts";
 import { HeadingFallback } from "./health/heading-fallback.ts";
-import { Health } from "./health/health.ts";
-import { siteField } from "./health/site-field.ts";
+import type { Health } from "./health/health.ts";
 import { createDecoder } from "./link/decoder.ts";
 import type { HubStatus, LinkCounters, PacketDecoder } from "./link/packets.ts";
-import { normalGravity } from "./numeric/gravity.ts";
-import { RAD_PER_DEG } from "./numeric/units.ts";
 import type { Rig } from "./rig/load.ts";
-import type { SensorPlace } from "./rig/rig.ts";
+import {
+  driveOf,
+  fusionOf,
+  gaitOf,
+  headMotionOf,
+  healthOf,
+  midlineOf,
+  ringOf,
+  stationsOf,
+} from "./stages.ts";
 import type { Sweep } from "./sweep.ts";
-import { TrialRing } from "./trial/ring.ts";
-import { GaitMeter } from "./wave/gait.ts";
+import type { TrialRing } from "./trial/ring.ts";
+import type { GaitMeter } from "./wave/gait.ts";
 import type { GaitCycle } from "./wave/gait-cycle.ts";
 import { Rhythm } from "./wave/rhythm.ts";
 import type { Bout } from "./wave/steady-bout.ts";
 import type { TailbeatMeter } from "./wave/tailbeat.ts";
-import { kinematicViscosityOf } from "./wave/water.ts";
 import type { Flag, Mark } from "./wire/flag.ts";
 import type { Choice, HeadingView } from "./wire/messages.ts";
 
-/** Points of the midline, nose and tail tip included. */
-export const POINT_COUNT = 41;
 /** No sweep for this long is a silent link, be it that nothing comes or that nothing can be read. */
 const SILENCE_MS = 300;
 /** The drive's readings belong to the sweeps about them: one further off has a damaged tick, or its hub has restarted, s. */
 const REFERENCE_STRAY_S = 2;
-/** The ring buffer's span. */
-const RING_SECONDS = 600;
 
 const HEADING_MARKS: Record<HeadingView, string> = {
   magnetic: "Heading held by the magnetometers",
@@ -122,9 +122,8 @@ export class Pipeline {
   #badPackets = 0;
 
   constructor(rig: Rig, { startedAt, observer = {}, ring = true, camera }: PipelineOptions) {
-    const { sensors, models, thresholds, hub, site, body } = rig;
-    const sensorCount = sensors.length;
-    const rateHz = hub.rateHz;
+    const { sensors } = rig;
+    const { rateHz } = rig.hub;
     this.rig = rig;
     this.chosenHeading = rig.heading;
     this.#observer = observer;
@@ -143,77 +142,21 @@ export class Pipeline {
       onChanged: (flag) => observer.flag?.(flag, "changed"),
       onEnded: (flag) => observer.flag?.(flag, "ended"),
     });
-    this.health = new Health({
-      sensors: sensors.map((sensor, i) => ({ ...sensor, model: models[i]! })),
-      rateHz,
-      lengthM: body.lengthMm / 1000,
-      thresholds,
-      gravityMPerS2: site ? normalGravity(site.latitudeDeg, site.heightM) : null,
-      expectedField: site ? siteField(site, site.date ? new Date(site.date) : startedAt) : null,
-      book: this.flags,
-    });
-    this.fusion = new ChainFusion({
-      sensorCount,
-      rateHz,
-      heading: rig.heading,
-      body: {
-        stations: sensors.map((sensor) => sensor.station),
-        lengthM: body.lengthMm / 1000,
-        meanBend: rig.midline.meanBendDeg * RAD_PER_DEG,
-      },
-      samplingOffsetsS: sensors.map((sensor, i) => turnEndS(sensor, models[i].delayMs, rateHz)),
-      sensorRatesHz: sensors.map((sensor) => sensor.rateHz),
-      gyroRanges: models.map((model) => model.gyro.rangeDegPerS * RAD_PER_DEG),
-      gyroAxes: sensors.map((sensor) => mountingMatrix(sensor.mounting).flat()),
-    });
+    this.health = healthOf(rig, startedAt, this.flags);
+    this.fusion = fusionOf(rig);
     this.#fallback = new HeadingFallback(this.flags);
-    this.rhythm = new Rhythm(sensors.map((sensor) => sensor.station));
-    this.midline = new Midline({
-      lengthM: body.lengthMm / 1000,
-      stations: sensors.map((sensor) => sensor.station),
-      pointCount: POINT_COUNT,
-      interpolation: rig.midline.interpolation,
-    });
-    this.headMotion =
-      rig.midline.nose === "fixed"
-        ? null
-        : new HeadMotion({
-            stations: sensors.map((sensor) => sensor.station),
-            lengthM: body.lengthMm / 1000,
-            pointCount: POINT_COUNT,
-            delayS: meanDelayS(sensors, models),
-            levelTauS: DEFAULT_PARAMETERS.accelTauS,
-          });
+    this.rhythm = new Rhythm(stationsOf(rig));
+    this.midline = midlineOf(rig);
     this.travel = new TravelAxis(rateHz);
-    this.gait = new GaitMeter({
-      rateHz,
-      lengthM: body.lengthMm / 1000,
-      pointCount: POINT_COUNT,
-      stations: sensors.map((sensor) => sensor.station),
-      flowMPerS: rig.water.flowMPerS ?? Number.NaN,
-      viscosityM2PerS: viscosityOf(rig),
-      spreadCycles: rig.gait.spreadCycles,
-      steady: {
-        frequencyShare: rig.gait.steadyFrequencyShare,
-        amplitudeShare: rig.gait.steadyAmplitudeShare,
-        cycles: rig.gait.steadyCycles,
-      },
+    this.headMotion = headMotionOf(rig);
+    this.gait = gaitOf(rig, {
       onCycle: (cycle) => observer.beat?.(cycle),
       onBout: (bout) => observer.bout?.(bout),
     });
     this.tailbeat = this.gait.tailbeat;
-    this.drive = rig.reference
-      ? new DriveComparison({
-          reference: rig.reference,
-          stations: sensors.map((sensor) => sensor.station),
-          rateHz,
-          onReference: (timeS, yaw, sway) => observer.reference?.(timeS, yaw, sway),
-        })
-      : null;
+    this.drive = driveOf(rig, (timeS, yaw, sway) => observer.reference?.(timeS, yaw, sway));
     this.camera = camera ? new CameraComparison(camera, rateHz) : null;
-    this.ring = ring
-      ? new TrialRing({ sensorCount, pointCount: POINT_COUNT, rateHz, seconds: RING_SECONDS })
-      : null;
+    this.ring = ring ? ringOf(rig) : null;
   }
 
   /** A chunk of bytes as it arrived, of any size. */
@@ -330,25 +273,4 @@ export class Pipeline {
     this.health.corruption(bad - this.#badPackets, timeS);
     this.#badPackets = bad;
   }
-}
-
-/** Of the rig's water, m²/s; NaN where its temperature is not given. */
-function viscosityOf({ water }: Rig): number {
-  if (water.temperatureC === undefined) return Number.NaN;
-  const salinity = water.kind === "sea" ? water.salinityGPerKg : 0;
-  return kinematicViscosityOf(water.temperatureC, salinity);
-}
-
-/** How long before its sweep's tick a reading's moment is, s, on average over the sensors. */
-function meanDelayS(sensors: readonly SensorPlace[], models: Rig["models"]): number {
-  const delays = sensors.map(({ samplingOffsetUs }, i) => models[i].delayMs / 1000 - samplingOffsetUs / 1e6);
-  return delays.reduce((sum, delay) => sum + delay, 0) / delays.length;
-}
-
-/**
- * How much later than its sweep's tick the turn ends that a reading stands for, s. A reading tells the rate at a moment,
- * the turn made of it reaches half an interval to either side: without this the orientation would lead by that half.
- */
-function turnEndS({ samplingOffsetUs, rateHz }: SensorPlace, delayMs: number, hubRateHz: number): number {
-  return samplingOffsetUs / 1e6 - delayMs / 1000 + 0.5 / (rateHz ?? hubRateHz);
 }

@@ -4,13 +4,13 @@ import { type Command, Option } from "commander";
 import { Midline } from "../body/midline.ts";
 import { BendwatchError } from "../errors.ts";
 import { RAD_PER_DEG } from "../numeric/units.ts";
-import { POINT_COUNT } from "../pipeline.ts";
 import { describePlan, type PlanSubject } from "../placement/describe.ts";
 import type { Rebuilding } from "../placement/expected-error.ts";
 import { drawPlan } from "../placement/picture.ts";
 import { leastCount, type Placement, type PlacementPlan, planPlacement } from "../placement/plan.ts";
 import { loadRig } from "../rig/load.ts";
 import type { RigFile } from "../rig/rig.ts";
+import { POINT_COUNT } from "../stages.ts";
 import { countOf, gaitOf, type LayoutOptions, rangeOf, subjectOf } from "./layout-options.ts";
 import { numbers, positiveNumber, wholeNumber } from "./options.ts";
 

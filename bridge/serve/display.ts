@@ -2,7 +2,8 @@
  * What the dashboard shows, taken from the pipeline at display rate: the binary frame, and the strip of the last ten
  * minutes at one column a second.
  */
-import { type Pipeline, POINT_COUNT } from "../pipeline.ts";
+import type { Pipeline } from "../pipeline.ts";
+import { POINT_COUNT } from "../stages.ts";
 import { createDisplayFrame, type DisplayFrame, encodeFrame, frameBytes } from "../wire/frame.ts";
 import type { StripMessage } from "../wire/messages.ts";
 

@@ -6,8 +6,9 @@
 import { BehaviorSubject, interval, merge, Observable, Subject, type Subscription, throttleTime } from "rxjs";
 import type { CameraTrack } from "../drive/camera-track.ts";
 import type { ByteSink, ByteSource, LinkState } from "../link/source.ts";
-import { Pipeline, type PipelineObserver, POINT_COUNT } from "../pipeline.ts";
+import { Pipeline, type PipelineObserver } from "../pipeline.ts";
 import type { Rig } from "../rig/load.ts";
+import { POINT_COUNT } from "../stages.ts";
 import type { Sweep } from "../sweep.ts";
 import type { TrialRecorder } from "../trial/recorder.ts";
 import { softwareVersion } from "../version.ts";
