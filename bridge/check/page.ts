@@ -90,7 +90,7 @@ function sensorsPart(report: CheckReport): Markup {
 <table><thead><tr><th>Sensor</th><th>Serial number</th><th class="number">Place</th><th>Model</th><th>In this check</th></tr></thead><tbody>${rows}</tbody></table></section>`;
 }
 
-function stepPart(report: CheckReport, step: ReportStep, number: number): Markup {
+function stepPart(report: CheckReport, step: ReportStep, place: number): Markup {
   const { state, toDo, cautions, faults, missing, notes, attempts, begunS, endedS } = step;
   const open = state === "failed" ? faults : state === "not done" || state === "under way" ? missing : [];
   const span =
@@ -98,9 +98,9 @@ function stepPart(report: CheckReport, step: ReportStep, number: number): Markup
       ? ""
       : `${begunS.toFixed(0)} to ${endedS === null ? "the end" : `${endedS.toFixed(0)} s`}`;
   const times = attempts > 1 ? `, time ${attempts}` : "";
-  return html`<section><div class="step-head"><h2>${number} ${STEP_TITLES[step.step]}</h2><span class="state ${state.replace(" ", "-")}">${glyph(STATE_GLYPHS[state])} ${state}</span></div>
+  return html`<section><div class="intro"><div class="step-head"><h2>${place} ${STEP_TITLES[step.step]}</h2><span class="state ${state.replace(" ", "-")}">${glyph(STATE_GLYPHS[state])} ${state}</span></div>
 <p>${toDo} <span class="soft">${span}${times}</span></p>
-${cautions.map((caution) => html`<p class="caution small">${caution}</p>`)}
+${cautions.map((caution) => html`<p class="caution small">${caution}</p>`)}</div>
 ${open.length === 0 ? null : html`<ul class="reasons">${open.map(({ sensor, text }) => html`<li><b>${sensor ?? "whole rig"}</b><span>${text}</span></li>`)}</ul>`}
 ${notes.map((note) => html`<p class="small soft">${note}</p>`)}
 ${rigFigures(step)}
@@ -206,14 +206,23 @@ function takenOut({ sensors }: CheckReport): string[] {
   return sensors.filter(({ takenOut }) => takenOut).map(({ name }) => name);
 }
 
-function shownValue({ value, unit }: Pick<CheckFigure, "value" | "unit">): string {
-  return value === null ? "not known" : `${value}${unit === "" ? "" : ` ${unit}`}`;
+function shownValue({ value, digits, unit }: Pick<CheckFigure, "value" | "digits" | "unit">): string {
+  return value === null ? "not known" : `${number(value, digits)}${unit === "" ? "" : ` ${unit}`}`;
 }
 
-function limitsOf({ least, most }: Pick<CheckFigure, "least" | "most">): string {
-  if (least !== null && most !== null) return least === -most ? `within ±${most}` : `${least} to ${most}`;
-  if (least !== null) return `at least ${least}`;
-  return most === null ? "" : `at most ${most}`;
+function limitsOf({ least, most, digits }: Pick<CheckFigure, "least" | "most" | "digits">): string {
+  if (least !== null && most !== null) {
+    return least === -most
+      ? `within ±${number(most, digits)}`
+      : `${number(least, digits)} to ${number(most, digits)}`;
+  }
+  if (least !== null) return `at least ${number(least, digits)}`;
+  return most === null ? "" : `at most ${number(most, digits)}`;
+}
+
+/** With a minus sign of a digit's width. */
+function number(value: number, digits: number): string {
+  return value.toFixed(digits).replace("-", "−");
 }
 
 /** UTC, to the second. */

@@ -318,9 +318,12 @@ function plain({ advice: _, ...figure }: JudgedFigure): CheckFigure {
   return figure;
 }
 
-/** "rate at rest 2.500 °/s, at most 2.165: calibrate it again at rest". */
-function describe({ name, unit, value, least, most, advice }: JudgedFigure): string {
+/** "rate at rest 2.500 °/s, allowed at most 2.165 °/s: calibrate it again at rest". */
+function describe({ name, unit, value, digits, least, most, advice }: JudgedFigure): string {
   const spaced = unit === "" ? "" : ` ${unit}`;
-  const limits = [least === null ? "" : `at least ${least}`, most === null ? "" : `at most ${most}`];
-  return `${name} ${value}${spaced}, allowed ${limits.filter(Boolean).join(" and ")}${spaced}: ${advice}`;
+  const limits = [
+    least === null ? "" : `at least ${least.toFixed(digits)}`,
+    most === null ? "" : `at most ${most.toFixed(digits)}`,
+  ].filter(Boolean);
+  return `${name} ${value?.toFixed(digits)}${spaced}, allowed ${limits.join(" and ")}${spaced}: ${advice}`;
 }

@@ -17,6 +17,15 @@ export interface LinkReadings {
   readonly driftPpm: number | null;
 }
 
+/** What the rest detector tells (health/rest-meter.ts): SI, one a sensor, but three of the bias. NaN where there is none. */
+export interface RestReadings {
+  /** Sensors whose window has ended with this sweep. */
+  readonly windowEnded: Uint8Array;
+  readonly window: Readonly<
+    Record<"stillS" | "gyroBias" | "gravity" | "fieldUT" | "gyroNoise" | "accelNoise", Float64Array>
+  >;
+}
+
 export interface CheckSetup {
   readonly sensors: readonly SensorPlace[];
   /** One a sensor. */
@@ -32,6 +41,7 @@ export interface CheckSetup {
   readonly hasStatus: boolean;
   /** As they are now. */
   readonly readings: () => LinkReadings;
+  readonly rest: () => RestReadings;
 }
 
 /** What a step found. */
@@ -84,6 +94,7 @@ export function figure(value: number, options: FigureOptions): JudgedFigure {
     sensor,
     unit,
     value: known ? rounded(value, digits) : null,
+    digits,
     least: least === undefined ? null : rounded(least, digits),
     most: most === undefined ? null : rounded(most, digits),
     ok: !known || ((least === undefined || value >= least) && (most === undefined || value <= most)),
@@ -96,7 +107,7 @@ export function inUse(isOut: readonly boolean[]): number[] {
   return isOut.flatMap((out, i) => (out ? [] : [i]));
 }
 
-/** Where least is all there is. */
+/** Infinity where there are none. */
 export function lowest(values: readonly number[]): number {
   return values.reduce((a, b) => Math.min(a, b), Number.POSITIVE_INFINITY);
 }

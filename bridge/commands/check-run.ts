@@ -46,6 +46,7 @@ export class CheckRun {
       gravity: site ? normalGravity(site.latitudeDeg, site.heightM) : STANDARD_GRAVITY,
       fieldUT: site ? siteField(site, site.date ? new Date(site.date) : startedAt).normUT : null,
       hasStatus: hub.layout === "native" || fields.includes("supply") || fields.includes("temperature"),
+      rest: () => this.pipeline.health.rest,
       readings: () => ({
         counters: this.pipeline.counters,
         clock: this.pipeline.clock.counters,

@@ -13,10 +13,13 @@ const VERDICTS: Readonly<Record<CheckVerdict, string>> = {
 
 export class TerminalScreen implements GuideScreen {
   readonly #rig: Rig;
+  /** Whether someone is asked what to do after a step that did not pass. */
+  readonly #asks: boolean;
   readonly #rewrites = process.stdout.isTTY === true;
 
-  constructor(rig: Rig) {
+  constructor(rig: Rig, asks: boolean) {
     this.#rig = rig;
+    this.#asks = asks;
   }
 
   begun({ step, toDo, attempts }: CheckStepView): void {
@@ -38,8 +41,7 @@ export class TerminalScreen implements GuideScreen {
     const why = state === "failed" ? faults : state === "not done" ? missing : [];
     for (const { sensor, text } of why) console.log(`  - ${this.#said(sensor, text)}`);
     if (state === "not needed") for (const note of notes) console.log(`  ${note}`);
-    if (this.#rewrites && why.length > 0)
-      console.log("  r repeats this step, Enter goes on, q ends the check");
+    if (this.#asks && why.length > 0) console.log("  r repeats this step, Enter goes on, q ends the check");
   }
 
   done(): void {

@@ -109,21 +109,23 @@ async function checkNow(options: CheckOptions): Promise<string> {
     settings: { releaseCheck: true },
   });
   const run = new CheckRun(rig, startedAt, (flag) => recorder.flag(flag));
-  const asks = process.stdin.isTTY === true && process.stdout.isTTY === true;
+  const hasKeys = process.stdin.isTTY === true && process.stdout.isTTY === true;
+  // A rehearsed body waits for nobody.
+  const asks = hasKeys && !options.rehearse;
   const guide = new CheckGuide(
     {
       run,
       source,
       recorder,
       deadline: options.rehearse ? rehearsedDeadline(startedAt.getTime()) : operatorDeadline,
-      screen: new TerminalScreen(rig),
-      asks: asks && !options.rehearse,
+      screen: new TerminalScreen(rig, asks),
+      asks,
     },
     startedAt.getTime(),
   );
   const stop = () => guide.stop();
   for (const signal of ["SIGINT", "SIGTERM", "SIGHUP"] as const) process.once(signal, stop);
-  const letGo = asks ? listenToKeys(guide, () => run.check.underWay) : () => {};
+  const letGo = hasKeys ? listenToKeys(guide, () => run.check.underWay) : () => {};
   try {
     console.log(`Release check of ${rig.name}, ${source.label}. Recorded as ${recorder.name}.`);
     guide.prepare(options.operator, options.without);

@@ -16,7 +16,7 @@ export const checkLimitsSchema = z.strictObject({
     "At most this share of packets may be corrupt: as for readings lost, as each commonly costs one.",
   ),
   stillS: seconds.describe(
-    "Each sensor lies still for so long: its noise is then known to a tenth and its bias to 0.01 °/s.",
+    "Each sensor lies still for so long: three of the rest detector's windows tell noise to a twentieth.",
   ),
   coverageShare: share.describe(
     "Of all directions, the field is to be seen from at least this share: beyond half a sphere, irons on every axis show. Where a body cannot be turned so far, say so in the rig file.",

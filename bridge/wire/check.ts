@@ -25,8 +25,9 @@ export interface CheckFigure {
   /** Index of the sensor, or -1 for the whole rig. */
   readonly sensor: number;
   readonly unit: string;
-  /** Rounded as it is shown; null while not known. */
+  /** Rounded to `digits` decimals; null while not known. */
   readonly value: number | null;
+  readonly digits: number;
   /** Limits, either of which may be missing. */
   readonly least: number | null;
   readonly most: number | null;

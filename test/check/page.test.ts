@@ -3,7 +3,7 @@ import { checkPage } from "../../bridge/check/page.ts";
 import { type CheckReport, reportOf } from "../../bridge/check/report.ts";
 import { loadRig } from "../../bridge/rig/load.ts";
 import { writeRig } from "../support/folders.ts";
-import { rehearsedCheck } from "./rehearsed.ts";
+import { type Rehearsed, rehearsedCheck } from "./rehearsed.ts";
 
 const HOSTILE = `<img src=x onerror="a()">`;
 const RECORDING = {
@@ -16,6 +16,7 @@ const RECORDING = {
   bytes: 7,
   problem: null,
 };
+let checked: Rehearsed;
 let hostile: CheckReport;
 
 beforeAll(async () => {
@@ -25,8 +26,8 @@ beforeAll(async () => {
     rig.sensors[1]!.serial = "'\"><style>*{}";
   });
   const rig = loadRig(path);
-  const { run } = await rehearsedCheck({ rig, faults: ["stuck:S4.az@0+200"] });
-  hostile = { ...reportOf(run.check, rig, RECORDING, "0"), operator: "</dd><script>d()</script>" };
+  checked = await rehearsedCheck({ rig, faults: ["stuck:S4.az@0+200"] });
+  hostile = { ...reportOf(checked.run.check, rig, RECORDING, "0"), operator: "</dd><script>d()</script>" };
 });
 
 test("whatever names, notes and serial numbers hold stays text", () => {
@@ -60,13 +61,14 @@ test("it says verdict, reasons, operator, hash, and has a picture a step that ha
   }
 });
 
-test("what a verdict on an animal's tag is not about stands with the verdict, and with the steps that move it", () => {
-  const animal = {
-    ...hostile,
-    rig: { ...hostile.rig, body: { ...hostile.rig.body, kind: "animal" as const } },
-  };
-  expect(hostile.cautions.join()).not.toContain("veterinarian");
-  expect(checkPage({ ...animal, cautions: ["never about an animal's condition"] })).toContain(
-    "never about an animal&#39;s condition",
-  );
+test("what a verdict on an animal's tag is not about stands with the verdict, and with each step that moves it", () => {
+  const { run } = checked;
+  const animal = { ...run.pipeline.rig, body: { kind: "animal" as const, lengthMm: 880 } };
+  const page = checkPage(reportOf(run.check, animal, RECORDING, "0"));
+  expect(page).toMatch(/class="verdict [\s\S]*never about an animal&#39;s condition[\s\S]*<h2>Sensors/);
+  expect(page.match(/Handle an animal only as the approved protocol allows/g)).toHaveLength(3);
+  const foil = checkPage(hostile);
+  expect(foil).not.toContain("animal");
+  expect(foil.match(/guards and emergency stop/g)).toHaveLength(3);
+  expect(foil).toContain("residual-current protection");
 });

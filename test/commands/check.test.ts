@@ -1,9 +1,14 @@
 /** bendwatch check, as a user runs it: on a rehearsed body, and judged anew from what was recorded. */
+import { spawn } from "node:child_process";
 import { cpSync, readFileSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
-import { expect, test } from "vitest";
+import { expect, onTestFinished, test } from "vitest";
+import { packageRoot } from "../../bridge/paths.ts";
+import { RehearsalSource } from "../../bridge/rehearsal/rehearsal-source.ts";
+import { loadRig } from "../../bridge/rig/load.ts";
 import { bendwatch } from "../support/bridge-process.ts";
 import { fingerprints, temporaryFolder } from "../support/folders.ts";
+import { openPty } from "../support/pty.ts";
 
 async function rehearsed(...args: string[]) {
   const trial = join(temporaryFolder(), "trial");
@@ -56,6 +61,37 @@ test("a trial in which nothing was checked is incomplete, exit code 3", async ()
   const { code, out } = await bendwatch("check", "recordings/healthy-demo", "--to", to);
   expect(code).toBe(3);
   expect(out).toMatch(/INCOMPLETE[\s\S]*not begun/);
+});
+
+test("live, from a serial port: interrupted, it is incomplete, exit code 3, and all that came is kept", async () => {
+  const pty = await openPty();
+  onTestFinished(() => pty.close());
+  const source = new RehearsalSource({ rig: loadRig("ribbon-foil"), swimmer: { restS: 1e6 } });
+  onTestFinished(() => source.stop());
+  let writing: Promise<void> = Promise.resolve();
+  const trial = join(temporaryFolder(), "trial");
+  const program = join(packageRoot, "dist", "bendwatch.js");
+  const args = [program, "check", "--rig", "ribbon-foil", "--port", pty.path, "--record", trial];
+  const child = spawn(process.execPath, args, { stdio: ["ignore", "pipe", "inherit"] });
+  const ended = new Promise<number | null>((resolve) => child.on("close", resolve));
+  let out = "";
+  child.stdout.on("data", (data: Buffer) => {
+    const before = out;
+    out += data.toString();
+    // The second step is begun: the first has passed.
+    if (out.includes("2 of 7") && !before.includes("2 of 7")) child.kill("SIGINT");
+  });
+  void source.run({
+    bytes(chunk) {
+      const sent = chunk.slice();
+      writing = writing.then(() => pty.write(sent)).catch(() => {});
+    },
+    linkState() {},
+    mark() {},
+  });
+  expect(await ended).toBe(3);
+  expect(out).toMatch(/1 of 7 {2}link[\s\S]*passed[\s\S]*INCOMPLETE[\s\S]*rest, S1: still for/);
+  expect(await bendwatch("verify", trial)).toMatchObject({ code: 0 });
 });
 
 test.each([
