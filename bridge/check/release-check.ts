@@ -39,6 +39,9 @@ const STEP_OF_FLAG: Partial<Record<FlagKind, CheckStepName>> = {
   "corrupt packets": "link",
   "link silent": "link",
   "sensor read errors": "link",
+  "duplicate sweeps": "clock",
+  "late sweeps": "clock",
+  "clock drift": "clock",
   "noise at rest": "rest",
   "gyro bias": "rest",
   "gravity at rest": "rest",
@@ -50,7 +53,7 @@ const STEP_OF_FLAG: Partial<Record<FlagKind, CheckStepName>> = {
 };
 
 /** Trouble of the computer's disk is no sensor's: the recording's own state tells of it. */
-const NO_STEP: readonly FlagKind[] = ["recording trouble"];
+const NO_STEP: readonly FlagKind[] = ["recording trouble", "disk nearly full"];
 
 /** One time that a step was begun. */
 interface Run {

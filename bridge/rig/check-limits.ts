@@ -39,13 +39,6 @@ export const checkLimitsSchema = z.strictObject({
     .describe(
       "Moved hard: some sensor turns faster than this. A tail that beats twice a second reaches it; give the rig's own where its body is faster or slower.",
     ),
-  clockDriftPpm: z
-    .number()
-    .min(1)
-    .max(100_000)
-    .describe(
-      "The hub's clock runs off the computer's by no more: two crystals of 100 ppm each at their worst (common practice, no source).",
-    ),
   clockS: z
     .number()
     .min(60)
