@@ -232,7 +232,7 @@ export class Pipeline {
       this.fusion.orientations,
       this.fusion.trust,
       this.rhythm,
-      this.travel.heading,
+      this.travel.direction,
       this.midline.positions,
     );
     this.gait.step(sweep.timeS, this.midline.positions, this.travel.direction, this.fusion.trust);

@@ -45,8 +45,8 @@ export type HeldNose = "no beat" | "readings missing" | "sensors disagree" | nul
 
 /** Memory of the fit, beats. */
 const FIT_BEATS = 2;
-/** Readings taken, and noses found, a beat: the third harmonic is well sampled, and the work does not grow with the rate. */
-const FITS_A_BEAT = 32;
+/** Readings taken, and noses found, a beat: eight of the third harmonic, and the work does not grow with the rate. */
+const FITS_A_BEAT = 24;
 const FITS_A_SOLUTION = 4;
 /** A reading counts for no more of a beat than this, however long the gap before it. */
 const LONGEST_STEP_BEATS = 0.1;
@@ -101,7 +101,7 @@ export class HeadMotion {
    * Takes one sweep, and shifts the midline by the nose's displacement.
    * @param orientations body axes to earth, 4 a sensor
    * @param trust as in sweep.ts
-   * @param heading of the travel axis, rad from east, anticlockwise
+   * @param axis east and north share of the travel axis's unit vector
    * @param positions 3 per point, m, earth axes, nose first and at the origin; changed in place
    */
   step(
@@ -109,13 +109,13 @@ export class HeadMotion {
     orientations: Float64Array,
     trust: Uint8Array,
     beat: BeatNow,
-    heading: number,
+    axis: Float64Array,
     positions: Float64Array,
   ): void {
     if (beat.frequencyHz !== null) this.#omega = TURN * beat.frequencyHz;
     if (this.#omega === 0) return;
-    const cosine = Math.cos(heading);
-    const sine = Math.sin(heading);
+    const cosine = axis[0]!;
+    const sine = axis[1]!;
     const beats = Math.min((sweep.stepS * this.#omega) / TURN, LONGEST_STEP_BEATS);
     this.#sinceFit += beats;
     // Half a sweep early is nearer than half a sweep late.
@@ -201,16 +201,24 @@ export class HeadMotion {
     const follow = Math.min(1, beats / SMOOTH_BEATS);
     this.#shown += Math.min(1, beats / BLEND_BEATS) * ((this.held === null ? 1 : 0) - this.#shown);
     if (this.held !== null && this.#shown < STILL) this.#shown = 0;
-    displacement.fill(0);
-    for (let k = 0; k < HARMONICS; k++) {
-      const cosine = this.#shown * Math.cos((k + 1) * phase);
-      const sine = this.#shown * Math.sin((k + 1) * phase);
-      for (let axis = 0; axis < 3; axis++) {
-        const at = 2 * (axis * HARMONICS + k);
-        shown[at]! += follow * (harmonics[at]! - shown[at]!);
-        shown[at + 1]! += follow * (harmonics[at + 1]! - shown[at + 1]!);
-        displacement[axis]! += shown[at]! * cosine + shown[at + 1]! * sine;
+    const cosine = Math.cos(phase);
+    const sine = Math.sin(phase);
+    for (let axis = 0, at = 0; axis < 3; axis++) {
+      // Each harmonic's is the one before it turned on by the phase.
+      let c = this.#shown * cosine;
+      let s = this.#shown * sine;
+      let sum = 0;
+      for (let k = 0; k < HARMONICS; k++, at += 2) {
+        const ofCosine = shown[at]! + follow * (harmonics[at]! - shown[at]!);
+        const ofSine = shown[at + 1]! + follow * (harmonics[at + 1]! - shown[at + 1]!);
+        shown[at] = ofCosine;
+        shown[at + 1] = ofSine;
+        sum += ofCosine * c + ofSine * s;
+        const turned = c * cosine - s * sine;
+        s = s * cosine + c * sine;
+        c = turned;
       }
+      displacement[axis] = sum;
     }
   }
 

@@ -39,11 +39,14 @@ export class Midline {
   readonly #left: Uint16Array;
   #leftCount = 0;
   #stepped = false;
+  /** The body's x axis at the segment's middles, 3 each. */
+  readonly #axes: Float64Array;
   readonly #orientation = new Float64Array(4);
 
   constructor({ lengthM, stations, pointCount, interpolation = "slerp" }: MidlineOptions) {
     this.positions = new Float64Array(pointCount * 3);
     this.#segmentM = lengthM / (pointCount - 1);
+    this.#axes = new Float64Array(3 * (pointCount - 1));
     this.#placeCount = 2 * pointCount - 1;
     this.#between = new { slerp: Slerp, smooth: Smooth, wave: Wave }[interpolation](
       stations,
@@ -80,15 +83,21 @@ export class Midline {
     this.#stepped = true;
     this.#between.take(orientations);
     this.#wave?.beat(orientations, this.#lost, stepS, beating);
+    this.#between.axes(this.#axes);
     const { positions } = this;
-    const q = this.#orientation;
+    const axes = this.#axes;
+    const segmentM = this.#segmentM;
+    let x = 0;
+    let y = 0;
+    let z = 0;
     positions.fill(0, 0, 3); // whoever took the last shape may have moved it
-    for (let place = 1, at = 0; place < this.#placeCount; place += 2, at += 3) {
-      this.#between.at(place, q);
-      // The body's x axis in earth axes: the first column of the rotation's matrix.
-      positions[at + 3] = positions[at] - this.#segmentM * (1 - 2 * (q[2] * q[2] + q[3] * q[3]));
-      positions[at + 4] = positions[at + 1] - this.#segmentM * 2 * (q[1] * q[2] + q[0] * q[3]);
-      positions[at + 5] = positions[at + 2] - this.#segmentM * 2 * (q[1] * q[3] - q[0] * q[2]);
+    for (let at = 0; at < axes.length; at += 3) {
+      x -= segmentM * axes[at];
+      y -= segmentM * axes[at + 1];
+      z -= segmentM * axes[at + 2];
+      positions[at + 3] = x;
+      positions[at + 4] = y;
+      positions[at + 5] = z;
     }
   }
 

@@ -2,8 +2,10 @@
  * Orientation between two sensors on the sphere, at an even rate (slerp, Shoemake 1985, SIGGRAPH '85), the shorter way
  * round; before the first and beyond the last sensor it is theirs.
  */
-import { arcBetween, normalise, overSine, signOfDot, slerpKnown } from "../numeric/quaternion.ts";
+import { arcBetween, normalise, overSine, rotate, signOfDot, slerpKnown } from "../numeric/quaternion.ts";
 import { type Between, stationOf } from "./between.ts";
+
+const AHEAD = Float64Array.of(1, 0, 0);
 
 export class Slerp implements Between {
   readonly #stations: readonly number[];
@@ -21,6 +23,7 @@ export class Slerp implements Between {
   readonly #left: Uint16Array;
   #count = 0;
   #orientations: Float64Array = new Float64Array(0);
+  readonly #between = new Float64Array(4);
 
   constructor(stations: readonly number[], placeCount: number) {
     this.#stations = stations;
@@ -60,6 +63,14 @@ export class Slerp implements Between {
       this.#arc[before] = arc;
       this.#overSine[before] = overSine(arc);
       this.#sign[before] = signOfDot(orientations, orientations, 4 * before, 4 * behind);
+    }
+  }
+
+  axes(out: Float64Array): void {
+    const q = this.#between;
+    for (let place = 1, to = 0; place < this.#share.length; place += 2, to += 3) {
+      this.at(place, q);
+      rotate(out, q, AHEAD, to);
     }
   }
 

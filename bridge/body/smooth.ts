@@ -9,12 +9,15 @@
  * about one axis make it the plain cubic spline of the angle. Any bend and twist of less than half a turn between
  * neighbours will do, and of any number of turns along the body.
  */
-import { conjugate, multiply, toRotationVector, turnBy } from "../numeric/quaternion.ts";
+import { turnBetween, turnBy } from "../numeric/quaternion.ts";
 import type { Between } from "./between.ts";
 import { NATURAL, Spline } from "./spline.ts";
 
-/** Below this squared angle (rad²) the Jacobian's last factor is taken from its series to the fourth power: rounding. */
-const SERIES_BELOW = 1e-3;
+/** Below this squared angle (rad²) the Jacobian's last factor is taken from its series: the first term left out is rounding. */
+const SERIES_BELOW = 0.1;
+
+/** Likewise for the sine of a squared angle. */
+const SINE_SERIES_BELOW = 0.05;
 
 export class Smooth implements Between {
   readonly #spline: Spline;
@@ -29,7 +32,11 @@ export class Smooth implements Between {
   /** The next sensor's slope in this one's tangent space. */
   readonly #nextSlope: Float64Array;
 
-  readonly #inverse = new Float64Array(4);
+  /**
+   * What a wave adds: a turn about y and z at every odd place, rad, 2 each; zero without one. Whoever knows a wave writes
+   * them.
+   */
+  readonly deflections: Float64Array;
   readonly #vector = new Float64Array(3);
 
   constructor(stations: readonly number[], placeCount: number) {
@@ -38,6 +45,7 @@ export class Smooth implements Between {
     this.#turn = new Float64Array(3 * stations.length);
     this.#slope = new Float64Array(3 * stations.length);
     this.#nextSlope = new Float64Array(3 * stations.length);
+    this.deflections = new Float64Array(placeCount - 1);
   }
 
   place(left: Uint16Array, count: number): void {
@@ -50,26 +58,79 @@ export class Smooth implements Between {
     const left = this.#left;
     const turn = this.#turn;
     const gaps = this.#spline.count - 1;
-    const between = this.#inverse;
-    for (let k = 0; k < gaps; k++) {
-      conjugate(between, orientations, 0, 4 * left[k]);
-      multiply(between, between, orientations, 0, 0, 4 * left[k + 1]);
-      toRotationVector(turn, between, 3 * k);
-    }
+    for (let k = 0; k < gaps; k++)
+      turnBetween(turn, orientations, orientations, 3 * k, 4 * left[k], 4 * left[k + 1]);
     this.#spline.slopes(turn, 3, this.#slope);
     for (let k = 0; k < gaps; k++) intoTangentSpace(this.#nextSlope, turn, this.#slope, 3 * k, 3 * k + 3);
   }
 
-  at(place: number, out: Float64Array): void {
+  axes(out: Float64Array): void {
     const { base, ofStep, ofSlope, ofNextSlope } = this.#spline;
-    const k = base[place];
-    const step = ofStep[place];
-    const slope = ofSlope[place];
-    const nextSlope = ofNextSlope[place];
+    const { deflections } = this;
+    const left = this.#left;
+    const turns = this.#turn;
+    const slopes = this.#slope;
+    const nextSlopes = this.#nextSlope;
+    const q = this.#orientations;
+    for (let place = 1, to = 0; place <= deflections.length; place += 2, to += 3) {
+      const k = base[place];
+      const step = ofStep[place];
+      const slope = ofSlope[place];
+      const nextSlope = ofNextSlope[place];
+      const x = step * turns[3 * k] + slope * slopes[3 * k] + nextSlope * nextSlopes[3 * k];
+      const y = step * turns[3 * k + 1] + slope * slopes[3 * k + 1] + nextSlope * nextSlopes[3 * k + 1];
+      const z = step * turns[3 * k + 2] + slope * slopes[3 * k + 2] + nextSlope * nextSlopes[3 * k + 2];
+      // The x axis turned by the deflection ...
+      const aboutY = deflections[place - 1];
+      const aboutZ = deflections[place];
+      const deflected = aboutY * aboutY + aboutZ * aboutZ;
+      const sineShare = sineShareOf(deflected);
+      const u = cosineOf(deflected, sineShare);
+      const v = sineShare * aboutZ;
+      const w = -sineShare * aboutY;
+      // ... by the turn from the sensor before, v + 2 c (p x v) + 2 p x (p x v) of the half turn's cosine and vector ...
+      const halfSquared = 0.25 * (x * x + y * y + z * z);
+      const halfShare = sineShareOf(halfSquared);
+      const c = cosineOf(halfSquared, halfShare);
+      const half = 0.5 * halfShare;
+      const px = half * x;
+      const py = half * y;
+      const pz = half * z;
+      const tx = 2 * (py * w - pz * v);
+      const ty = 2 * (pz * u - px * w);
+      const tz = 2 * (px * v - py * u);
+      const ahead = u + c * tx + py * tz - pz * ty;
+      const aside = v + c * ty + pz * tx - px * tz;
+      const up = w + c * tz + px * ty - py * tx;
+      // ... and by that sensor's orientation.
+      const at = 4 * left[k];
+      const qw = q[at];
+      const qx = q[at + 1];
+      const qy = q[at + 2];
+      const qz = q[at + 3];
+      const rx = 2 * (qy * up - qz * aside);
+      const ry = 2 * (qz * ahead - qx * up);
+      const rz = 2 * (qx * aside - qy * ahead);
+      out[to] = ahead + qw * rx + qy * rz - qz * ry;
+      out[to + 1] = aside + qw * ry + qz * rx - qx * rz;
+      out[to + 2] = up + qw * rz + qx * ry - qy * rx;
+    }
+  }
+
+  at(place: number, out: Float64Array): void {
+    const spline = this.#spline;
+    const i = 3 * spline.base[place];
+    const step = spline.ofStep[place];
+    const slope = spline.ofSlope[place];
+    const nextSlope = spline.ofNextSlope[place];
     const vector = this.#vector;
-    for (let axis = 0, i = 3 * k; axis < 3; axis++, i++)
-      vector[axis] = step * this.#turn[i] + slope * this.#slope[i] + nextSlope * this.#nextSlope[i];
-    turnBy(out, this.#orientations, vector, 0, 4 * this.#left[k]);
+    const turns = this.#turn;
+    const slopes = this.#slope;
+    const nextSlopes = this.#nextSlope;
+    vector[0] = step * turns[i] + slope * slopes[i] + nextSlope * nextSlopes[i];
+    vector[1] = step * turns[i + 1] + slope * slopes[i + 1] + nextSlope * nextSlopes[i + 1];
+    vector[2] = step * turns[i + 2] + slope * slopes[i + 2] + nextSlope * nextSlopes[i + 2];
+    turnBy(out, this.#orientations, vector, 0, 4 * this.#left[spline.base[place]]);
   }
 }
 
@@ -95,12 +156,28 @@ function intoTangentSpace(
   const cy = tz * sx - tx * sz;
   const cz = tx * sy - ty * sx;
   const squared = tx * tx + ty * ty + tz * tz;
-  const half = 0.5 * Math.sqrt(squared);
-  const f =
-    squared < SERIES_BELOW
-      ? 1 / 12 + squared * (1 / 720 + squared / 30240)
-      : (1 - half / Math.tan(half)) / squared;
+  let f: number;
+  if (squared < SERIES_BELOW) {
+    const last = squared * (1 / 47900160 + squared * (691 / 1307674368000 + squared / 74724249600));
+    f = 1 / 12 + squared * (1 / 720 + squared * (1 / 30240 + squared * (1 / 1209600 + last)));
+  } else {
+    const half = 0.5 * Math.sqrt(squared);
+    f = (1 - half / Math.tan(half)) / squared;
+  }
   out[turnAt] = sx + 0.5 * cx + f * (ty * cz - tz * cy);
   out[turnAt + 1] = sy + 0.5 * cy + f * (tz * cx - tx * cz);
   out[turnAt + 2] = sz + 0.5 * cz + f * (tx * cy - ty * cx);
+}
+
+/** Sine of the root of a number, over the root. */
+function sineShareOf(squared: number): number {
+  if (squared > SINE_SERIES_BELOW) return Math.sin(Math.sqrt(squared)) / Math.sqrt(squared);
+  const last = squared * (1 / 362880 - squared / 39916800);
+  return 1 - squared * (1 / 6 - squared * (1 / 120 - squared * (1 / 5040 - last)));
+}
+
+/** Cosine of that root, its sine's share being known. */
+function cosineOf(squared: number, sineShare: number): number {
+  if (squared > SINE_SERIES_BELOW) return Math.cos(Math.sqrt(squared));
+  return Math.sqrt(1 - squared * sineShare * sineShare);
 }

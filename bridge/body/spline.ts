@@ -38,12 +38,11 @@ export class Spline {
 
   readonly #stations: readonly number[];
   readonly #endWeight: number;
-  /** End weight in use. */
-  #freedom = 0;
-  /** Equations: weights of the slopes before and behind, and what the elimination made of them. */
-  readonly #lower: Float64Array;
-  readonly #upper: Float64Array;
-  readonly #overPivot: Float64Array;
+  /** A sensor's slope, eliminated: weights of the steps before and behind it, and of the slopes before and behind it. */
+  readonly #ofStepBefore: Float64Array;
+  readonly #ofStepBehind: Float64Array;
+  readonly #ofSlopeBefore: Float64Array;
+  readonly #ofSlopeBehind: Float64Array;
 
   constructor({ stations, placeCount, endWeight }: SplineOptions) {
     this.#stations = stations;
@@ -53,9 +52,10 @@ export class Spline {
     this.ofStep = new Float64Array(placeCount);
     this.ofSlope = new Float64Array(placeCount);
     this.ofNextSlope = new Float64Array(placeCount);
-    this.#lower = new Float64Array(stations.length);
-    this.#upper = new Float64Array(stations.length);
-    this.#overPivot = new Float64Array(stations.length);
+    this.#ofStepBefore = new Float64Array(stations.length);
+    this.#ofStepBehind = new Float64Array(stations.length);
+    this.#ofSlopeBefore = new Float64Array(stations.length);
+    this.#ofSlopeBehind = new Float64Array(stations.length);
   }
 
   /** @param left indices of the sensors left, nose to tail; the first `count` of the array, at least one */
@@ -78,40 +78,48 @@ export class Spline {
    * @param out `channels` numbers a sensor
    */
   slopes(steps: Float64Array, channels: number, out: Float64Array): void {
-    const { count, widths } = this;
-    const last = count - 1;
-    if (last === 0) out.fill(0, 0, channels);
-    for (let c = 0; c < channels && last > 0; c++) {
+    const ofStepBefore = this.#ofStepBefore;
+    const ofStepBehind = this.#ofStepBehind;
+    const ofSlopeBefore = this.#ofSlopeBefore;
+    const ofSlopeBehind = this.#ofSlopeBehind;
+    const last = (this.count - 1) * channels;
+    for (let c = 0; c < channels; c++) {
       let before = 0;
-      for (let k = 0; k <= last; k++) {
-        const behind = k < last ? steps[k * channels + c] / widths[k] : 0;
-        const atEnd = k === 0 || k === last;
-        const right = atEnd
-          ? (1 + this.#freedom) * (before + behind)
-          : 3 * (before / widths[k - 1] + behind / widths[k]);
-        const eliminated = k === 0 ? 0 : this.#lower[k] * out[(k - 1) * channels + c];
-        out[k * channels + c] = (right - eliminated) * this.#overPivot[k];
+      let slope = 0;
+      for (let k = 0, at = c; at < last; k++, at += channels) {
+        const behind = steps[at];
+        slope = ofStepBefore[k] * before + ofStepBehind[k] * behind + ofSlopeBefore[k] * slope;
+        out[at] = slope;
         before = behind;
       }
-      for (let k = last - 1; k >= 0; k--)
-        out[k * channels + c] -= this.#upper[k] * this.#overPivot[k] * out[(k + 1) * channels + c];
+      const end = this.count - 1;
+      slope = ofStepBefore[end] * before + ofSlopeBefore[end] * slope;
+      out[last + c] = slope;
+      for (let k = end - 1, at = last + c - channels; k >= 0; k--, at -= channels) {
+        slope = out[at] + ofSlopeBehind[k] * slope;
+        out[at] = slope;
+      }
     }
   }
 
   #eliminate(): void {
     const { count, widths } = this;
     // Between two sensors alone the line is straight, whatever the ends: with a weight of 1 both would say the same.
-    this.#freedom = count === 2 ? 0 : this.#endWeight;
+    const freedom = count === 2 ? 0 : this.#endWeight;
     for (let k = 0; k < count; k++) {
       const first = k === 0;
       const last = k === count - 1;
-      const lower = first ? 0 : last ? this.#freedom : 1 / widths[k - 1];
-      const upper = last ? 0 : first ? this.#freedom : 1 / widths[k];
-      const own = first || last ? 1 : 2 * (lower + upper);
-      const pivot = own - (first ? 0 : lower * this.#upper[k - 1] * this.#overPivot[k - 1]);
-      this.#lower[k] = lower;
-      this.#upper[k] = upper;
-      this.#overPivot[k] = 1 / pivot;
+      const overBefore = first ? 0 : 1 / widths[k - 1];
+      const overBehind = last ? 0 : 1 / widths[k];
+      const atEnd = first || last;
+      const lower = last && !first ? freedom : overBefore;
+      const upper = first && !last ? freedom : overBehind;
+      const own = atEnd ? 1 : 2 * (lower + upper);
+      const pivot = own + (first ? 0 : lower * this.#ofSlopeBehind[k - 1]);
+      this.#ofStepBefore[k] = ((atEnd ? 1 + freedom : 3 * overBefore) * overBefore) / pivot;
+      this.#ofStepBehind[k] = ((atEnd ? 1 + freedom : 3 * overBehind) * overBehind) / pivot;
+      this.#ofSlopeBefore[k] = -lower / pivot;
+      this.#ofSlopeBehind[k] = -upper / pivot;
     }
   }
 

@@ -52,20 +52,19 @@ export class TravelAxis {
    */
   step(stepS: number, positions: Float64Array, periodS: number | null): void {
     const tail = positions.length - 3;
+    const chordX = positions[0] - positions[tail];
+    const chordY = positions[1] - positions[tail + 1];
+    const chordZ = positions[2] - positions[tail + 2];
+    const chord = Math.sqrt(chordX * chordX + chordY * chordY + chordZ * chordZ);
     const entries = this.#timeS.length;
     const newest = this.#count % entries;
     const before = (this.#count + entries - 1) % entries;
     const first = this.#count === 0;
     if (first) this.#firstStepS = stepS;
     this.#timeS[newest] = first ? 0 : this.#timeS[before] + stepS;
-    this.#sumX[newest] = (first ? 0 : this.#sumX[before]) + stepS * (positions[0] - positions[tail]);
-    this.#sumY[newest] = (first ? 0 : this.#sumY[before]) + stepS * (positions[1] - positions[tail + 1]);
+    this.#sumX[newest] = (first ? 0 : this.#sumX[before]) + stepS * chordX;
+    this.#sumY[newest] = (first ? 0 : this.#sumY[before]) + stepS * chordY;
     this.#count++;
-    const chord = Math.hypot(
-      positions[0] - positions[tail],
-      positions[1] - positions[tail + 1],
-      positions[2] - positions[tail + 2],
-    );
     this.#pointAlongMean(newest, windowFor(periodS), chord);
   }
 
@@ -93,7 +92,7 @@ export class TravelAxis {
       sumX -= this.#sumX[at];
       sumY -= this.#sumY[at];
     }
-    const length = Math.hypot(sumX, sumY);
+    const length = Math.sqrt(sumX * sumX + sumY * sumY);
     if (!(length > STEEP_SHARE * chord * spanS)) return;
     this.direction[0] = sumX / length;
     this.direction[1] = sumY / length;

@@ -9,7 +9,7 @@
  * sin x / x, x half of h times that phase, which is undone.
  */
 import { HarmonicFit } from "../numeric/harmonic-fit.ts";
-import { conjugate, multiply, toRotationVector } from "../numeric/quaternion.ts";
+import { turnBetween } from "../numeric/quaternion.ts";
 
 /** Bodies that swim bend in a fundamental and some per cent of a third harmonic; steadily bent ones in a second too. */
 export const HARMONICS = 3;
@@ -35,7 +35,6 @@ export class WaveFit {
   /** Mean phase from reading to reading. */
   #advance = 0;
   readonly #slopes: Float64Array;
-  readonly #quaternion = new Float64Array(4);
   readonly #turn = new Float64Array(3);
 
   constructor(sensorCount: number) {
@@ -71,11 +70,8 @@ export class WaveFit {
   }
 
   #read(phase: number, advance: number, orientations: Float64Array, lost: Uint8Array): void {
-    const between = this.#quaternion;
     for (let i = 0; i < lost.length; i++) {
-      conjugate(between, this.#before, 0, 4 * i);
-      multiply(between, between, orientations, 0, 0, 4 * i);
-      toRotationVector(this.#turn, between);
+      turnBetween(this.#turn, this.#before, orientations, 0, 4 * i, 4 * i);
       // The first turn after a loss leads from where the sensor was last seen.
       const heard = lost[i] === 0 && this.heardBeats[i] > 0;
       this.#slopes[2 * i] = heard ? this.#turn[1] / advance : Number.NaN;

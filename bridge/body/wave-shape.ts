@@ -46,6 +46,8 @@ export class WaveShape {
   readonly #turnedValues: Float64Array;
   readonly #turnedSteps: Float64Array;
   readonly #turnedSlopes: Float64Array;
+  /** Cosine and sine by harmonic. */
+  readonly #turn = new Float64Array(2 * HARMONICS);
   /** By harmonic: how far it is trusted. */
   readonly #trusted = new Float64Array(HARMONICS);
   /** PARTS a place: the wave less the smooth interpolation. */
@@ -95,21 +97,30 @@ export class WaveShape {
 
   /**
    * Writes what the wave adds to the smooth interpolation at a place: rad about the body's lateral and dorso-ventral axis
-   * there, to slots 1 and 2.
-   * @param phasors cosine and sine of the phase times 1, 2, ... HARMONICS
+   * there.
+   * @param phasors cosine and negative sine of the phase times 1, 2, ... HARMONICS
+   * @param out two slots from `outAt` on
    */
-  at(place: number, phasors: Float64Array, out: Float64Array): void {
+  at(place: number, phasors: Float64Array, out: Float64Array, outAt: number): void {
     const table = this.#table;
     let lateral = 0;
     let dorsoVentral = 0;
-    for (let i = 0, at = place * PARTS; i < 2 * HARMONICS; i += 2, at += 2) {
-      const cosine = phasors[i];
-      const sine = phasors[i + 1];
-      lateral += table[at] * cosine - table[at + 1] * sine;
-      dorsoVentral += table[at + 2 * HARMONICS] * cosine - table[at + 2 * HARMONICS + 1] * sine;
+    for (let i = 0, at = place * PARTS; i < 2 * HARMONICS; i++, at++) {
+      lateral += table[at] * phasors[i];
+      dorsoVentral += table[at + 2 * HARMONICS] * phasors[i];
     }
-    out[1] = lateral;
-    out[2] = dorsoVentral;
+    out[outAt] = lateral;
+    out[outAt + 1] = dorsoVentral;
+  }
+
+  /** The same at all odd places, two slots each; written out, since this is every sweep's. */
+  oddPlaces(phasors: Float64Array, out: Float64Array): void {
+    const t = this.#table;
+    const [a, b, c, d, e, f] = [phasors[0], phasors[1], phasors[2], phasors[3], phasors[4], phasors[5]];
+    for (let to = 0, i = PARTS; to + 1 < out.length; to += 2, i += 2 * PARTS) {
+      out[to] = a * t[i] + b * t[i + 1] + c * t[i + 2] + d * t[i + 3] + e * t[i + 4] + f * t[i + 5];
+      out[to + 1] = a * t[i + 6] + b * t[i + 7] + c * t[i + 8] + d * t[i + 9] + e * t[i + 10] + f * t[i + 11];
+    }
   }
 
   #take(amplitudes: Float64Array): void {
@@ -191,11 +202,11 @@ export class WaveShape {
 
   #turnBack(k: number): void {
     const station = this.#stations[this.#left[k]];
+    setPhasors(this.#turn, 1, this.#waveNumber * station);
     for (let part = 0; part < PARTS; part += 2) {
-      const angle = (((part / 2) % HARMONICS) + 1) * this.#waveNumber * station;
       const at = PARTS * k + part;
-      const cosine = Math.cos(angle);
-      const sine = Math.sin(angle);
+      const cosine = this.#turn[part % (2 * HARMONICS)];
+      const sine = this.#turn[(part % (2 * HARMONICS)) + 1];
       this.#turnedValues[at] = this.#values[at] * cosine - this.#values[at + 1] * sine;
       this.#turnedValues[at + 1] = this.#values[at] * sine + this.#values[at + 1] * cosine;
     }
@@ -207,24 +218,47 @@ export class WaveShape {
     const step = ofStep[place];
     const slope = ofSlope[place];
     const nextSlope = ofNextSlope[place];
-    const along = (values: Float64Array, steps: Float64Array, slopes: Float64Array, i: number) =>
-      values[i] + step * steps[i] + slope * slopes[i] + nextSlope * slopes[i + PARTS];
-    const station = stationOf(place, this.#placeCount);
-    for (let part = 0; part < PARTS; part += 2) {
-      const harmonic = ((part / 2) % HARMONICS) + 1;
-      const angle = harmonic * this.#waveNumber * station;
-      const cosine = Math.cos(angle);
-      const sine = Math.sin(angle);
-      const i = k + part;
-      const real = along(this.#turnedValues, this.#turnedSteps, this.#turnedSlopes, i);
-      const imaginary = along(this.#turnedValues, this.#turnedSteps, this.#turnedSlopes, i + 1);
-      const trusted = this.#trusted[harmonic - 1];
-      const at = PARTS * place + part;
-      this.#table[at] =
-        trusted * (real * cosine + imaginary * sine - along(this.#values, this.#steps, this.#slopes, i));
-      this.#table[at + 1] =
-        trusted * (imaginary * cosine - real * sine - along(this.#values, this.#steps, this.#slopes, i + 1));
+    const values = this.#values;
+    const steps = this.#steps;
+    const slopes = this.#slopes;
+    const turnedValues = this.#turnedValues;
+    const turnedSteps = this.#turnedSteps;
+    const turnedSlopes = this.#turnedSlopes;
+    const turn = this.#turn;
+    // The weights of the wave's spline are those of the smooth one: both have the same stations.
+    setPhasors(turn, 1, this.#waveNumber * stationOf(place, this.#placeCount));
+    for (let part = 0, i = k, at = PARTS * place; part < PARTS; part += 2, i += 2, at += 2) {
+      const cosine = turn[part % (2 * HARMONICS)];
+      const sine = turn[(part % (2 * HARMONICS)) + 1];
+      const trusted = this.#trusted[(part >> 1) % HARMONICS];
+      const real =
+        turnedValues[i] +
+        step * turnedSteps[i] +
+        slope * turnedSlopes[i] +
+        nextSlope * turnedSlopes[i + PARTS];
+      const imaginary =
+        turnedValues[i + 1] +
+        step * turnedSteps[i + 1] +
+        slope * turnedSlopes[i + 1] +
+        nextSlope * turnedSlopes[i + 1 + PARTS];
+      const smoothReal = values[i] + step * steps[i] + slope * slopes[i] + nextSlope * slopes[i + PARTS];
+      const smoothImaginary =
+        values[i + 1] + step * steps[i + 1] + slope * slopes[i + 1] + nextSlope * slopes[i + 1 + PARTS];
+      this.#table[at] = trusted * (real * cosine + imaginary * sine - smoothReal);
+      this.#table[at + 1] = trusted * (imaginary * cosine - real * sine - smoothImaginary);
     }
+  }
+}
+
+/** Writes `scale` times cosine and sine of the angle times 1, 2, ... HARMONICS: each is the one before it turned on. */
+export function setPhasors(out: Float64Array, scale: number, angle: number): void {
+  const cosine = Math.cos(angle);
+  const sine = Math.sin(angle);
+  out[0] = scale * cosine;
+  out[1] = scale * sine;
+  for (let i = 2; i < 2 * HARMONICS; i += 2) {
+    out[i] = cosine * out[i - 2] - sine * out[i - 1];
+    out[i + 1] = sine * out[i - 2] + cosine * out[i - 1];
   }
 }
 

@@ -11,7 +11,7 @@ import type { WhySmooth } from "../wire/messages.ts";
 import type { Between } from "./between.ts";
 import { Smooth } from "./smooth.ts";
 import { HARMONICS, WaveFit } from "./wave-fit.ts";
-import { WaveShape } from "./wave-shape.ts";
+import { setPhasors, WaveShape } from "./wave-shape.ts";
 
 /** The body's beat at a sweep. */
 export interface Beating {
@@ -43,7 +43,7 @@ export class Wave implements Between {
   #learned = false;
   /** Newest that was learned from, rad. */
   #phase = 0;
-  /** Cosine and sine of the phase and its multiples, times #weight. */
+  /** Cosine and negative sine of the phase and its multiples, times #weight. */
   readonly #phasors = new Float64Array(2 * HARMONICS);
   readonly #turn = new Float64Array(3);
 
@@ -92,10 +92,17 @@ export class Wave implements Between {
     else this.#why = "learning the wave";
   }
 
+  axes(out: Float64Array): void {
+    const { deflections } = this.#smooth;
+    if (this.#weight === 0) deflections.fill(0);
+    else this.#shape.oddPlaces(this.#phasors, deflections);
+    this.#smooth.axes(out);
+  }
+
   at(place: number, out: Float64Array): void {
     this.#smooth.at(place, out);
     if (this.#weight === 0) return;
-    this.#shape.at(place, this.#phasors, this.#turn);
+    this.#shape.at(place, this.#phasors, this.#turn, 1);
     turnBy(out, out, this.#turn);
   }
 
@@ -118,10 +125,8 @@ export class Wave implements Between {
   }
 
   #setPhasors(): void {
-    for (let harmonic = 1; harmonic <= HARMONICS; harmonic++) {
-      this.#phasors[2 * harmonic - 2] = this.#weight * Math.cos(harmonic * this.#phase);
-      this.#phasors[2 * harmonic - 1] = this.#weight * Math.sin(harmonic * this.#phase);
-    }
+    if (this.#weight === 0) return;
+    setPhasors(this.#phasors, this.#weight, -this.#phase);
   }
 }
 

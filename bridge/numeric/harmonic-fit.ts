@@ -8,8 +8,8 @@
  * recursive least squares with exponential forgetting instead of steepest descent, so that an uneven or short stretch of
  * phase is weighed as what it is.
  *
- * All channels share the regressor, so one gain vector a step serves them all. It is solved for anew, by Cholesky, from
- * the weighted mean of the regressor's outer product, plus a little of the identity. That mean is bounded whatever the
+ * All channels share the regressor, so one gain vector a step serves them all. It is solved for anew, by Cholesky (without
+ * square roots: L D L'), from the weighted mean of the regressor's outer product, plus a little of the identity. That mean is bounded whatever the
  * phase does, so nothing blows up while it stands still, and no error piles up over hours: a step depends on what is not
  * yet forgotten. The identity's share holds coefficients still of which the data say nothing; it does not pull them.
  */
@@ -37,9 +37,11 @@ export class HarmonicFit {
 
   readonly #channels: number;
   readonly #regressor: Float64Array;
-  /** Lower triangle by rows: weighted mean of the regressor's outer product, times `filled`; and its Cholesky factor. */
+  /** Lower triangle by rows: weighted mean of the regressor's outer product, times `filled`; and of that, L D. */
   readonly #product: Float64Array;
   readonly #factor: Float64Array;
+  /** One over D. */
+  readonly #overPivot: Float64Array;
   readonly #gain: Float64Array;
 
   constructor({ channels, harmonics }: HarmonicFitOptions) {
@@ -53,6 +55,7 @@ export class HarmonicFit {
     this.#gain = new Float64Array(size);
     this.#product = new Float64Array((size * (size + 1)) / 2);
     this.#factor = new Float64Array((size * (size + 1)) / 2);
+    this.#overPivot = new Float64Array(size);
   }
 
   /** Nothing has been seen. */
@@ -139,27 +142,32 @@ export class HarmonicFit {
     const product = this.#product;
     const factor = this.#factor;
     const gain = this.#gain;
+    const overPivot = this.#overPivot;
     this.filled += share * (1 - this.filled);
     const hold = HOLD * this.filled;
     for (let row = 0, at = 0; row < size; row++) {
       const rowAt = at;
-      let sum = share * x[row]!;
-      for (let column = 0, columnAt = 0; column <= row; column++, at++) {
-        let entry = product[at]! + share * (x[row]! * x[column]! - product[at]!);
+      const own = share * x[row]!;
+      let sum = own;
+      for (let column = 0, columnAt = 0; column < row; column++, at++) {
+        let entry = (1 - share) * product[at]! + own * x[column]!;
         product[at] = entry;
-        if (column === row) entry += hold;
-        for (let i = 0; i < column; i++) entry -= factor[rowAt + i]! * factor[columnAt + i]!;
+        for (let i = 0; i < column; i++) entry -= factor[rowAt + i]! * overPivot[i]! * factor[columnAt + i]!;
         columnAt += column + 1;
-        factor[at] = column === row ? Math.sqrt(entry) : entry / factor[columnAt - 1]!;
+        factor[at] = entry;
+        sum -= entry * gain[column]!;
       }
-      for (let i = 0; i < row; i++) sum -= factor[rowAt + i]! * gain[i]!;
-      gain[row] = sum / factor[at - 1]!;
+      let pivot = (1 - share) * product[at]! + own * x[row]!;
+      product[at] = pivot;
+      pivot += hold;
+      for (let i = 0; i < row; i++) pivot -= factor[rowAt + i]! * factor[rowAt + i]! * overPivot[i]!;
+      overPivot[row] = 1 / pivot;
+      at++;
+      gain[row] = sum * overPivot[row]!;
     }
-    for (let row = size - 1; row >= 0; row--) {
+    for (let row = size - 1; row > 0; row--) {
       const rowAt = (row * (row + 1)) / 2;
-      const value = gain[row]! / factor[rowAt + row]!;
-      gain[row] = value;
-      for (let i = 0; i < row; i++) gain[i]! -= factor[rowAt + i]! * value;
+      for (let i = 0; i < row; i++) gain[i]! -= factor[rowAt + i]! * overPivot[i]! * gain[row]!;
     }
   }
 }

@@ -167,14 +167,42 @@ export function turnBy(out: Slots, q: Slots, vector: Slots, outAt = 0, qAt = 0, 
  * [0, π].
  */
 export function toRotationVector(out: Slots, q: Slots, outAt = 0, qAt = 0): void {
-  const sign = q[qAt]! < 0 ? -1 : 1;
-  const w = sign * q[qAt]!;
-  const x = sign * q[qAt + 1]!;
-  const y = sign * q[qAt + 2]!;
-  const z = sign * q[qAt + 3]!;
+  setRotationVector(out, outAt, q[qAt]!, q[qAt + 1]!, q[qAt + 2]!, q[qAt + 3]!);
+}
+
+/** out (3 slots, rad) = log(a^-1 b): the turn that leads from a to b, in their own inner frame, the shorter way round. */
+export function turnBetween(
+  out: Float64Array,
+  a: Float64Array,
+  b: Float64Array,
+  outAt = 0,
+  aAt = 0,
+  bAt = 0,
+): void {
+  const aw = a[aAt]!;
+  const ax = a[aAt + 1]!;
+  const ay = a[aAt + 2]!;
+  const az = a[aAt + 3]!;
+  const bw = b[bAt]!;
+  const bx = b[bAt + 1]!;
+  const by = b[bAt + 2]!;
+  const bz = b[bAt + 3]!;
+  setRotationVector(
+    out,
+    outAt,
+    aw * bw + ax * bx + ay * by + az * bz,
+    aw * bx - ax * bw - ay * bz + az * by,
+    aw * by + ax * bz - ay * bw - az * bx,
+    aw * bz - ax * by + ay * bx - az * bw,
+  );
+}
+
+function setRotationVector(out: Slots, outAt: number, w: number, x: number, y: number, z: number): void {
   const sine = Math.sqrt(x * x + y * y + z * z);
-  // angle / sin(half angle) tends to 2/w as the angle vanishes; the next term is below rounding here.
-  const factor = sine < 1e-9 ? 2 / w : (2 * Math.atan2(sine, w)) / sine;
+  const cosine = Math.abs(w);
+  // angle / sin(half angle) tends to 2 / cos as the angle vanishes; the next term is below rounding here.
+  const size = sine < 1e-9 ? 2 / cosine : (2 * Math.atan2(sine, cosine)) / sine;
+  const factor = w < 0 ? -size : size;
   out[outAt] = factor * x;
   out[outAt + 1] = factor * y;
   out[outAt + 2] = factor * z;

@@ -23,32 +23,40 @@ export class CycleFit {
   harmonics = 0;
   sweeps = 0;
   readonly #normal = new Float64Array(TERMS * TERMS);
-  readonly #basis = new Float64Array(TERMS);
+  readonly #memory: CycleMemory;
+  /** TERMS a sweep of the cycle: 1, cos, sin, ...; 0 where a harmonic is not fitted. */
+  readonly #basis: Float64Array;
   readonly #squares: Float64Array;
 
-  constructor(series: number) {
+  /** @param memory whose columns are fitted */
+  constructor(memory: CycleMemory) {
+    const series = memory.columns;
+    this.#memory = memory;
+    this.#basis = new Float64Array(memory.capacity * TERMS);
     this.terms = new Float64Array(series * TERMS);
     this.residual = new Float64Array(series);
     this.#squares = new Float64Array(series);
   }
 
-  /** Fits every column of `memory` from `startS` up to `endS`. */
-  fit(memory: CycleMemory, startS: number, endS: number): void {
+  /** Fits every column from `startS` up to `endS`. */
+  fit(startS: number, endS: number): void {
+    const memory = this.#memory;
     const first = memory.firstSince(startS);
     const end = memory.firstSince(endS);
     this.sweeps = end - first;
-    this.harmonics = this.#allowed(memory, first, end, endS - startS);
+    this.harmonics = this.#allowed(first, end, endS - startS);
     this.terms.fill(0);
     this.residual.fill(Number.NaN);
     if (this.harmonics === 0) return;
-    this.#sumUp(memory, first, end, startS, endS);
+    this.#sumUp(first, end, startS, endS);
     const unknowns = 2 * this.harmonics + 1;
     factor(this.#normal, unknowns);
     for (let series = 0; series < this.residual.length; series++) this.#solve(series, unknowns);
   }
 
   /** As many harmonics as there are sweeps for, each with two sweeps a period even in the widest hole. */
-  #allowed(memory: CycleMemory, first: number, end: number, periodS: number): number {
+  #allowed(first: number, end: number, periodS: number): number {
+    const memory = this.#memory;
     // The sweeps before the cycle and behind it bound the holes at its ends.
     if (end <= first || first <= memory.oldest) return 0;
     let widestS = 0;
@@ -60,32 +68,49 @@ export class CycleFit {
   }
 
   /** The normal equations: their matrix, and their right-hand sides in `terms`. */
-  #sumUp(memory: CycleMemory, first: number, end: number, startS: number, endS: number): void {
+  #sumUp(first: number, end: number, startS: number, endS: number): void {
+    const memory = this.#memory;
     const normal = this.#normal;
     const basis = this.#basis;
-    const squares = this.#squares;
-    const { terms } = this;
     const unknowns = 2 * this.harmonics + 1;
-    const { values, columns } = memory;
     normal.fill(0);
-    squares.fill(0);
-    basis[0] = 1;
-    for (let row = first; row < end; row++) {
+    basis.fill(0, 0, (end - first) * TERMS);
+    for (let row = first, b = 0; row < end; row++, b += TERMS) {
       const theta = (2 * Math.PI * (memory.timeOf(row) - startS)) / (endS - startS);
+      basis[b] = 1;
       for (let h = 1; h <= this.harmonics; h++) {
-        basis[2 * h - 1] = Math.cos(h * theta);
-        basis[2 * h] = Math.sin(h * theta);
+        basis[b + 2 * h - 1] = Math.cos(h * theta);
+        basis[b + 2 * h] = Math.sin(h * theta);
       }
       for (let i = 0; i < unknowns; i++) {
-        for (let j = 0; j <= i; j++) normal[i * TERMS + j] += basis[i] * basis[j];
-      }
-      const at = memory.rowAt(row);
-      for (let series = 0, to = 0; series < columns; series++, to += TERMS) {
-        const y = values[at + series];
-        squares[series] += y * y;
-        for (let i = 0; i < unknowns; i++) terms[to + i] += basis[i] * y;
+        for (let j = 0; j <= i; j++) normal[i * TERMS + j] += basis[b + i] * basis[b + j];
       }
     }
+    for (let series = 0; series < memory.columns; series++) this.#sumSeries(first, end, series);
+  }
+
+  /** Written out, so that the sums need not be stored at every sweep: this is the most of a cycle's work. */
+  #sumSeries(first: number, end: number, series: number): void {
+    const memory = this.#memory;
+    const { values, columns } = memory;
+    const basis = this.#basis;
+    let [square, m, c1, s1, c2, s2, c3, s3] = [0, 0, 0, 0, 0, 0, 0, 0];
+    let at = memory.rowAt(first) + series;
+    for (let b = 0; b < (end - first) * TERMS; b += TERMS) {
+      const y = values[at];
+      square += y * y;
+      m += y;
+      c1 += basis[b + 1] * y;
+      s1 += basis[b + 2] * y;
+      c2 += basis[b + 3] * y;
+      s2 += basis[b + 4] * y;
+      c3 += basis[b + 5] * y;
+      s3 += basis[b + 6] * y;
+      at += columns;
+      if (at >= values.length) at -= values.length;
+    }
+    this.#squares[series] = square;
+    this.terms.set([m, c1, s1, c2, s2, c3, s3], series * TERMS);
   }
 
   #solve(series: number, unknowns: number): void {

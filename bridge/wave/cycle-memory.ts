@@ -8,8 +8,10 @@ const RESERVE = 1.5;
 
 export class CycleMemory {
   readonly columns: number;
-  readonly #capacity: number;
-  readonly #values: Float64Array;
+  /** Rows it holds. */
+  readonly capacity: number;
+  /** All rows; where a row begins, `begin` and `rowAt` say. */
+  readonly values: Float64Array;
   readonly #timesS: Float64Array;
   readonly #doubts: Uint16Array;
   /** Rows begun since the start; the newest is #count - 1. */
@@ -22,20 +24,15 @@ export class CycleMemory {
    */
   constructor(rateHz: number, spanS: number, columns: number) {
     this.columns = columns;
-    this.#capacity = Math.ceil(rateHz * spanS * RESERVE) + 2;
-    this.#values = new Float64Array(this.#capacity * columns);
-    this.#timesS = new Float64Array(this.#capacity);
-    this.#doubts = new Uint16Array(this.#capacity);
-  }
-
-  /** All rows; where a row begins, `begin` and `rowAt` say. */
-  get values(): Float64Array {
-    return this.#values;
+    this.capacity = Math.ceil(rateHz * spanS * RESERVE) + 2;
+    this.values = new Float64Array(this.capacity * columns);
+    this.#timesS = new Float64Array(this.capacity);
+    this.#doubts = new Uint16Array(this.capacity);
   }
 
   /** Begins the row of a sweep. @returns where it begins in `values`: the caller writes `columns` numbers there */
   begin(timeS: number, doubts: number): number {
-    const at = this.#count % this.#capacity;
+    const at = this.#count % this.capacity;
     this.#timesS[at] = timeS;
     this.#doubts[at] = doubts;
     this.#count++;
@@ -51,18 +48,18 @@ export class CycleMemory {
 
   /** Number of the oldest row that is still there. */
   get oldest(): number {
-    return Math.max(0, this.#count - this.#capacity);
+    return Math.max(0, this.#count - this.capacity);
   }
 
   timeOf(row: number): number {
-    return this.#timesS[row % this.#capacity];
+    return this.#timesS[row % this.capacity];
   }
 
   doubtsOf(row: number): number {
-    return this.#doubts[row % this.#capacity];
+    return this.#doubts[row % this.capacity];
   }
 
   rowAt(row: number): number {
-    return (row % this.#capacity) * this.columns;
+    return (row % this.capacity) * this.columns;
   }
 }

@@ -74,7 +74,7 @@ export class GaitMeter {
     this.cycle = createGaitCycle(pointCount);
     // A row: the lateral position of every point, then the bend.
     this.#memory = new CycleMemory(rateHz, SLOWEST_BEAT_S, pointCount + 1);
-    this.#fit = new CycleFit(pointCount + 1);
+    this.#fit = new CycleFit(this.#memory);
     this.#phase = new PhaseAlongBody(pointCount, lengthM);
     this.#recent = new RecentCycles(spreadCycles);
   }
@@ -116,7 +116,7 @@ export class GaitMeter {
     const { startS, endS, frequencyHz } = this.tailbeat.lastBeat!;
     cycle.startS = startS;
     cycle.endS = endS;
-    this.#fit.fit(this.#memory, startS, endS);
+    this.#fit.fit(startS, endS);
     this.#phase.read(this.#fit);
     cycle.sweeps = this.#fit.sweeps;
     this.#measure(frequencyHz);

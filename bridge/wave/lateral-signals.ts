@@ -18,8 +18,8 @@ export class LateralSignals {
   readonly #first: Float64Array;
   readonly #second: Float64Array;
   /** Slow mean of the tangents, earth axes; zero before the first sweep. */
-  readonly #mean = new Float64Array(2);
-  readonly #sum = new Float64Array(2);
+  #meanEast = 0;
+  #meanNorth = 0;
 
   /** @param stations of the sensors, 0 nose to 1 tail tip */
   constructor(stations: readonly number[]) {
@@ -27,15 +27,26 @@ export class LateralSignals {
     this.#second = Float64Array.from(stations, (station) => Math.cos(2 * Math.PI * station));
   }
 
-  /** @param orientations body axes to earth, 4 a sensor @param trust as in sweep.ts */
-  step(sweep: Sweep, orientations: Float64Array, trust: Uint8Array): void {
-    const { values } = this;
-    const sum = this.#sum.fill(0);
-    const mean = this.#mean;
-    const length = Math.sqrt(mean[0]! * mean[0]! + mean[1]! * mean[1]!);
-    const cosine = mean[0]! / length;
-    const sine = mean[1]! / length;
-    values.fill(0);
+  /**
+   * Takes a sweep.
+   * @param orientations body axes to earth, 4 a sensor
+   * @param trust as in sweep.ts
+   * @param stepS time since the sweep taken before, s
+   */
+  step(sweep: Sweep, orientations: Float64Array, trust: Uint8Array, stepS: number): void {
+    const { present, conditions } = sweep;
+    const readings = sweep.values;
+    const first = this.#first;
+    const second = this.#second;
+    const length = Math.sqrt(this.#meanEast * this.#meanEast + this.#meanNorth * this.#meanNorth);
+    // No mean heading yet divides zero by zero: unknown.
+    const cosine = this.#meanEast / length;
+    const sine = this.#meanNorth / length;
+    let sumEast = 0;
+    let sumNorth = 0;
+    let firstMode = 0;
+    let secondMode = 0;
+    let force = 0;
     let tangents = 0;
     let forces = 0;
     for (let i = 0; i < trust.length; i++) {
@@ -47,30 +58,27 @@ export class LateralSignals {
       const east = 1 - 2 * (y * y + z * z);
       const north = 2 * (x * y + w * z);
       const lateral = cosine * north - sine * east;
-      sum[0]! += east;
-      sum[1]! += north;
-      values[0]! += lateral;
-      values[1]! += this.#first[i]! * lateral;
-      values[2]! += this.#second[i]! * lateral;
+      sumEast += east;
+      sumNorth += north;
+      firstMode += first[i]! * lateral;
+      secondMode += second[i]! * lateral;
       tangents++;
-      if (!(sweep.present[i]! & HAS_ACCEL) || sweep.conditions[i]! & SPOILT) continue;
+      if (!(present[i]! & HAS_ACCEL) || conditions[i]! & SPOILT) continue;
       const at = CHANNELS * i + ACCEL;
-      const fx = sweep.values[at]!;
-      const fy = sweep.values[at + 1]!;
-      const fz = sweep.values[at + 2]!;
-      const eastward = east * fx + 2 * (x * y - w * z) * fy + 2 * (x * z + w * y) * fz;
-      const northward = north * fx + (1 - 2 * (x * x + z * z)) * fy + 2 * (y * z - w * x) * fz;
-      values[3]! += cosine * northward - sine * eastward;
+      const acrossY = cosine * (1 - 2 * (x * x + z * z)) - sine * 2 * (x * y - w * z);
+      const acrossZ = cosine * 2 * (y * z - w * x) - sine * 2 * (x * z + w * y);
+      force += lateral * readings[at]! + acrossY * readings[at + 1]! + acrossZ * readings[at + 2]!;
       forces++;
     }
-    // Zero tangents or forces, or no mean heading yet, divide zero by zero: unknown.
-    values[0]! /= tangents;
-    values[1]! /= tangents;
-    values[2]! /= tangents;
-    values[3]! /= forces;
+    const { values } = this;
+    // Zero tangents or forces divide zero by zero likewise.
+    values[0] = (cosine * sumNorth - sine * sumEast) / tangents;
+    values[1] = firstMode / tangents;
+    values[2] = secondMode / tangents;
+    values[3] = force / forces;
     if (tangents === 0) return;
-    const share = length > 0 ? Math.min(1, sweep.stepS / HEADING_TAU_S) : 1;
-    mean[0]! += share * (sum[0]! / tangents - mean[0]!);
-    mean[1]! += share * (sum[1]! / tangents - mean[1]!);
+    const share = length > 0 ? Math.min(1, stepS / HEADING_TAU_S) : 1;
+    this.#meanEast += share * (sumEast / tangents - this.#meanEast);
+    this.#meanNorth += share * (sumNorth / tangents - this.#meanNorth);
   }
 }

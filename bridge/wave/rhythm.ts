@@ -18,6 +18,8 @@ import type { Sweep } from "../sweep.ts";
 import { LateralSignals, SIGNAL_COUNT } from "./lateral-signals.ts";
 
 const TURN = 2 * Math.PI;
+/** Sweeps that come faster than this, s, are not all read: of the fastest beat eight a beat are enough. */
+const READING_S = 0.014;
 /** Beats looked for, Hz, with a margin for what is at the edge. */
 const LOWEST_HZ = 0.3;
 const HIGHEST_HZ = 8;
@@ -66,6 +68,8 @@ export class Rhythm {
   /** Of the low-passed signals: mean, mean square about it, mean square of the rate. */
   readonly #moments = new Float64Array(3 * SIGNAL_COUNT);
   #momentsFilled = 0;
+  /** Time since the sweep that was read last, s. */
+  #sinceS = 0;
 
   /** @param stations of the sensors, 0 nose to 1 tail tip */
   constructor(stations: readonly number[]) {
@@ -83,10 +87,18 @@ export class Rhythm {
    * @param trust as in sweep.ts
    */
   step(sweep: Sweep, orientations: Float64Array, trust: Uint8Array): void {
-    this.#signals.step(sweep, orientations, trust);
-    const { values } = this.#signals;
     const { stepS } = sweep;
     this.phase += this.#omega * stepS;
+    this.#sinceS += stepS;
+    // Half a sweep early is nearer than half a sweep late.
+    if (this.#sinceS + 0.5 * stepS < READING_S) return;
+    this.#signals.step(sweep, orientations, trust, this.#sinceS);
+    this.#read(this.#signals.values, this.#sinceS);
+    this.#sinceS = 0;
+  }
+
+  /** @param stepS time since the reading before, s */
+  #read(values: Float64Array, stepS: number): void {
     const countedS = Math.min(stepS, (LONGEST_STEP_BEATS * TURN) / this.#omega);
     const memoryBeats = LEAST_FIT_BEATS + MORE_FIT_BEATS * this.periodicShare;
     const share = 1 - Math.exp((-countedS * this.#omega) / (TURN * memoryBeats));

@@ -1,4 +1,4 @@
-/** Time of a sweep's body and wave stages beside its fusion, on the same sweeps in the same run. */
+/** Time of a sweep's body and wave stages beside its fusion, on the same sweeps in the same run, and their heap bytes. */
 import type { Measured } from "./body/measure.ts";
 import { runBundled } from "./bundled.ts";
 
@@ -13,8 +13,12 @@ export async function run(): Promise<{ rows: Record<string, string | number>[]; 
     "median µs": Number(median.toFixed(2)),
     "ratio of best": Number((best / fusion.best).toFixed(2)),
   });
+  const bytes = {
+    "heap bytes a sweep": Number(measured.bodyHeapBytes.toFixed(1)),
+    "of them left": Number(measured.bodyHeapBytesLeft.toFixed(2)),
+  };
   return {
-    rows: [row("fusion", fusion), row("body and wave", body)],
+    rows: [row("fusion", fusion), { ...row(`body and wave (${measured.midlineBy})`, body), ...bytes }],
     json: { ...measured, ratioOfBest: body.best / fusion.best },
   };
 }

@@ -90,7 +90,7 @@ export class SwayedBody {
       this.midline.step(orientations, trust);
       const { frequencyHz } = this.rhythm;
       this.travel.step(STEP_S, positions, frequencyHz === null ? null : 1 / frequencyHz);
-      this.head.step(sweep, orientations, trust, this.rhythm, this.travel.heading, positions);
+      this.head.step(sweep, orientations, trust, this.rhythm, this.travel.direction, positions);
       each();
     }
   }

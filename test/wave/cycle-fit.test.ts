@@ -19,8 +19,8 @@ function fitAt(times: readonly number[], disturb: () => number = () => 0): Cycle
   const memory = new CycleMemory(100, 5, 1);
   const startS = 1.003;
   for (const t of times) memory.values[memory.begin(t, 0)] = value(t, startS) + disturb();
-  const fit = new CycleFit(1);
-  fit.fit(memory, startS, startS + PERIOD_S);
+  const fit = new CycleFit(memory);
+  fit.fit(startS, startS + PERIOD_S);
   return fit;
 }
 
@@ -58,8 +58,8 @@ test("fewer sweeps, or a wide hole, allow fewer harmonics", () => {
 test("a cycle that has been overwritten in part is not fitted", () => {
   const memory = new CycleMemory(10, 1, 1);
   for (let i = 0; i < 40; i++) memory.values[memory.begin(i / 10, 0)] = 1;
-  const fit = new CycleFit(1);
-  fit.fit(memory, 0.05, 2.05);
+  const fit = new CycleFit(memory);
+  fit.fit(0.05, 2.05);
   expect(fit.harmonics).toBe(0);
   expect(fit.terms.subarray(0, TERMS).every((term) => term === 0)).toBe(true);
 });

@@ -1,7 +1,7 @@
 /**
- * Measures one sweep's body and wave stages (rhythm, midline, travel axis, gait) beside its fusion, on the sweeps of one
- * rehearsal, and prints the result as JSON. Rounds are short and alternate, so that whatever else the machine does hits
- * both alike; the best round is the time without it.
+ * Measures one sweep's body and wave stages (rhythm, midline, travel axis, head motion, gait: all that pipeline.ts runs
+ * between fusion and drive) beside its fusion, on the sweeps of one rehearsal, and prints the result as JSON. Rounds are
+ * short and alternate, so that whatever else the machine does hits both alike; the best round is the time without it.
  */
 import { Pipeline } from "../../../bridge/pipeline.ts";
 import { RehearsalSource } from "../../../bridge/rehearsal/rehearsal-source.ts";
@@ -10,16 +10,18 @@ import { createSweep, type Sweep } from "../../../bridge/sweep.ts";
 import { START_MS } from "../../support/rehearse.ts";
 
 const SECONDS = 20;
-const SWEEPS_A_ROUND = 100;
-const WARM_UP_ROUNDS = 100;
-const ROUNDS = 800;
+/** Two beats, so that every round bears the ends of beats, where a cycle's numbers are computed. */
+const SWEEPS_A_ROUND = 400;
+const WARM_UP_ROUNDS = 40;
+const ROUNDS = 400;
 
 export interface Measured {
   readonly sensors: number;
   /** µs a sweep. */
   readonly fusion: { readonly best: number; readonly median: number };
   readonly body: { readonly best: number; readonly median: number };
-  /** Bytes on the heap after a collection, for each sweep of body and wave. */
+  /** Bytes by which the heap grows in a sweep of body and wave, and what of them a collection leaves. */
+  readonly bodyHeapBytes: number;
   readonly bodyHeapBytesLeft: number;
   /** What the midline is made by at the end. */
   readonly midlineBy: string;
@@ -50,7 +52,7 @@ await source.run({
   mark() {},
 });
 
-const { fusion, rhythm, midline, travel, tailbeat, gait } = new Pipeline(rig, {
+const { fusion, rhythm, midline, travel, headMotion, tailbeat, gait } = new Pipeline(rig, {
   startedAt: new Date(START_MS),
   ring: false,
 });
@@ -72,6 +74,7 @@ function shape(): void {
     rhythm.step(sweep, orientations, trust);
     midline.step(orientations, trust, sweep.stepS, rhythm);
     travel.step(sweep.stepS, midline.positions, tailbeat.periodS);
+    headMotion?.step(sweep, orientations, trust, rhythm, travel.direction, midline.positions);
     gait.step(shaped / rig.hub.rateHz, midline.positions, travel.direction, trust);
   }
 }
@@ -82,11 +85,13 @@ for (let round = 0; round < WARM_UP_ROUNDS + ROUNDS; round++) {
   fusionUs.push(usASweep(fuse));
   bodyUs.push(usASweep(shape));
 }
+const heapBytes = bytesASweep(shape);
 const heapBytesLeft = bytesLeftASweep(shape);
 const measured: Measured = {
   sensors: rig.sensors.length,
   fusion: summary(fusionUs.slice(WARM_UP_ROUNDS)),
   body: summary(bodyUs.slice(WARM_UP_ROUNDS)),
+  bodyHeapBytes: heapBytes,
   bodyHeapBytesLeft: heapBytesLeft,
   midlineBy: midline.inUse,
 };
@@ -107,10 +112,20 @@ function usASweep(round: () => void): number {
   return Number(process.hrtime.bigint() - start) / (1000 * SWEEPS_A_ROUND);
 }
 
+/** Smallest of several rounds: collections in between would hide growth, never raise it. */
+function bytesASweep(round: () => void): number {
+  const growths = Array.from({ length: 20 }, () => {
+    const before = process.memoryUsage().heapUsed;
+    round();
+    return process.memoryUsage().heapUsed - before;
+  });
+  return Math.min(...growths.filter((growth) => growth >= 0)) / SWEEPS_A_ROUND;
+}
+
 function bytesLeftASweep(round: () => void): number {
   globalThis.gc!();
   const before = process.memoryUsage().heapUsed;
-  const rounds = 200;
+  const rounds = 50;
   for (let i = 0; i < rounds; i++) round();
   globalThis.gc!();
   return (process.memoryUsage().heapUsed - before) / (rounds * SWEEPS_A_ROUND);
