@@ -116,7 +116,12 @@ export class WaveShape {
   /** The same at all odd places, two slots each; written out, since this is every sweep's. */
   oddPlaces(phasors: Float64Array, out: Float64Array): void {
     const t = this.#table;
-    const [a, b, c, d, e, f] = [phasors[0], phasors[1], phasors[2], phasors[3], phasors[4], phasors[5]];
+    const a = phasors[0];
+    const b = phasors[1];
+    const c = phasors[2];
+    const d = phasors[3];
+    const e = phasors[4];
+    const f = phasors[5];
     for (let to = 0, i = PARTS; to + 1 < out.length; to += 2, i += 2 * PARTS) {
       out[to] = a * t[i] + b * t[i + 1] + c * t[i + 2] + d * t[i + 3] + e * t[i + 4] + f * t[i + 5];
       out[to + 1] = a * t[i + 6] + b * t[i + 7] + c * t[i + 8] + d * t[i + 9] + e * t[i + 10] + f * t[i + 11];
@@ -183,7 +188,9 @@ export class WaveShape {
   }
 
   #stepStrength(k: number, harmonic: number): number {
-    return Math.hypot(this.#product(k, harmonic, false), this.#product(k, harmonic, true));
+    const real = this.#product(k, harmonic, false);
+    const imaginary = this.#product(k, harmonic, true);
+    return Math.sqrt(real * real + imaginary * imaginary);
   }
 
   /** The next sensor's amplitude times the conjugate of this one's, both axes together: real or imaginary part. */

@@ -82,14 +82,20 @@ export class HarmonicFit {
     let taken = 0;
     for (let i = 0; i < size; i++) taken += gain[i]! * x[i]!;
     const meanShare = share / this.filled;
+    const mean = gain[0]!;
     for (let channel = 0, at = 0; channel < this.#channels; channel++, at += size) {
-      let before = 0;
-      for (let i = 0; i < size; i++) before += x[i]! * coefficients[at + i]!;
+      let before = coefficients[at]!;
+      for (let i = 1; i < size; i += 2)
+        before += x[i]! * coefficients[at + i]! + x[i + 1]! * coefficients[at + i + 1]!;
       fitted[channel] = before;
       const value = values[channel]!;
       if (Number.isNaN(value)) continue;
       const error = value - before;
-      for (let i = 0; i < size; i++) coefficients[at + i]! += gain[i]! * error;
+      coefficients[at]! += mean * error;
+      for (let i = 1; i < size; i += 2) {
+        coefficients[at + i]! += gain[i]! * error;
+        coefficients[at + i + 1]! += gain[i + 1]! * error;
+      }
       fitted[channel] = before + taken * error;
       // Errors before and after the step, multiplied: the recursion that gives the least sum of squares itself.
       const left = error * error * (1 - taken);

@@ -94,7 +94,14 @@ export class CycleFit {
     const memory = this.#memory;
     const { values, columns } = memory;
     const basis = this.#basis;
-    let [square, m, c1, s1, c2, s2, c3, s3] = [0, 0, 0, 0, 0, 0, 0, 0];
+    let square = 0;
+    let m = 0;
+    let c1 = 0;
+    let s1 = 0;
+    let c2 = 0;
+    let s2 = 0;
+    let c3 = 0;
+    let s3 = 0;
     let at = memory.rowAt(first) + series;
     for (let b = 0; b < (end - first) * TERMS; b += TERMS) {
       const y = values[at];
