@@ -118,19 +118,15 @@ export class Smooth implements Between {
   }
 
   at(place: number, out: Float64Array): void {
-    const spline = this.#spline;
-    const i = 3 * spline.base[place];
-    const step = spline.ofStep[place];
-    const slope = spline.ofSlope[place];
-    const nextSlope = spline.ofNextSlope[place];
+    const { base, ofStep, ofSlope, ofNextSlope } = this.#spline;
+    const k = base[place];
+    const step = ofStep[place];
+    const slope = ofSlope[place];
+    const nextSlope = ofNextSlope[place];
     const vector = this.#vector;
-    const turns = this.#turn;
-    const slopes = this.#slope;
-    const nextSlopes = this.#nextSlope;
-    vector[0] = step * turns[i] + slope * slopes[i] + nextSlope * nextSlopes[i];
-    vector[1] = step * turns[i + 1] + slope * slopes[i + 1] + nextSlope * nextSlopes[i + 1];
-    vector[2] = step * turns[i + 2] + slope * slopes[i + 2] + nextSlope * nextSlopes[i + 2];
-    turnBy(out, this.#orientations, vector, 0, 4 * this.#left[spline.base[place]]);
+    for (let axis = 0, i = 3 * k; axis < 3; axis++, i++)
+      vector[axis] = step * this.#turn[i] + slope * this.#slope[i] + nextSlope * this.#nextSlope[i];
+    turnBy(out, this.#orientations, vector, 0, 4 * this.#left[k]);
   }
 }
 

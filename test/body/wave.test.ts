@@ -1,7 +1,13 @@
 import { describe, expect, test } from "vitest";
 import { Midline } from "../../bridge/body/midline.ts";
 import { Wave } from "../../bridge/body/wave.ts";
-import { arcBetween, conjugate, multiply, toRotationVector } from "../../bridge/numeric/quaternion.ts";
+import {
+  arcBetween,
+  conjugate,
+  multiply,
+  rotate,
+  toRotationVector,
+} from "../../bridge/numeric/quaternion.ts";
 import { TRUST } from "../../bridge/sweep.ts";
 import { ExactWave, evenStations } from "./exact-wave.ts";
 
@@ -49,7 +55,7 @@ describe.each([
   ["level", (body: ExactWave) => body.orientations],
   ["steep and twisted", steep],
 ] as const)("a %s body that beats", (_, shape) => {
-  test("every sensor's own orientation is met, and bend and twist go on through it without a jump", () => {
+  test("every sensor's own orientation is met, bend and twist go on through it without a jump, and the axes are those of the orientations", () => {
     const { wave, orientations } = learned(12, shape);
     expect(wave.whySmooth).toBeNull();
     const at = (place: number) => {
@@ -57,6 +63,15 @@ describe.each([
       wave.at(place, q);
       return q;
     };
+    const axes = new Float64Array((3 * (PLACES - 1)) / 2);
+    const ahead = new Float64Array(3);
+    wave.axes(axes);
+    for (let place = 1; place < PLACES; place += 2) {
+      rotate(ahead, at(place), [1, 0, 0]);
+      // Rounding of two ways to the same axis.
+      for (let i = 0; i < 3; i++)
+        expect(Math.abs(axes[(3 * (place - 1)) / 2 + i] - ahead[i])).toBeLessThan(1e-14);
+    }
     STATIONS.forEach((station, i) => {
       const place = placeOf(station);
       // Rounding, and of the table's few thousand sums.

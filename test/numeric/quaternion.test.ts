@@ -11,6 +11,7 @@ import {
   slerp,
   toMatrix,
   toRotationVector,
+  turnBetween,
   turnBy,
 } from "../../bridge/numeric/quaternion.ts";
 
@@ -241,4 +242,23 @@ describe("fromTwoVectors", () => {
       expect(q).toEqual([1, 0, 0, 0]);
     },
   );
+});
+
+describe("turnBetween", () => {
+  it("is the rotation vector of the inverse of one times the other, whatever the sign of either", () => {
+    fc.assert(
+      fc.property(unit, unit, (a, b) => {
+        const q = [0, 0, 0, 0];
+        const expected = [0, 0, 0];
+        conjugate(q, a);
+        multiply(q, q, b);
+        toRotationVector(expected, q);
+        // Half a turn may go either way round.
+        fc.pre(Math.abs(q[0]!) > 1e-6);
+        const out = new Float64Array(3);
+        turnBetween(out, Float64Array.from(a), Float64Array.from(b));
+        close(out, expected, 1e-13);
+      }),
+    );
+  });
 });
