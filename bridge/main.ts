@@ -8,6 +8,7 @@ import { Command, CommanderError } from "commander";
 import { addCalibrate } from "./commands/calibrate.ts";
 import { addCheck } from "./commands/check.ts";
 import { addExport } from "./commands/export.ts";
+import { addHistory } from "./commands/history.ts";
 import { addImport } from "./commands/import.ts";
 import { addLayout } from "./commands/layout.ts";
 import { addLive } from "./commands/live.ts";
@@ -36,6 +37,7 @@ for (const add of [
   addImport,
   addExport,
   addVerify,
+  addHistory,
   addLayout,
   addPorts,
 ])

@@ -12,7 +12,7 @@ import { type RestFigures, RestMeter } from "./rest-meter.ts";
 import type { HealthSetup } from "./setup.ts";
 
 /** What a sensor's data sheet allows at rest, SI. */
-interface Allowed {
+export interface Allowed {
   /** One-sided densities, what rounding to whole counts adds included. */
   readonly gyroNoise: number;
   readonly accelNoise: number;
@@ -25,7 +25,7 @@ interface Allowed {
 }
 
 /** Gravity without a site: from equator to pole normal gravity is within this of the standard one, m/s². */
-const GRAVITY_SPREAD = 0.027;
+export const GRAVITY_SPREAD = 0.027;
 /** Fewest magnetometers at rest whose median tells what the field here is. */
 const LEAST_FIELDS = 3;
 const SECONDS_PER_HOUR = 3600;
@@ -156,7 +156,7 @@ function signed(value: number): string {
   return value < 0 ? `−${-value}` : `+${value}`;
 }
 
-function allowedAtRest(sensor: HealthSetup["sensors"][number], hubRateHz: number): Allowed {
+export function allowedAtRest(sensor: HealthSetup["sensors"][number], hubRateHz: number): Allowed {
   const { gyro, accel, mag } = sensor.model;
   const [gyroLimits, accelLimits] = limitsOf(sensor, hubRateHz);
   // Rounding adds a variance of a twelfth of a count's square to each reading.

@@ -3,11 +3,12 @@
  * places, and how far the midline will be off along the body, all on one ruler from nose to tail. For screen and paper:
  * no fonts of its own, no ground when printed.
  */
+import { DAYLIGHT, TYPE } from "../drawing/daylight.ts";
+import { area, escaped, line, type Point, pointer, polyline, text } from "../drawing/svg.ts";
 import type { Gait } from "../numeric/gaits.ts";
 import { taper } from "../wire/taper.ts";
 import { millimetres, noiseText, type PlanSubject, percent, placementNames, rangeText } from "./describe.ts";
 import type { Placement, PlacementPlan } from "./plan.ts";
-import { area, escaped, line, type Point, pointer, polyline, text } from "./svg.ts";
 import { SwimmingBody } from "./swimming-body.ts";
 
 export interface PictureSubject extends PlanSubject {
@@ -15,22 +16,8 @@ export interface PictureSubject extends PlanSubject {
   readonly gait: Gait;
 }
 
-/** The daylight tokens of the dashboard's style sheet, by their names there. */
-export const DAYLIGHT = {
-  ground: "#f6f4ee",
-  ink: "#1b2426",
-  soft: "#5c6b6d",
-  hairline: "#d5d2c6",
-  faint: "#ece9df",
-  "body-1": "#8a6a12",
-  "body-2": "#4c7a22",
-  "body-3": "#11776e",
-  "body-4": "#3e57b5",
-  "body-5": "#8a3f92",
-} as const;
-
 const STYLE = `
-text { font: 11px system-ui, "Segoe UI", Roboto, "Noto Sans", "DejaVu Sans", sans-serif; font-variant-numeric: tabular-nums; fill: ${DAYLIGHT.ink} }
+text { ${TYPE}; fill: ${DAYLIGHT.ink} }
 .soft { fill: ${DAYLIGHT.soft} } .name { font-weight: 650; font-size: 12px; fill: ${DAYLIGHT.soft} } .strong { font-weight: 650 }
 .title { font-size: 15px; font-weight: 650 } .sub { font-size: 13px } .figure { font-size: 44px }
 .end { text-anchor: end } .middle { text-anchor: middle } .tight { font-size: 9px }

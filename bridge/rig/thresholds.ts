@@ -138,6 +138,13 @@ export const thresholdsSchema = z.strictObject({
     .describe(
       "A flag when the field's norm at rest is off by this share both from the Earth's at the site and from what most sensors read: three times what a good calibration leaves (common practice, no source).",
     ),
+  trendAheadDays: z
+    .number()
+    .min(1)
+    .max(365)
+    .describe(
+      "`bendwatch history` says that a figure will leave its limit when its trend gets there within this time, and never looks further ahead than the trials reach back: four weeks are time to order a sensor and to calibrate it (common practice, no source).",
+    ),
   supplyLeastV: z
     .number()
     .min(0)

@@ -1,9 +1,10 @@
 import { readFileSync } from "node:fs";
 import { join } from "node:path";
 import { expect, test } from "vitest";
+import { DAYLIGHT } from "../../bridge/drawing/daylight.ts";
 import { packageRoot } from "../../bridge/paths.ts";
 import type { PlanSubject } from "../../bridge/placement/describe.ts";
-import { DAYLIGHT, drawPlan } from "../../bridge/placement/picture.ts";
+import { drawPlan } from "../../bridge/placement/picture.ts";
 import { planPlacement } from "../../bridge/placement/plan.ts";
 import { RANGE, swimmerWith } from "./models.ts";
 

@@ -33,8 +33,9 @@ export function pointer(x: number, y: number, half: number, style: string): stri
   ])}Z" ${style}/>`;
 }
 
+/** Signs of the language as numbers; control characters, which XML cannot hold, as the replacement character. */
 export function escaped(content: string): string {
-  return content.replace(/[&<>"]/g, (sign) => `&#${sign.charCodeAt(0)};`);
+  return content.replace(/\p{Cc}/gu, "\ufffd").replace(/[&<>"]/g, (sign) => `&#${sign.charCodeAt(0)};`);
 }
 
 function course(points: readonly Point[]): string {
