@@ -2,8 +2,10 @@
 import { Gain } from "./coefficients.ts";
 import type { FusionParameters } from "./parameters.ts";
 import { Slot } from "./record.ts";
-import { isHeadingSettled, isLevel, narrowHeading, uncertainShare } from "./uncertainty.ts";
+import { isHeadingSettled, narrowHeading, uncertainShare } from "./uncertainty.ts";
 
+/** A specific force averaged for less than this hardly tells where up is on a moving body, s: a beat of most swimmers. */
+const LEVELLED_S = 1;
 /** Below this horizontal length the nose axis has no heading. */
 const VERTICAL = 1e-3;
 /** A horizontal field whose square is below this share of the vertical's is rounding, and points anywhere. */
@@ -126,7 +128,7 @@ export function composeEarth(r: Float64Array, out: Float64Array, outAt: number):
 
 /**
  * The share of a newest reading in an average to which each counts by the cube of its number, from its share in a plain
- * one (1/n becomes 4/(n + 3)): while the inclination settles, the earlier the field was levelled the less it tells.
+ * one (1/n becomes 4/(n + 3)): the earlier after a start in motion the field was levelled, the less it tells.
  */
 function latelyWeighted(share: number): number {
   return (4 * share) / (1 + 3 * share);
@@ -150,7 +152,8 @@ function chooseGain(r: Float64Array, gains: Float64Array, parameters: FusionPara
     share = 0;
   }
   const uncertain = believed ? uncertainShare(r, gains) : 0;
-  const taken = isLevel(r, parameters) ? uncertain : latelyWeighted(uncertain);
+  const levelledFor = r[Slot.FORCE_LOW_PASS]!;
+  const taken = levelledFor < LEVELLED_S ? latelyWeighted(uncertain) : uncertain;
   narrowHeading(r, Math.max(share, uncertain));
   r[Slot.HEADING_GAIN] = Math.max(share, taken);
 }
