@@ -236,6 +236,7 @@ export class ChainFusion {
     watchRest(r, this.#coefficients, this.#parameters);
     const gains = this.#coefficients.forStep(r, Slot.INTERVAL);
     averageForce(r, gains, this.#parameters);
+    narrowInclination(r, this.#parameters);
     correctInclination(r);
     r[Slot.SPAN_TILT] = 0;
     r[Slot.SPAN_TILT + 1] = 0;

@@ -61,8 +61,13 @@ function averageVariance(r: Float64Array, { inclinationSigma, accelerationShare 
  */
 export function openInclination(r: Float64Array, parameters: FusionParameters): void {
   const { accelTauS } = parameters;
-  const worthS = (CAUTION * averageVariance(r, parameters) * accelTauS) / r[Slot.TILT_VARIANCE]!;
-  if (worthS >= Math.min(r[Slot.FORCE_LOW_PASS]!, accelTauS)) return;
+  const averagedS = Math.min(r[Slot.FORCE_LOW_PASS]!, accelTauS);
+  // That a young average is worth little is no reason to begin another.
+  const young = averagedS < accelTauS ? youngVariance(averagedS, parameters) : 0;
+  const left = r[Slot.TILT_VARIANCE]! - young;
+  if (left <= 0) return;
+  const worthS = (CAUTION * averageVariance(r, parameters) * accelTauS) / left;
+  if (worthS >= averagedS) return;
   const slope = Slot.FORCE_LOW_PASS + 4;
   r[Slot.FORCE_LOW_PASS] = worthS;
   for (let i = 0; i < 3; i++) r[slope + i] = 0;
@@ -75,7 +80,12 @@ export function narrowInclination(r: Float64Array, parameters: FusionParameters)
   if (variance < NEGLIGIBLE && averagedS === parameters.accelTauS) return;
   const share = r[Slot.FORCE_STEP]! / averagedS;
   if (share < 1) r[Slot.TILT_VARIANCE] = (1 - share) * variance;
-  else r[Slot.TILT_VARIANCE] = (parameters.accelSigma ** 2 * parameters.accelTauS) / averagedS;
+  else r[Slot.TILT_VARIANCE] = youngVariance(averagedS, parameters);
+}
+
+/** Variance of an inclination that rests on so much of averaged specific force, rad². */
+function youngVariance(averagedS: number, { accelSigma, accelTauS }: FusionParameters): number {
+  return (accelSigma * accelSigma * accelTauS) / averagedS;
 }
 
 /** The level of the body's acceleration follows the newest specific force. */

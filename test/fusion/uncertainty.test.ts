@@ -139,6 +139,13 @@ describe("the stated uncertainty", () => {
     }
   });
 
+  it("covers the inclination's error from the first reading on, also of a start in violent motion", () => {
+    for (const seed of seeds) {
+      const first = swim(seed, 1, { swayMPerS2: 6 });
+      expect(rms(first.map((e) => e.inclination / e.inclinationSigma))).toBeLessThan(1.5);
+    }
+  });
+
   it("is any angle at all before the first reading and after the orientation is lost, and grows while none comes", () => {
     const fusion = new ChainFusion({ sensorCount: 1, rateHz: RATE_HZ, heading: "magnetic" });
     expect(fusion.headingSigma[0]).toBeCloseTo(Math.PI / Math.sqrt(3), 12);
