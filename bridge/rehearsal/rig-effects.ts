@@ -1,5 +1,5 @@
 /** What faults of the whole rig do: around it, on the way of its packets, and to the hub itself. */
-import type { MakeEffect } from "./fault-effects.ts";
+import type { MakeEffect } from "./effect.ts";
 import { addScaled, during, ramp } from "./fault-times.ts";
 import type { RigFaultKind } from "./faults.ts";
 

@@ -1,7 +1,7 @@
 /** What faults of one unit do: near it, to how it sits, within it, and to its plug. */
 import { ACCEL, CHANNELS, GYRO, MAG } from "../sweep.ts";
 import { turnAboutX, turnAboutZ } from "./attitude.ts";
-import { DELIVERY, type MakeEffect } from "./fault-effects.ts";
+import { DELIVERY, type MakeEffect } from "./effect.ts";
 import { addScaled, during, ramp } from "./fault-times.ts";
 import type { Fault, SensorFaultKind } from "./faults.ts";
 

@@ -4,7 +4,7 @@
  */
 import { RAD_PER_DEG } from "../numeric/units.ts";
 import { GYRO, MAG } from "../sweep.ts";
-import type { FaultEffect } from "./fault-effects.ts";
+import type { FaultEffect } from "./effect.ts";
 import type { Random } from "./random.ts";
 
 export interface Unrest {
