@@ -3,7 +3,6 @@ import { describe, expect, it } from "vitest";
 import {
   conjugate,
   fromRotationVector,
-  fromTwoVectors,
   keepUnit,
   multiply,
   normalise,
@@ -191,57 +190,6 @@ describe("slerp", () => {
       }),
     );
   });
-});
-
-describe("fromTwoVectors", () => {
-  it("carries one direction to the other, whatever the lengths", () => {
-    fc.assert(
-      fc.property(vector, vector, fc.double({ min: 0.01, max: 100, noNaN: true }), (from, to, length) => {
-        const q = [0, 0, 0, 0];
-        const carried = [0, 0, 0];
-        fromTwoVectors(
-          q,
-          from,
-          to.map((c) => c * length),
-        );
-        rotate(carried, q, from);
-        const scale = Math.hypot(...from) / Math.hypot(...to);
-        // Directions within 1e-6 rad of opposite are taken as opposite.
-        close(
-          carried,
-          to.map((c) => c * scale),
-          2e-6,
-        );
-      }),
-    );
-  });
-
-  it("makes a half turn of opposite directions", () => {
-    for (const v of [
-      [1, 0, 0],
-      [0, -2, 0],
-      [0, 0, 3],
-      [1, -2, 0.5],
-    ]) {
-      const opposite = v.map((c) => -c);
-      const q = [0, 0, 0, 0];
-      const carried = [0, 0, 0];
-      fromTwoVectors(q, v, opposite);
-      rotate(carried, q, v);
-      close(carried, opposite);
-    }
-  });
-
-  it.each([[[0, 0, 0]], [[Number.NaN, 0, 1]], [[Infinity, 0, 0]]])(
-    "gives the identity where a direction is missing: %s",
-    (v) => {
-      const q = [0, 0, 0, 0];
-      fromTwoVectors(q, v, [0, 0, 1]);
-      expect(q).toEqual([1, 0, 0, 0]);
-      fromTwoVectors(q, [0, 0, 1], v);
-      expect(q).toEqual([1, 0, 0, 0]);
-    },
-  );
 });
 
 describe("turnBetween", () => {
